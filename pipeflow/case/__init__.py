@@ -1,0 +1,1 @@
+"""The border of the program: text in, SI objects out."""

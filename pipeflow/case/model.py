@@ -1,0 +1,82 @@
+"""A case as the rest of the program sees it: frozen dataclasses in SI units, no text left but names."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+from pipeflow.line.elements import Element, Fluid, Vessel
+
+
+@dataclass(frozen=True)
+class FlowRange:
+    """Volume flow of the slurry, m³/s."""
+
+    minimum: float
+    design: float
+    maximum: float
+
+
+@dataclass(frozen=True)
+class Limits:
+    """What the line must keep to, SI; None where the case states no limit."""
+
+    head_loss: float | None = None
+    pressure_loss: float | None = None
+    velocity_minimum: float | None = None
+    velocity_maximum: float | None = None
+
+
+@dataclass(frozen=True)
+class Methods:
+    """The methods the case asks for by key; None leaves the choice to the program."""
+
+    turbulent: str | None = None
+    critical: str | None = None
+    fittings: str | None = None
+
+
+@dataclass(frozen=True)
+class Pump:
+    """A candidate pump: ``speed`` and ``curve_speed`` in rad/s, ``curve`` the path of its water curve as written."""
+
+    name: str
+    kind: str
+    curve: str
+    speed: float | None = None
+    curve_speed: float | None = None
+
+
+@dataclass(frozen=True)
+class Case:
+    """One case file, read.
+
+    Attributes
+    ----------
+    file : str
+        The path as the user gave it.
+    sizes : dict of str to str
+        The catalogue size of each pipe given by ``size``, by pipe name.
+    default_roughness : dict of str to str
+        Material whose default roughness stands in for a value the case does not give, by pipe name.
+    tested_shear_rate : tuple of float, optional
+        Lowest and highest shear rate over which the rheology was measured, 1/s.
+    scenarios : dict of str to Case
+        The case with each named set of changes made.
+    """
+
+    file: str
+    title: str
+    revision: str
+    notes: str
+    fluid: Fluid
+    flow: FlowRange
+    source: Vessel | None
+    destination: Vessel | None
+    route: tuple[Element, ...]
+    limits: Limits = Limits()
+    methods: Methods = Methods()
+    sizes: dict[str, str] = field(default_factory=dict)
+    default_roughness: dict[str, str] = field(default_factory=dict)
+    tested_shear_rate: tuple[float, float] | None = None
+    pumps: tuple[Pump, ...] = ()
+    scenarios: dict[str, Case] = field(default_factory=dict)

@@ -1,0 +1,1 @@
+"""The line: pipe sizes, fittings and the route from source to destination."""

@@ -1,0 +1,1 @@
+"""Pages made of results: terminal and JSON."""

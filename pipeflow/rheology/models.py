@@ -1,0 +1,161 @@
+"""The rheological models: shear stress, shear rate and apparent viscosity of each law.
+
+Parameters, shear rates and stresses are floats or numpy arrays in SI units and broadcast against each other. A negative
+shear rate or stress, or a parameter outside its range, gives nan for that element alone.
+"""
+
+from __future__ import annotations
+
+from abc import ABC, abstractmethod
+from dataclasses import dataclass
+
+import numpy as np
+
+from pipeflow.arrays import Array, FloatOrArray
+
+
+class Rheology(ABC):
+    """A purely viscous fluid: one curve of shear stress against shear rate."""
+
+    key: str
+    """The name of the model in case files and results."""
+
+    @property
+    @abstractmethod
+    def yield_stress(self) -> FloatOrArray:
+        """Stress below which nothing is sheared, Pa."""
+
+    @abstractmethod
+    def shear_stress(self, shear_rate: FloatOrArray) -> Array:
+        """Shear stress [Pa] at a shear rate [1/s]; at zero rate the limit from above, the yield stress."""
+
+    @abstractmethod
+    def shear_rate(self, shear_stress: FloatOrArray) -> Array:
+        """Shear rate [1/s] at a shear stress [Pa]; zero up to the yield stress."""
+
+    def apparent_viscosity(self, shear_rate: FloatOrArray) -> Array:
+        """Shear stress over shear rate [Pa.s] at a shear rate [1/s]; at zero rate the limit from above, which may be inf."""
+        rate = _not_negative(shear_rate)
+        with np.errstate(divide="ignore", invalid="ignore"):
+            quotient = self.shear_stress(rate) / rate
+        return np.where(rate > 0, quotient, self._viscosity_at_rest() + 0.0 * rate)
+
+    @abstractmethod
+    def _viscosity_at_rest(self) -> Array:
+        """Give the limit of the apparent viscosity as the shear rate goes to zero."""
+
+
+def _not_negative(values: FloatOrArray) -> Array:
+    array = np.asarray(values, dtype=np.float64)
+    return np.where(array >= 0, array, np.nan)
+
+
+class GeneralizedPowerLaw(Rheology):
+    """``tau = tau_y + K rate**n``, of which Newtonian, power-law and Bingham fluids are the special cases.
+
+    One implementation serves the four, so that each is exactly the limit of the general one.
+    """
+
+    @property
+    @abstractmethod
+    def consistency(self) -> FloatOrArray:
+        """Consistency K, Pa.s^n."""
+
+    @property
+    @abstractmethod
+    def flow_index(self) -> FloatOrArray:
+        """Flow index n."""
+
+    def shear_stress(self, shear_rate: FloatOrArray) -> Array:
+        """``tau_y + K rate**n`` [Pa] at a shear rate [1/s]."""
+        return np.asarray(self.yield_stress + self.consistency * _not_negative(shear_rate) ** self.flow_index)
+
+    def shear_rate(self, shear_stress: FloatOrArray) -> Array:
+        """``((tau - tau_y)/K)**(1/n)`` [1/s] at a shear stress [Pa], zero up to the yield stress."""
+        excess = np.maximum(_not_negative(shear_stress) - self.yield_stress, 0.0)
+        return np.asarray((excess / self.consistency) ** (1.0 / np.asarray(self.flow_index)))
+
+    def _viscosity_at_rest(self) -> Array:
+        n = np.asarray(self.flow_index)
+        unyielded = (np.asarray(self.yield_stress) > 0) | (n < 1)
+        return np.where(unyielded, np.inf, np.where(n > 1, 0.0, self.consistency))
+
+
+@dataclass(frozen=True)
+class Newtonian(GeneralizedPowerLaw):
+    """``tau = mu rate``; ``viscosity`` in Pa.s."""
+
+    viscosity: FloatOrArray
+
+    key = "newtonian"
+    yield_stress = 0.0
+    flow_index = 1.0
+
+    @property
+    def consistency(self) -> FloatOrArray:
+        """The viscosity: with n = 1 the consistency in Pa.s."""
+        return self.viscosity
+
+
+@dataclass(frozen=True)
+class PowerLaw(GeneralizedPowerLaw):
+    """``tau = K rate**n`` (Ostwald, de Waele); ``consistency`` in Pa.s^n."""
+
+    consistency: FloatOrArray
+    flow_index: FloatOrArray
+
+    key = "power-law"
+    yield_stress = 0.0
+
+
+@dataclass(frozen=True)
+class Bingham(GeneralizedPowerLaw):
+    """``tau = tau_y + mu_p rate`` (Bingham 1922); ``yield_stress`` in Pa, ``plastic_viscosity`` in Pa.s."""
+
+    yield_stress: FloatOrArray
+    plastic_viscosity: FloatOrArray
+
+    key = "bingham"
+    flow_index = 1.0
+
+    @property
+    def consistency(self) -> FloatOrArray:
+        """The plastic viscosity: with n = 1 the consistency in Pa.s."""
+        return self.plastic_viscosity
+
+
+@dataclass(frozen=True)
+class HerschelBulkley(GeneralizedPowerLaw):
+    """``tau = tau_y + K rate**n`` (Herschel & Bulkley 1926); ``yield_stress`` in Pa, ``consistency`` in Pa.s^n."""
+
+    yield_stress: FloatOrArray
+    consistency: FloatOrArray
+    flow_index: FloatOrArray
+
+    key = "herschel-bulkley"
+
+
+@dataclass(frozen=True)
+class Casson(Rheology):
+    """``sqrt(tau) = sqrt(tau_y) + sqrt(mu_c rate)`` (Casson 1959); parameters in Pa and Pa.s, not their square roots."""
+
+    yield_stress: FloatOrArray
+    casson_viscosity: FloatOrArray
+
+    key = "casson"
+
+    def shear_stress(self, shear_rate: FloatOrArray) -> Array:
+        """``(sqrt(tau_y) + sqrt(mu_c rate))**2`` [Pa] at a shear rate [1/s]."""
+        return np.asarray(
+            (np.sqrt(self.yield_stress) + np.sqrt(self.casson_viscosity * _not_negative(shear_rate))) ** 2
+        )
+
+    def shear_rate(self, shear_stress: FloatOrArray) -> Array:
+        """``(sqrt(tau) - sqrt(tau_y))**2 / mu_c`` [1/s] at a shear stress [Pa], zero up to the yield stress."""
+        stress = np.maximum(_not_negative(shear_stress), self.yield_stress)
+        # the difference of roots, written so that it keeps its digits just above the yield stress
+        root = (stress - self.yield_stress) / np.maximum(np.sqrt(stress) + np.sqrt(self.yield_stress), np.finfo(float).tiny)
+        return np.asarray(root**2 / self.casson_viscosity)
+
+    def _viscosity_at_rest(self) -> Array:
+        return np.where(np.asarray(self.yield_stress) > 0, np.inf, self.casson_viscosity)

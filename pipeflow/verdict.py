@@ -1,0 +1,24 @@
+"""What a study says about a line beside its numbers: checks against limits."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Literal
+
+Status = Literal["ok", "caution", "fail", "not checked"]
+
+
+@dataclass(frozen=True)
+class Check:
+    """One limit held against one computed value.
+
+    ``value`` and ``limit`` are in ``unit`` (None where the check could not be made); ``basis`` says in words what was
+    compared, at which flow, and on whose authority.
+    """
+
+    name: str
+    status: Status
+    value: float | None
+    limit: float | None
+    unit: str
+    basis: str
