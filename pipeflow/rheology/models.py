@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from abc import ABC, abstractmethod
 from dataclasses import dataclass
+from typing import ClassVar
 
 import numpy as np
 
@@ -17,13 +18,11 @@ from pipeflow.arrays import Array, FloatOrArray
 class Rheology(ABC):
     """A purely viscous fluid: one curve of shear stress against shear rate."""
 
-    key: str
+    key: ClassVar[str]
     """The name of the model in case files and results."""
 
-    @property
-    @abstractmethod
-    def yield_stress(self) -> FloatOrArray:
-        """Stress below which nothing is sheared, Pa."""
+    yield_stress: FloatOrArray
+    """Stress below which nothing is sheared, Pa."""
 
     @abstractmethod
     def shear_stress(self, shear_rate: FloatOrArray) -> Array:
@@ -56,29 +55,26 @@ class GeneralizedPowerLaw(Rheology):
     One implementation serves the four, so that each is exactly the limit of the general one.
     """
 
-    @property
     @abstractmethod
-    def consistency(self) -> FloatOrArray:
-        """Consistency K, Pa.s^n."""
-
-    @property
-    @abstractmethod
-    def flow_index(self) -> FloatOrArray:
-        """Flow index n."""
+    def as_herschel_bulkley(self) -> HerschelBulkley:
+        """Give the same fluid with all three parameters named."""
 
     def shear_stress(self, shear_rate: FloatOrArray) -> Array:
         """``tau_y + K rate**n`` [Pa] at a shear rate [1/s]."""
-        return np.asarray(self.yield_stress + self.consistency * _not_negative(shear_rate) ** self.flow_index)
+        law = self.as_herschel_bulkley()
+        return np.asarray(law.yield_stress + law.consistency * _not_negative(shear_rate) ** law.flow_index)
 
     def shear_rate(self, shear_stress: FloatOrArray) -> Array:
         """``((tau - tau_y)/K)**(1/n)`` [1/s] at a shear stress [Pa], zero up to the yield stress."""
-        excess = np.maximum(_not_negative(shear_stress) - self.yield_stress, 0.0)
-        return np.asarray((excess / self.consistency) ** (1.0 / np.asarray(self.flow_index)))
+        law = self.as_herschel_bulkley()
+        excess = np.maximum(_not_negative(shear_stress) - law.yield_stress, 0.0)
+        return np.asarray((excess / law.consistency) ** (1.0 / np.asarray(law.flow_index)))
 
     def _viscosity_at_rest(self) -> Array:
-        n = np.asarray(self.flow_index)
-        unyielded = (np.asarray(self.yield_stress) > 0) | (n < 1)
-        return np.where(unyielded, np.inf, np.where(n > 1, 0.0, self.consistency))
+        law = self.as_herschel_bulkley()
+        n = np.asarray(law.flow_index)
+        unyielded = (np.asarray(law.yield_stress) > 0) | (n < 1)
+        return np.where(unyielded, np.inf, np.where(n > 1, 0.0, law.consistency))
 
 
 @dataclass(frozen=True)
@@ -89,12 +85,10 @@ class Newtonian(GeneralizedPowerLaw):
 
     key = "newtonian"
     yield_stress = 0.0
-    flow_index = 1.0
 
-    @property
-    def consistency(self) -> FloatOrArray:
-        """The viscosity: with n = 1 the consistency in Pa.s."""
-        return self.viscosity
+    def as_herschel_bulkley(self) -> HerschelBulkley:
+        """No yield stress, n = 1, the viscosity for consistency."""
+        return HerschelBulkley(0.0, self.viscosity, 1.0)
 
 
 @dataclass(frozen=True)
@@ -107,6 +101,10 @@ class PowerLaw(GeneralizedPowerLaw):
     key = "power-law"
     yield_stress = 0.0
 
+    def as_herschel_bulkley(self) -> HerschelBulkley:
+        """No yield stress."""
+        return HerschelBulkley(0.0, self.consistency, self.flow_index)
+
 
 @dataclass(frozen=True)
 class Bingham(GeneralizedPowerLaw):
@@ -116,12 +114,10 @@ class Bingham(GeneralizedPowerLaw):
     plastic_viscosity: FloatOrArray
 
     key = "bingham"
-    flow_index = 1.0
 
-    @property
-    def consistency(self) -> FloatOrArray:
-        """The plastic viscosity: with n = 1 the consistency in Pa.s."""
-        return self.plastic_viscosity
+    def as_herschel_bulkley(self) -> HerschelBulkley:
+        """Take n = 1, the plastic viscosity for consistency."""
+        return HerschelBulkley(self.yield_stress, self.plastic_viscosity, 1.0)
 
 
 @dataclass(frozen=True)
@@ -133,6 +129,10 @@ class HerschelBulkley(GeneralizedPowerLaw):
     flow_index: FloatOrArray
 
     key = "herschel-bulkley"
+
+    def as_herschel_bulkley(self) -> HerschelBulkley:
+        """The fluid itself."""
+        return self
 
 
 @dataclass(frozen=True)
