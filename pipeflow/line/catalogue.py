@@ -51,7 +51,7 @@ MATERIALS = {
 
 def table(name: str) -> list[dict[str, str]]:
     """Rows of a table of ``pipeflow/data``, by column, its ``#`` lines of source left out."""
-    text = files("pipeflow").joinpath("data", name).read_text(encoding="utf-8")
+    text = files("pipeflow").joinpath("data").joinpath(name).read_text(encoding="utf-8")
     return list(csv.DictReader(line for line in text.splitlines() if not line.startswith("#")))
 
 
