@@ -1,0 +1,190 @@
+"""From laminar to turbulent flow: one rising curve of wall shear stress against velocity.
+
+The four steps are those of ``docs/theory.md``: the laminar edge where Slatter's Re_3 reaches its critical value, the
+candidate turbulent edge at 4000/2100 of the Reynolds number there, its correction so that the curve keeps rising, and a
+straight line in ln V - ln tau_w between the two.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from pipeflow.arrays import Array
+from pipeflow.friction.laminar import TubeLaw, Wall
+from pipeflow.friction.rootfind import find_root
+from pipeflow.friction.turbulent import Bore, TurbulentMethod
+from pipeflow.sources import Source
+
+NEWTONIAN_CRITICAL = 2100.0
+LOG_BAND = float(np.log(4000.0 / 2100.0))
+GOLDEN = (np.sqrt(5.0) - 1.0) / 2.0
+HIGHEST_RATIO_INDEX = 0.416
+"""Index at which the Ryan–Johnson ratio is highest; below it the criterion is held, as measurements do not fall."""
+
+RYAN_JOHNSON = Source(
+    key="ryan-johnson",
+    title="Critical Re_MR of power-law fluids",
+    citation="Ryan & Johnson, AIChE J. 5, 433 (1959)",
+    note="held at its n = 0.416 value below that index, where measurements contradict its fall",
+)
+SLATTER = Source(
+    key="slatter",
+    title="End of laminar flow: Reynolds number of the sheared annulus, Re_3",
+    citation="Slatter, PhD thesis, University of Cape Town (1994); Hydrotransport 13 (1996)",
+    note="with the Ryan–Johnson value where there is no plug",
+)
+
+
+def ryan_johnson(flow_index: Array) -> Array:
+    """Critical Re_MR of a power-law fluid, scaled to 2100 at n = 1.
+
+    Ryan & Johnson (1959): ``6464 n/(1+3n)² (2+n)^((2+n)/(1+n))``, of which 6464 is a rounding to 2099 at n = 1.
+    """
+    n = np.maximum(flow_index, HIGHEST_RATIO_INDEX)
+    ratio = n / (1.0 + 3.0 * n) ** 2 * (2.0 + n) ** ((2.0 + n) / (1.0 + n))
+    at_one = 3.0**1.5 / 16.0
+    return NEWTONIAN_CRITICAL * ratio / at_one
+
+
+def log_reynolds_mr(wall: Wall, bore: Bore) -> Array:
+    """``ln Re_MR = ln(8 rho V²/tau_w)`` of laminar flow at this wall stress."""
+    return np.log(bore.density * bore.diameter**2 / (8.0 * wall.stress)) + 2.0 * wall.log_bulk_rate
+
+
+def slatter(wall: Wall, law: TubeLaw, bore: Bore) -> Array:
+    """``ln(Re_3/critical)``, negative in laminar flow; Re_3 with the model's own law in the annulus.
+
+    The critical value is 2100 at the plug and the Ryan–Johnson one, as Re_3 reads it, without a plug.
+    """
+    rate, stress = law.annulus(wall)
+    velocity_squared = (bore.diameter * wall.sheared * rate) ** 2 / 8.0
+    log_re3 = np.log(bore.density * velocity_squared / (wall.stress * stress)) + 2.0 * wall.log_rate
+    n = law.flow_index(wall)
+    without_plug = ryan_johnson(n) * ((3.0 * n + 1.0) / (4.0 * n)) ** n
+    return log_re3 - np.log(NEWTONIAN_CRITICAL * wall.plug + without_plug * wall.sheared)
+
+
+@dataclass(frozen=True)
+class Edges:
+    """Where laminar flow ends and turbulent flow may begin; logarithms, of SI values; nan where there is no transition.
+
+    Attributes
+    ----------
+    log_excess, log_velocity, log_reynolds : Array
+        End of laminar flow: ln(tau_w - tau_y), ln V and ln Re_MR there.
+    band_log_excess, band_log_velocity : Array
+        Candidate start of turbulent flow: the velocity of 4000/2100 times that Re_MR, and its laminar wall stress.
+    """
+
+    log_excess: Array
+    log_velocity: Array
+    log_reynolds: Array
+    band_log_excess: Array
+    band_log_velocity: Array
+
+
+def transition_edges(law: TubeLaw, bore: Bore, start: Array) -> Edges:
+    """Steps 1 and 2 of the transition, looked for from any laminar wall stress ``start = ln(tau_w - tau_y)``."""
+    edge = find_root(_criterion, start, _reynolds_slope(law.wall(start)), (law, bore))
+    at_edge = law.wall(edge)
+    log_reynolds = log_reynolds_mr(at_edge, bore)
+    slope = _reynolds_slope(at_edge)
+    band = find_root(_reynolds_excess, edge + LOG_BAND / slope, slope, (law, bore, log_reynolds + LOG_BAND))
+    log_eighth = np.log(bore.diameter / 8.0)
+    return Edges(
+        edge,
+        at_edge.log_bulk_rate + log_eighth,
+        log_reynolds,
+        band,
+        law.wall(band).log_bulk_rate + log_eighth,
+    )
+
+
+def _criterion(log_excess: Array, law: TubeLaw, bore: Bore) -> tuple[Array, None]:
+    return slatter(law.wall(log_excess), law, bore), None
+
+
+def _reynolds_excess(log_excess: Array, law: TubeLaw, bore: Bore, target: Array) -> tuple[Array, Array]:
+    wall = law.wall(log_excess)
+    return log_reynolds_mr(wall, bore) - target, _reynolds_slope(wall)
+
+
+def _reynolds_slope(wall: Wall) -> Array:
+    """``d ln Re_MR/d ln(tau_w - tau_y)``; not positive where the fluid thickens too fast ever to leave laminar flow."""
+    return 2.0 * wall.slope - wall.sheared
+
+
+@dataclass(frozen=True)
+class TurbulentBranch:
+    """Step 3: the part of a turbulent law that continues the laminar curve.
+
+    Attributes
+    ----------
+    log_excess : Array
+        ln(tau_w - tau_y) above which its roots are looked for.
+    log_velocity : Array
+        ln V at which fully turbulent flow begins.
+    governed_by_law : array of bool
+        The law reaches that velocity above ``log_excess``; else the branch begins at ``log_excess`` itself.
+    """
+
+    method: TurbulentMethod
+    law: TubeLaw
+    bore: Bore
+    log_excess: Array
+    log_velocity: Array
+    governed_by_law: NDArray[np.bool_]
+
+    @classmethod
+    def after(cls, edges: Edges, method: TurbulentMethod, law: TubeLaw, bore: Bore) -> TurbulentBranch:
+        """Find where the branch begins: the law's root, the laminar stress at the candidate, or its turning point."""
+        lowest = edges.band_log_excess
+        if not method.rising and np.any(law.yield_stress > 0):
+            lowest = np.maximum(lowest, last_turning_point(method, law, bore))
+        at_lowest = _log_velocity(lowest, method, law, bore)
+        by_law = ~(at_lowest >= edges.band_log_velocity)
+        begin = np.where(by_law, edges.band_log_velocity, at_lowest)
+        return cls(method, law, bore, lowest, begin, by_law)
+
+    def log_excess_at(self, log_velocity: Array) -> Array:
+        """``ln(tau_w - tau_y)`` at ``ln V``, which is not below :attr:`log_velocity`."""
+        friction = 0.003 * self.bore.density * np.exp(2.0 * log_velocity) - self.law.yield_stress
+        start = np.maximum(np.log(np.maximum(friction, 1e-300)), self.log_excess)
+        unneeded = ~self.governed_by_law & (log_velocity <= self.log_velocity)
+        start = np.where(unneeded, np.nan, start)
+        slope = 0.55 * self.law.wall(start).sheared
+        columns = (self.method, self.law, self.bore, log_velocity)
+        root = find_root(_turbulent_excess, start, slope, columns, self.log_excess)
+        return np.where(unneeded, self.log_excess, root)
+
+
+def _log_velocity(log_excess: Array, method: TurbulentMethod, law: TubeLaw, bore: Bore) -> Array:
+    velocity = method.velocity(law.wall(log_excess), law, bore)
+    return np.log(np.where(velocity > 0, velocity, np.nan))
+
+
+def _turbulent_excess(
+    log_excess: Array, method: TurbulentMethod, law: TubeLaw, bore: Bore, target: Array
+) -> tuple[Array, None]:
+    return _log_velocity(log_excess, method, law, bore) - target, None
+
+
+def last_turning_point(method: TurbulentMethod, law: TubeLaw, bore: Bore) -> Array:
+    """``ln(tau_w - tau_y)`` above which the velocity of a turbulent law only rises; -inf where it always does.
+
+    With n' taken at the turbulent wall stress, n' -> 0 at the plug bends the curve back: roots below are false.
+    """
+    ladder = np.log(law.yield_stress) + np.arange(-5.0, 9.0, 0.25)[:, None]
+    velocity = np.stack([method.velocity(law.wall(rung), law, bore) for rung in ladder])
+    falling = ~(np.diff(velocity, axis=0) > 0)
+    last = falling.shape[0] - 1 - np.argmax(falling[::-1], axis=0)
+    column = np.arange(ladder.shape[1])
+    low, high = ladder[last, column], ladder[np.minimum(last + 2, len(ladder) - 1), column]
+    for _ in range(45):
+        first, second = high - GOLDEN * (high - low), low + GOLDEN * (high - low)
+        rising = method.velocity(law.wall(first), law, bore) < method.velocity(law.wall(second), law, bore)
+        low, high = np.where(rising, low, first), np.where(rising, second, high)
+    return np.where(falling.any(axis=0), high, -np.inf)
