@@ -37,7 +37,7 @@ class Methods:
 
 @dataclass(frozen=True)
 class Pump:
-    """A candidate pump: ``speed`` and ``curve_speed`` in rad/s, ``curve`` the path of its water curve as written."""
+    """A candidate pump: speeds in rad/s, ``curve`` the path of its water curve as written in the case."""
 
     name: str
     kind: str

@@ -1,0 +1,197 @@
+"""Scenarios: the case again with some of its nodes changed by key path."""
+
+from __future__ import annotations
+
+import re
+from dataclasses import dataclass, replace
+from difflib import get_close_matches
+
+from pipeflow.case.checking import examine
+from pipeflow.case.nodes import Finding, Mapping, Node, Scalar, Sequence, join, kind, label
+from pipeflow.case.schema import MAX_SCENARIOS, CasePart
+from pipeflow.units import echo
+
+_LIST_STEP = re.compile(r"(route|pumps)\[")
+
+
+@dataclass(frozen=True)
+class _Change:
+    """One line of a scenario: the path, the place of the path, and the new value."""
+
+    path: str
+    key: Scalar
+    value: Node
+
+
+class _PathError(Exception):
+    """A path that leads nowhere; the message says where it stops."""
+
+
+def read_scenarios(tree: Node, known: list[Finding]) -> tuple[dict[str, CasePart], list[Finding]]:
+    """Read the case once for each scenario.
+
+    Parameters
+    ----------
+    tree : Node
+        The whole case.
+    known : list of Finding
+        What is wrong with the case itself, not to be said again.
+
+    Returns
+    -------
+    tuple
+        What each scenario makes of the case, by name, and what is wrong with the scenarios.
+    """
+    node = tree.values.get("scenarios") if isinstance(tree, Mapping) else None
+    if node is None or node.faulty:
+        return {}, []
+    if not isinstance(node, Mapping):
+        return {}, [Finding(node.line, node.column, "scenarios", _map_needed(node, "named sets of changes"))]
+    if len(node.values) > MAX_SCENARIOS:
+        message = f"{len(node.values)} scenarios; at most {MAX_SCENARIOS} are accepted"
+        return {}, [Finding(node.line, node.column, "scenarios", message)]
+    parts, found = {}, []
+    for name in node.values:
+        part, wrong = _read_one(tree, node, name, known)
+        found += wrong
+        if part is not None:
+            parts[name] = part
+    return parts, found
+
+
+def _map_needed(node: Node, what: str) -> str:
+    return f"found a {kind(node)}; a map of {what} is needed"
+
+
+def _read_one(
+    tree: Node, scenarios: Mapping, name: str, known: list[Finding]
+) -> tuple[CasePart | None, list[Finding]]:
+    node, home = scenarios.values[name], join("scenarios", name)
+    if node.faulty:
+        return None, []
+    if not isinstance(node, Mapping):
+        return None, [Finding(node.line, node.column, home, _map_needed(node, "changes by key path"))]
+    changes = [_Change(path, node.keys[path], value) for path, value in node.values.items()]
+    changed, wrong = _all_made(tree, changes)
+    part, faults = examine(changed)
+    caused = [_at_home(fault, changes) for fault in faults if fault not in known]
+    found = [replace(fault, key_path=f"{home}.{fault.key_path}") for fault in [*wrong, *caused]]
+    return part, found
+
+
+def _all_made(tree: Node, changes: list[_Change]) -> tuple[Node, list[Finding]]:
+    wrong = []
+    for change in changes:
+        try:
+            tree = _made(tree, change)
+        except _PathError as error:
+            wrong.append(Finding(change.key.line, change.key.column, change.path, str(error)))
+    return tree, wrong
+
+
+def _made(tree: Node, change: _Change) -> Node:
+    if isinstance(change.value, Scalar) and change.value.is_null and not change.value.text:
+        raise _PathError("no value; give one, or null to leave an optional key out")
+    changed = _set(tree, _steps(tree, change.path), change, "")
+    if changed is None:
+        raise _PathError("found nothing to change")
+    return changed
+
+
+def _steps(tree: Node, path: str) -> list[str]:
+    """Split a key path; the name of an element is one step, whatever it holds."""
+    if path.split(".")[0] == "scenarios":
+        raise _PathError("a scenario cannot change the scenarios")
+    match = _LIST_STEP.match(path)
+    if match is None:
+        return path.split(".")
+    items, rest = match.group(1), path[match.end() :]
+    names = _names(tree, items)
+    fitting = [name for name in names if rest == f"{name}]" or rest.startswith(f"{name}].")]
+    if not fitting:
+        raise _PathError(_no_such_item(items, rest, names))
+    name = max(fitting, key=len)
+    inner = rest[len(name) + 2 :]
+    return [items, name, *(inner.split(".") if inner else [])]
+
+
+def _names(tree: Node, items: str) -> list[str]:
+    node = tree.values.get(items) if isinstance(tree, Mapping) else None
+    return _labels(node) if isinstance(node, Sequence) else []
+
+
+def _labels(node: Sequence) -> list[str]:
+    return [label(item, number) for number, item in enumerate(node.items, 1)]
+
+
+def _no_such_item(items: str, rest: str, names: list[str]) -> str:
+    written = rest.partition("]")[0]
+    near = get_close_matches(written[:100], names, n=1, cutoff=0.6)
+    meant = f"; did you mean {items}[{near[0]}]?" if near else ""
+    return f"found no item {echo(written)} in {items}{meant}"
+
+
+def _set(node: Node, steps: list[str], change: _Change, path: str) -> Node | None:
+    """Give the node with the change made below it, or None where the change takes the node away."""
+    if not steps:
+        is_null = isinstance(change.value, Scalar) and change.value.is_null
+        return None if is_null else change.value
+    if isinstance(node, Mapping):
+        return _set_key(node, steps, change, path)
+    if isinstance(node, Sequence):
+        return _set_item(node, steps, change, path)
+    raise _PathError(f"'{path}' is a single value in the case; give it as a whole")
+
+
+def _set_key(node: Mapping, steps: list[str], change: _Change, path: str) -> Mapping:
+    key, *rest = steps
+    inner = node.values.get(key) or Mapping(change.key.line, change.key.column)
+    value = _set(inner, rest, change, join(path, key))
+    keys, values = dict(node.keys), dict(node.values)
+    if value is None:
+        if values.pop(key, None) is None:
+            raise _PathError("the case gives no such key to leave out")
+        keys.pop(key)
+    else:
+        values[key] = value
+        keys[key] = node.keys.get(key, change.key) if rest else change.key
+    return Mapping(node.line, node.column, keys, values, node.faulty)
+
+
+def _set_item(node: Sequence, steps: list[str], change: _Change, path: str) -> Sequence:
+    name, *rest = steps
+    labels = _labels(node)
+    if name not in labels:
+        raise _PathError(f"'{path}' is a list; write {path}[name of the item]")
+    place = labels.index(name)
+    item = _set(node.items[place], rest, change, f"{path}[{name}]")
+    items = [*node.items[:place], *([] if item is None else [item]), *node.items[place + 1 :]]
+    return Sequence(node.line, node.column, items, node.faulty)
+
+
+def _at_home(fault: Finding, changes: list[_Change]) -> Finding:
+    """Point a fault to the scenario: one of its own stays, any other moves to the nearest change."""
+    own = {place for change in changes for place in [_place(change.key), *_places(change.value)]}
+    if (fault.line, fault.column) in own:
+        return fault
+    nearest = max(changes, key=lambda change: _common_length(change.path, fault.key_path))
+    return replace(fault, line=nearest.key.line, column=nearest.key.column)
+
+
+def _common_length(one: str, other: str) -> int:
+    pairs = zip(one, other, strict=False)
+    return next((count for count, (a, b) in enumerate(pairs) if a != b), min(len(one), len(other)))
+
+
+def _place(node: Node) -> tuple[int, int]:
+    return node.line, node.column
+
+
+def _places(node: Node) -> list[tuple[int, int]]:
+    places = [_place(node)]
+    if isinstance(node, Mapping):
+        places += [_place(key) for key in node.keys.values()]
+        places += [place for value in node.values.values() for place in _places(value)]
+    elif isinstance(node, Sequence):
+        places += [place for item in node.items for place in _places(item)]
+    return places
