@@ -119,11 +119,11 @@ def _number(value: object) -> float:
     return number
 
 
-def _text(longest: int, layout: str = "") -> Callable[[object], str]:
+def _text(longest: int, what: str, layout: str = "") -> Callable[[object], str]:
     def read(value: object) -> str:
-        text = _scalar(value, "a text").text.strip()
+        text = _scalar(value, what).text.strip()
         if not text:
-            raise no_value("a text")
+            raise no_value(what)
         if len(text) > longest:
             raise said(f"found {len(text)} characters; at most {longest} are accepted")
         odd = next((char for char in text if not (char.isprintable() or char in layout)), None)
@@ -160,8 +160,8 @@ def fitting_keys() -> tuple[str, ...]:
     return tuple(row["key"] for row in table("fittings.csv"))
 
 
-Name = Annotated[str, BeforeValidator(_text(NAME_LENGTH))]
-Text = Annotated[str, BeforeValidator(_text(TEXT_LENGTH, "\n\t"))]
+Name = Annotated[str, BeforeValidator(_text(NAME_LENGTH, "a name"))]
+Text = Annotated[str, BeforeValidator(_text(TEXT_LENGTH, "a text", "\n\t"))]
 Number = Annotated[float, BeforeValidator(_number)]
 Count = Annotated[float, Field(ge=0, le=10_000), BeforeValidator(_number)]
 FlowIndex = Annotated[float, Field(gt=0, le=2), BeforeValidator(_number)]

@@ -185,6 +185,9 @@ class _Builder:
             parent.key = None
 
     def _add_entry(self, mapping: Mapping, key: Node, value: Node) -> None:
+        if isinstance(key, Scalar) and key.faulty:
+            mapping.faulty = True
+            return
         fault = _fault_of_key(mapping, key)
         if fault is not None or not isinstance(key, Scalar):
             mapping.faulty |= isinstance(key, Scalar) and key.text == "<<"
@@ -211,14 +214,19 @@ def kind(node: Node) -> str:
     return {Scalar: "single value", Mapping: "map", Sequence: "list"}[type(node)]
 
 
-def label(item: Node | None, number: int) -> str:
-    """Name an item of a list in a key path: by its name, or by its number from 1."""
+def name_of(item: Node | None) -> str:
+    """Give the name an item of a list carries, empty if it carries none."""
     if isinstance(item, Mapping):
         for key in NAME_KEYS:
             name = item.values.get(key)
-            if isinstance(name, Scalar) and name.text.strip() and not name.faulty:
-                return shown(name.text.strip())
-    return str(number)
+            if isinstance(name, Scalar) and not name.is_null and not name.faulty:
+                return name.text.strip()
+    return ""
+
+
+def label(item: Node | None, number: int) -> str:
+    """Name an item of a list in a key path: by its name, or by its number from 1."""
+    return shown(name_of(item)) or str(number)
 
 
 def join(path: str, key: str) -> str:

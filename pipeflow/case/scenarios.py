@@ -7,9 +7,14 @@ from dataclasses import dataclass, replace
 from difflib import get_close_matches
 
 from pipeflow.case.checking import examine
-from pipeflow.case.nodes import Finding, Mapping, Node, Scalar, Sequence, join, kind, label
+from pipeflow.case.nodes import Finding, Mapping, Node, Scalar, Sequence, join, kind, name_of, shown
 from pipeflow.case.schema import MAX_SCENARIOS, CasePart
 from pipeflow.units import echo
+
+MAX_CHANGES = 200
+MAX_PATH = 300
+MAX_KNOWN = 200
+"""Faults of the case itself beyond which the scenarios wait until those are mended."""
 
 _LIST_STEP = re.compile(r"(route|pumps)\[")
 
@@ -50,9 +55,11 @@ def read_scenarios(tree: Node, known: list[Finding]) -> tuple[dict[str, CasePart
     if len(node.values) > MAX_SCENARIOS:
         message = f"{len(node.values)} scenarios; at most {MAX_SCENARIOS} are accepted"
         return {}, [Finding(node.line, node.column, "scenarios", message)]
+    if len(known) > MAX_KNOWN:
+        return {}, []
     parts, found = {}, []
     for name in node.values:
-        part, wrong = _read_one(tree, node, name, known)
+        part, wrong = _read_one(tree, node, name, set(known))
         found += wrong
         if part is not None:
             parts[name] = part
@@ -60,21 +67,25 @@ def read_scenarios(tree: Node, known: list[Finding]) -> tuple[dict[str, CasePart
 
 
 def _map_needed(node: Node, what: str) -> str:
-    return f"found a {kind(node)}; a map of {what} is needed"
+    found = "no value" if isinstance(node, Scalar) and node.is_null else f"found a {kind(node)}"
+    return f"{found}; a map of {what} is needed"
 
 
 def _read_one(
-    tree: Node, scenarios: Mapping, name: str, known: list[Finding]
+    tree: Node, scenarios: Mapping, name: str, known: set[Finding]
 ) -> tuple[CasePart | None, list[Finding]]:
     node, home = scenarios.values[name], join("scenarios", name)
     if node.faulty:
         return None, []
     if not isinstance(node, Mapping):
         return None, [Finding(node.line, node.column, home, _map_needed(node, "changes by key path"))]
+    if len(node.values) > MAX_CHANGES:
+        message = f"{len(node.values)} changes; at most {MAX_CHANGES} are accepted"
+        return None, [Finding(node.line, node.column, home, message)]
     changes = [_Change(path, node.keys[path], value) for path, value in node.values.items()]
     changed, wrong = _all_made(tree, changes)
     part, faults = examine(changed)
-    caused = [_at_home(fault, changes) for fault in faults if fault not in known]
+    caused = _at_home([fault for fault in faults if fault not in known], changes)
     found = [replace(fault, key_path=f"{home}.{fault.key_path}") for fault in [*wrong, *caused]]
     return part, found
 
@@ -85,7 +96,7 @@ def _all_made(tree: Node, changes: list[_Change]) -> tuple[Node, list[Finding]]:
         try:
             tree = _made(tree, change)
         except _PathError as error:
-            wrong.append(Finding(change.key.line, change.key.column, change.path, str(error)))
+            wrong.append(Finding(change.key.line, change.key.column, shown(change.path), str(error)))
     return tree, wrong
 
 
@@ -100,6 +111,8 @@ def _made(tree: Node, change: _Change) -> Node:
 
 def _steps(tree: Node, path: str) -> list[str]:
     """Split a key path; the name of an element is one step, whatever it holds."""
+    if len(path) > MAX_PATH:
+        raise _PathError("no key path is that long")
     if path.split(".")[0] == "scenarios":
         raise _PathError("a scenario cannot change the scenarios")
     match = _LIST_STEP.match(path)
@@ -107,21 +120,21 @@ def _steps(tree: Node, path: str) -> list[str]:
         return path.split(".")
     items, rest = match.group(1), path[match.end() :]
     names = _names(tree, items)
-    fitting = [name for name in names if rest == f"{name}]" or rest.startswith(f"{name}].")]
+    fitting = [name for name in names if name and (rest == f"{name}]" or rest.startswith(f"{name}]."))]
     if not fitting:
         raise _PathError(_no_such_item(items, rest, names))
     name = max(fitting, key=len)
     inner = rest[len(name) + 2 :]
-    return [items, name, *(inner.split(".") if inner else [])]
+    return [items, f"[{name}]", *(inner.split(".") if inner else [])]
 
 
 def _names(tree: Node, items: str) -> list[str]:
     node = tree.values.get(items) if isinstance(tree, Mapping) else None
-    return _labels(node) if isinstance(node, Sequence) else []
+    return _names_in(node) if isinstance(node, Sequence) else []
 
 
-def _labels(node: Sequence) -> list[str]:
-    return [label(item, number) for number, item in enumerate(node.items, 1)]
+def _names_in(node: Sequence) -> list[str]:
+    return [name_of(item) for item in node.items]
 
 
 def _no_such_item(items: str, rest: str, names: list[str]) -> str:
@@ -159,21 +172,23 @@ def _set_key(node: Mapping, steps: list[str], change: _Change, path: str) -> Map
 
 
 def _set_item(node: Sequence, steps: list[str], change: _Change, path: str) -> Sequence:
-    name, *rest = steps
-    labels = _labels(node)
-    if name not in labels:
+    step, *rest = steps
+    names = [f"[{name}]" for name in _names_in(node)]
+    if step not in names:
         raise _PathError(f"'{path}' is a list; write {path}[name of the item]")
-    place = labels.index(name)
-    item = _set(node.items[place], rest, change, f"{path}[{name}]")
+    place = names.index(step)
+    item = _set(node.items[place], rest, change, path + step)
     items = [*node.items[:place], *([] if item is None else [item]), *node.items[place + 1 :]]
     return Sequence(node.line, node.column, items, node.faulty)
 
 
-def _at_home(fault: Finding, changes: list[_Change]) -> Finding:
-    """Point a fault to the scenario: one of its own stays, any other moves to the nearest change."""
+def _at_home(faults: list[Finding], changes: list[_Change]) -> list[Finding]:
+    """Point faults to the scenario: one at its own places stays, any other moves to the nearest change."""
     own = {place for change in changes for place in [_place(change.key), *_places(change.value)]}
-    if (fault.line, fault.column) in own:
-        return fault
+    return [fault if (fault.line, fault.column) in own else _moved(fault, changes) for fault in faults]
+
+
+def _moved(fault: Finding, changes: list[_Change]) -> Finding:
     nearest = max(changes, key=lambda change: _common_length(change.path, fault.key_path))
     return replace(fault, line=nearest.key.line, column=nearest.key.column)
 

@@ -59,7 +59,7 @@ METHOD_KEYS: Final[dict[str, tuple[str, ...]]] = {
 """The methods a case may ask for, by the key it asks with."""
 
 PUMP_KINDS: Final = ("centrifugal", "positive-displacement")
-MAX_ELEMENTS = 1000
+MAX_ELEMENTS = 500
 MAX_PUMPS = 20
 MAX_SCENARIOS = 50
 RELATIVE_ROUGHNESS_MAX = 0.1
@@ -186,14 +186,14 @@ class FlowPart(Part):
     @check("design", "maximum")
     @classmethod
     def _in_order(cls, value: FlowValue | None, info: ValidationInfo) -> FlowValue | None:
-        for key in ("minimum", "design"):
-            lower = info.data.get(key)
-            if lower is None or value is None or key == info.field_name:
-                continue
-            if lower.is_mass != value.is_mass:
-                raise said(f"a mass flow beside a volume flow as '{key}'; give all flows alike")
-            if lower.value > value.value:
-                raise said(f"less than '{key}'; minimum <= design <= maximum is needed")
+        key = "minimum" if info.field_name == "design" else "design"
+        lower: FlowValue | None = info.data.get(key)
+        if lower is None or value is None:
+            return value
+        if lower.is_mass != value.is_mass:
+            raise said(f"a mass flow beside a volume flow or the reverse: '{key}' is given otherwise")
+        if lower.value > value.value:
+            raise said(f"less than '{key}'; minimum <= design <= maximum is needed")
         return value
 
 
@@ -220,7 +220,7 @@ class VesselPart(Part):
 def _new(name: str, info: ValidationInfo) -> str:
     """Refuse a name given before among its like; the context of a validation remembers the names."""
     context: dict[str, set[str]] = info.context or {}
-    names = context.setdefault("pump" if info.field_name == "name" else "element", set())
+    names = context["pump" if info.field_name == "name" else "element"]
     if name in names:
         raise said(f"the name {echo(name)} is taken above; names must be unique")
     names.add(name)
@@ -245,7 +245,7 @@ class PipePart(Part):
     length: Length
     rise: Rise = 0.0
     material: Annotated[str, choice("material", lambda: tuple(MATERIALS))] | None = None
-    roughness: Roughness | None = None
+    roughness: Annotated[Roughness | None, Field(validate_default=True)] = None
     fittings: dict[Annotated[str, AfterValidator(_fitting)], Count] = Field(default_factory=dict)
 
     @check("diameter")
@@ -255,7 +255,9 @@ class PipePart(Part):
         if has_size and value is not None:
             raise said("'size' is given too; give one of 'size' and 'diameter'")
         if not has_size and value is None:
-            raise needs("size", "diameter", message="give 'size' (NPS 8 Sch 40) or 'diameter' (inside)")
+            raise needs(
+                "size", "diameter", message="missing; give 'size' (NPS 8 Sch 40) or 'diameter' (inside)"
+            )
         return value
 
     @check("rise")
@@ -279,9 +281,13 @@ class PipePart(Part):
     def _smaller_than_the_bore(cls, value: float | None, info: ValidationInfo) -> float | None:
         size: PipeSize | None = info.data.get("size")
         diameter = size.inside_diameter if size else info.data.get("diameter")
-        if value is not None and diameter is not None and value > RELATIVE_ROUGHNESS_MAX * diameter:
-            most = RELATIVE_ROUGHNESS_MAX * diameter * 1e3
-            raise said(f"too rough for the bore: at most a tenth of it, {most:.3g} mm")
+        default = MATERIALS[info.data.get("material") or (size.material if size else "steel")]
+        roughness = default.roughness if value is None else value
+        if diameter is not None and roughness > RELATIVE_ROUGHNESS_MAX * diameter:
+            most = f"at most a tenth of the bore, {RELATIVE_ROUGHNESS_MAX * diameter * 1e3:.3g} mm"
+            if value is None:
+                raise needs("roughness", message=f"missing; {default.name}'s is too rough here: {most}")
+            raise said(f"too rough: {most}")
         return value
 
     @property

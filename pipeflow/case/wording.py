@@ -92,27 +92,31 @@ def _keys(node: Node | None) -> dict[str, Scalar]:
     return node.keys if isinstance(node, Mapping) else {}
 
 
-def _accepted(parts: tuple[str, ...]) -> list[str]:
+def _accepted(parts: tuple[str, ...]) -> tuple[str, ...]:
     part = PARTS_AT.get(parts)
-    return list(part.model_fields) if part else []
+    return tuple(part.model_fields) if part else ()
 
 
 def _suggest(faults: list[Fault]) -> None:
     """Find the name meant, for so many faults that a file of nothing but slips is still answered at once."""
     asked = [fault for fault in faults if fault.kind in ("extra_forbidden", "choice", "union_tag_not_found")]
-    for fault in asked[:MAX_SUGGESTIONS]:
-        fault.suggestion = _nearest(*_question(fault))
+    answers: dict[tuple[str, tuple[str, ...]], str] = {}
+    for fault in asked:
+        question = _question(fault)
+        if question not in answers and len(answers) < MAX_SUGGESTIONS:
+            answers[question] = _nearest(*question)
+        fault.suggestion = answers.get(question, "")
 
 
-def _question(fault: Fault) -> tuple[str, list[str]]:
+def _question(fault: Fault) -> tuple[str, tuple[str, ...]]:
     if fault.kind == "choice":
-        return fault.details["found"], list(fault.details["options"])
+        return fault.details["found"], tuple(fault.details["options"])
     if fault.kind == "union_tag_not_found":
-        return next(iter(_keys(fault.node)), ""), ["pipe", "equipment"]
+        return next(iter(_keys(fault.node)), ""), ("pipe", "equipment")
     return fault.key, _accepted(fault.parts[:-1])
 
 
-def _nearest(word: str, options: list[str]) -> str:
+def _nearest(word: str, options: tuple[str, ...]) -> str:
     by_case = {option.casefold().replace("_", "-").replace(" ", "-"): option for option in options}
     plain = word[:ECHO_LENGTH].casefold().replace("_", "-").replace(" ", "-")
     near = get_close_matches(plain, list(by_case), n=1, cutoff=0.6)
@@ -223,7 +227,7 @@ def _map_needed(fault: Fault) -> str:
 def _element(fault: Fault) -> str:
     needed = "an element starts with 'pipe: its name' or 'equipment: its name'"
     first = next(iter(_keys(fault.node)), None)
-    found = f"found the keys {echo(first)} …" if first else _found(fault)
+    found = f"found the key {echo(first)}" if first else _found(fault)
     return f"{found}; {_did_you_mean(fault)}{needed}"
 
 
