@@ -22,6 +22,11 @@ class Range:
         upper = "" if self.upper is None else f" <= {self.upper:g}"
         return f"{lower}{self.variable}{upper}"
 
+    def holds(self, value: float, tolerance: float = 0.0) -> bool:
+        """Whether a value lies in the range, bounds widened by a relative ``tolerance``."""
+        above = self.lower is None or value >= self.lower * (1.0 - tolerance)
+        return above and (self.upper is None or value <= self.upper * (1.0 + tolerance))
+
 
 @dataclass(frozen=True)
 class Source:

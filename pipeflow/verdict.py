@@ -13,7 +13,7 @@ class Check:
     """One limit held against one computed value.
 
     ``value`` and ``limit`` are in ``unit`` (None where the check could not be made); ``basis`` says in words what was
-    compared, at which flow, and on whose authority.
+    compared, at which flow, and on whose authority. ``value_upper`` is the figure a limit is judged on where it differs.
     """
 
     name: str
@@ -22,3 +22,4 @@ class Check:
     limit: float | None
     unit: str
     basis: str
+    value_upper: float | None = None

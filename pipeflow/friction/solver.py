@@ -17,7 +17,7 @@ from pipeflow.friction.transition import Edges, TurbulentBranch, slatter, transi
 from pipeflow.friction.turbulent import DEFAULT_METHOD, METHODS, Bore, TurbulentMethod
 from pipeflow.rheology import Rheology
 
-CHUNK = 8192
+CHUNK = 32768
 """Pipes solved at a time: their working arrays then stay in the processor's cache, and memory is bounded."""
 
 

@@ -37,6 +37,14 @@ SLATTER = Source(
     note="with the Ryan–Johnson value where there is no plug",
 )
 
+TRANSITION_LINE = Source(
+    key="transition-line",
+    title="Straight line in ln V - ln tau_w from the laminar edge to the turbulent edge",
+    citation="our own construction, docs/theory.md: one rising curve, no jump",
+    confidence="medium",
+    note="flow in the transition is unsteady; no published method predicts its loss closely",
+)
+
 
 def ryan_johnson(flow_index: Array) -> Array:
     """Critical Re_MR of a power-law fluid, scaled to 2100 at n = 1.

@@ -14,6 +14,7 @@ import numpy as np
 
 from pipeflow.arrays import Array
 from pipeflow.friction.laminar import TubeLaw, Wall
+from pipeflow.rheology import Rheology
 from pipeflow.sources import Range, Source
 
 
@@ -152,3 +153,13 @@ DEFAULT_METHOD = {
     "herschel-bulkley": WILSON_THOMAS,
     "casson": WILSON_THOMAS,
 }
+
+IN_FAMILY = (DODGE_METZNER, WILSON_THOMAS)
+"""Methods whose highest figure is the upper one of a non-Newtonian fluid."""
+
+
+def in_family(rheology: Rheology) -> tuple[str, ...]:
+    """Keys of the methods that make the upper figure of a rheology."""
+    if rheology.key == "newtonian":
+        return ()
+    return tuple(method.source.key for method in IN_FAMILY if rheology.key in method.models)

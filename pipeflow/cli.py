@@ -1,0 +1,96 @@
+"""The ``pipeflow`` command: reads arguments, hands them on, prints. Nothing is computed here."""
+
+from __future__ import annotations
+
+import os
+import sys
+from pathlib import Path
+from typing import TYPE_CHECKING, Annotated
+
+import typer
+
+from pipeflow.errors import PipeflowError
+
+if TYPE_CHECKING:
+    from pipeflow.study import Result
+
+FAILS, UNUSABLE, BUG = 1, 2, 3
+
+app = typer.Typer(
+    name="pipeflow",
+    help="Pressure drop, head and regime of pipelines for non-Newtonian slurries and pastes.",
+    no_args_is_help=True,
+    add_completion=False,
+    pretty_exceptions_enable=False,
+    rich_markup_mode=None,
+)
+
+
+def _version(wanted: bool) -> None:
+    if wanted:
+        from pipeflow import __version__
+
+        typer.echo(f"pipeflow {__version__}")
+        raise typer.Exit
+
+
+@app.callback()
+def _common(
+    version: Annotated[
+        bool, typer.Option("--version", callback=_version, is_eager=True, help="Print the version and stop.")
+    ] = False,
+) -> None:
+    """Take the options that stand before a command."""
+
+
+@app.command()
+def solve(
+    cases: Annotated[list[Path], typer.Argument(metavar="CASE...", help="Case files (YAML), docs/case-file.md.")],
+    as_json: Annotated[bool, typer.Option("--json", help="Print one JSON document a line, SI units.")] = False,
+) -> None:
+    """Pressure drop, head, regime, checks and cautions of each case.
+
+    Exit status: 0 every limit holds; 1 a limit or check fails; 2 a case can't be used.
+    """
+    raise typer.Exit(max(_solve_one(case, as_json) for case in cases))
+
+
+def _solve_one(path: Path, as_json: bool) -> int:
+    from pipeflow.case.loading import load_case
+    from pipeflow.study import solve as solve_case
+
+    try:
+        result = solve_case(load_case(path))
+    except PipeflowError as error:
+        typer.echo(str(error), err=True)
+        return error.exit_code
+    _print(result, as_json)
+    return FAILS if result.fails else 0
+
+
+def _print(result: Result, as_json: bool) -> None:
+    if as_json:
+        import json
+
+        from pipeflow.record import document
+
+        typer.echo(json.dumps(document(result), ensure_ascii=False, allow_nan=False))
+    else:
+        from pipeflow.report.terminal import print_result
+
+        print_result(result)
+
+
+def main() -> None:
+    """Run the command; an error that is none of the user's leaves with status 3 and says so."""
+    try:
+        app()
+    except BrokenPipeError:
+        # the reader of a pipe has seen enough; keep the interpreter from complaining when it flushes
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+    except Exception as error:  # noqa: BLE001
+        if os.environ.get("PIPEFLOW_TRACEBACK"):
+            raise
+        typer.echo(f"pipeflow: a bug of ours: {type(error).__name__}: {error}", err=True)
+        typer.echo("Please report it with the case file; PIPEFLOW_TRACEBACK=1 shows where.", err=True)
+        sys.exit(BUG)
