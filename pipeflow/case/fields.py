@@ -44,6 +44,11 @@ def said(message: str) -> PydanticCustomError:
     return PydanticCustomError("said", "{message}", {"message": message})
 
 
+def at_odds(message: str) -> PydanticCustomError:
+    """Make an error for a value that does not go with another; what was found is put before it."""
+    return PydanticCustomError("at_odds", "{message}", {"message": message})
+
+
 def needs(*keys: str, message: str) -> PydanticCustomError:
     """Make an error for the lack of one of some keys of the same map."""
     return PydanticCustomError("needs", "{message}", {"message": message, "keys": keys})

@@ -15,18 +15,23 @@ from pipeflow.units import echo
 
 MAX_DEPTH = 12
 NAME_KEYS = ("pipe", "equipment", "name")
+_CORE_TAG = "tag:yaml.org,2002:"
 _NULLS = ("", "~", "null", "Null", "NULL")
 _LOADER: Any = getattr(yaml, "CSafeLoader", yaml.SafeLoader)
 
 
 @dataclass(frozen=True)
 class Finding:
-    """One thing wrong: where (line and column from 1, key path) and what to tell the user."""
+    """One thing wrong: where (line and column from 1, key path) and what to tell the user.
+
+    ``is_lack`` tells that something is not there, which may follow from another finding.
+    """
 
     line: int | None
     column: int | None
     key_path: str
     message: str
+    is_lack: bool = False
 
 
 class UnreadableError(Exception):
@@ -148,7 +153,9 @@ class _Builder:
         if event.anchor is not None:
             self._note(event, f"found the anchor {echo('&' + event.anchor)}; anchors are not accepted")
         if event.tag is not None:
-            self._note(event, f"found the tag {echo(event.tag)}; tags are not accepted")
+            self._note(
+                event, f"found the tag {echo(event.tag.replace(_CORE_TAG, '!!'))}; tags are not accepted"
+            )
         return event.anchor is not None or event.tag is not None
 
     def _note(self, event: yaml.Event, message: str) -> None:
@@ -157,9 +164,9 @@ class _Builder:
     def _path(self) -> str:
         """Name the place the stack stands at."""
         path = ""
-        inner = [*(level.node for level in self._open[1:]), None]
-        for level, below in zip(self._open, inner, strict=True):
+        for depth, level in enumerate(self._open, 1):
             if isinstance(level.node, Sequence):
+                below = self._open[depth].node if depth < len(self._open) else None
                 path += f"[{label(below, len(level.node.items) + 1)}]"
             elif isinstance(level.key, Scalar):
                 path = join(path, level.key.text)

@@ -35,6 +35,12 @@ PARTS_AT: Final[dict[tuple[str, ...], type[Part]]] = {
 }
 """The part of the schema at a place of the file, the numbers of list items left out."""
 
+REASONS: Final = {
+    "flow_index": "no known fluid thickens more steeply",
+    "exponent": "the usual one is 2",
+}
+"""Why a number has its upper bound, by key."""
+
 EXAMPLES: Final = {
     "title": "Thickener underflow line",
     "density": "1420 kg/m3",

@@ -32,6 +32,10 @@ class _PathError(Exception):
     """A path that leads nowhere; the message says where it stops."""
 
 
+class _UnsureError(Exception):
+    """A path that may be right once the case itself is; the case has its own fault there."""
+
+
 def read_scenarios(tree: Node, known: list[Finding]) -> tuple[dict[str, CasePart], list[Finding]]:
     """Read the case once for each scenario.
 
@@ -85,7 +89,7 @@ def _read_one(
     changes = [_Change(path, node.keys[path], value) for path, value in node.values.items()]
     changed, wrong = _all_made(tree, changes)
     part, faults = examine(changed)
-    caused = _at_home([fault for fault in faults if fault not in known], changes)
+    caused = _caused([fault for fault in faults if fault not in known], changes, bool(known))
     found = [replace(fault, key_path=f"{home}.{fault.key_path}") for fault in [*wrong, *caused]]
     return part, found
 
@@ -95,6 +99,8 @@ def _all_made(tree: Node, changes: list[_Change]) -> tuple[Node, list[Finding]]:
     for change in changes:
         try:
             tree = _made(tree, change)
+        except _UnsureError:
+            continue
         except _PathError as error:
             wrong.append(Finding(change.key.line, change.key.column, shown(change.path), str(error)))
     return tree, wrong
@@ -121,6 +127,8 @@ def _steps(tree: Node, path: str) -> list[str]:
     items, rest = match.group(1), path[match.end() :]
     names = _names(tree, items)
     fitting = [name for name in names if name and (rest == f"{name}]" or rest.startswith(f"{name}]."))]
+    if not fitting and "" in names:
+        raise _UnsureError
     if not fitting:
         raise _PathError(_no_such_item(items, rest, names))
     name = max(fitting, key=len)
@@ -140,7 +148,7 @@ def _names_in(node: Sequence) -> list[str]:
 def _no_such_item(items: str, rest: str, names: list[str]) -> str:
     written = rest.partition("]")[0]
     near = get_close_matches(written[:100], names, n=1, cutoff=0.6)
-    meant = f"; did you mean {items}[{near[0]}]?" if near else ""
+    meant = f"; did you mean {items}[{shown(near[0])}]?" if near else ""
     return f"found no item {echo(written)} in {items}{meant}"
 
 
@@ -177,14 +185,19 @@ def _set_item(node: Sequence, steps: list[str], change: _Change, path: str) -> S
     if step not in names:
         raise _PathError(f"'{path}' is a list; write {path}[name of the item]")
     place = names.index(step)
-    item = _set(node.items[place], rest, change, path + step)
+    item = _set(node.items[place], rest, change, path + shown(step))
     items = [*node.items[:place], *([] if item is None else [item]), *node.items[place + 1 :]]
     return Sequence(node.line, node.column, items, node.faulty)
 
 
-def _at_home(faults: list[Finding], changes: list[_Change]) -> list[Finding]:
-    """Point faults to the scenario: one at its own places stays, any other moves to the nearest change."""
+def _caused(faults: list[Finding], changes: list[_Change], case_is_wrong: bool) -> list[Finding]:
+    """Point faults to the scenario: one at its own places stays, any other moves to the nearest change.
+
+    While the case itself is wrong, what a scenario lacks or upsets may be the case's doing, and waits.
+    """
     own = {place for change in changes for place in [_place(change.key), *_places(change.value)]}
+    if case_is_wrong:
+        return [fault for fault in faults if (fault.line, fault.column) in own and not fault.is_lack]
     return [fault if (fault.line, fault.column) in own else _moved(fault, changes) for fault in faults]
 
 

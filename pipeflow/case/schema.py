@@ -41,6 +41,7 @@ from pipeflow.case.fields import (
     Velocity,
     Viscosity,
     YieldStress,
+    at_odds,
     choice,
     fitting_keys,
     needs,
@@ -191,9 +192,9 @@ class FlowPart(Part):
         if lower is None or value is None:
             return value
         if lower.is_mass != value.is_mass:
-            raise said(f"a mass flow beside a volume flow or the reverse: '{key}' is given otherwise")
+            raise at_odds(f"'{key}' is given otherwise; all mass flows or all volume flows are needed")
         if lower.value > value.value:
-            raise said(f"less than '{key}'; minimum <= design <= maximum is needed")
+            raise at_odds(f"less than '{key}'; minimum <= design <= maximum is needed")
         return value
 
 
@@ -213,7 +214,7 @@ class VesselPart(Part):
     @classmethod
     def _no_better_than_vacuum(cls, value: float) -> float:
         if value < VACUUM:
-            raise said("below full vacuum; pressures are gauge, 0 is the atmosphere")
+            raise at_odds("below full vacuum; pressures are gauge, 0 is the atmosphere")
         return value
 
 
@@ -222,7 +223,7 @@ def _new(name: str, info: ValidationInfo) -> str:
     context: dict[str, set[str]] = info.context or {}
     names = context["pump" if info.field_name == "name" else "element"]
     if name in names:
-        raise said(f"the name {echo(name)} is taken above; names must be unique")
+        raise at_odds(f"the name {echo(name)} is taken above; names must be unique")
     names.add(name)
     return name
 
@@ -253,7 +254,7 @@ class PipePart(Part):
     def _one_of_two(cls, value: float | None, info: ValidationInfo) -> float | None:
         has_size = info.data.get("size", _FAILED) is not None
         if has_size and value is not None:
-            raise said("'size' is given too; give one of 'size' and 'diameter'")
+            raise at_odds("'size' is given too; one of the two is needed")
         if not has_size and value is None:
             raise needs(
                 "size", "diameter", message="missing; give 'size' (NPS 8 Sch 40) or 'diameter' (inside)"
@@ -265,7 +266,7 @@ class PipePart(Part):
     def _no_longer_than_the_pipe(cls, value: float, info: ValidationInfo) -> float:
         length = info.data.get("length")
         if length is not None and abs(value) > length * (1 + 1e-9):
-            raise said(f"rises more than the pipe is long ({length:.6g} m)")
+            raise at_odds(f"rises more than the pipe is long ({length:.6g} m)")
         return value
 
     @check("material")
@@ -273,7 +274,7 @@ class PipePart(Part):
     def _of_the_series(cls, value: str | None, info: ValidationInfo) -> str | None:
         size: PipeSize | None = info.data.get("size")
         if size is not None and value is not None and value != size.material:
-            raise said(f"found '{value}', but {size.name} is {size.material}; leave 'material' out")
+            raise at_odds(f"but {size.name} is {size.material}; leave 'material' out")
         return value
 
     @check("roughness")
@@ -287,7 +288,7 @@ class PipePart(Part):
             most = f"at most a tenth of the bore, {RELATIVE_ROUGHNESS_MAX * diameter * 1e3:.3g} mm"
             if value is None:
                 raise needs("roughness", message=f"missing; {default.name}'s is too rough here: {most}")
-            raise said(f"too rough: {most}")
+            raise at_odds(f"too rough: {most}")
         return value
 
     @property
@@ -308,7 +309,7 @@ class EquipmentPart(Part):
     @classmethod
     def _not_at_rest(cls, value: FlowValue | None) -> FlowValue | None:
         if value is not None and value.value == 0:
-            raise said("must be above 0: the loss is stated at a flow")
+            raise at_odds("must be above 0: the loss is stated at a flow")
         return value
 
     @check("exponent")
@@ -342,7 +343,7 @@ class VelocityPart(Part):
     def _above_the_minimum(cls, value: float | None, info: ValidationInfo) -> float | None:
         minimum = info.data.get("minimum")
         if value is not None and minimum is not None and value <= minimum:
-            raise said("must be more than 'minimum'")
+            raise at_odds("must be more than 'minimum'")
         return value
 
 

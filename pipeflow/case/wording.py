@@ -10,7 +10,7 @@ from typing import Any
 from pydantic_core import ErrorDetails
 
 from pipeflow.case.nodes import Finding, Mapping, Node, Scalar, Sequence, join, kind, label
-from pipeflow.case.places import EXAMPLES, PARTS_AT
+from pipeflow.case.places import EXAMPLES, PARTS_AT, REASONS
 from pipeflow.case.schema import RHEOLOGY_PARTS
 from pipeflow.units import ECHO_LENGTH, echo
 
@@ -158,7 +158,7 @@ def _finding(fault: Fault) -> Finding:
         place = fault.place
     elif fault.kind == "needs" and fault.node is None:
         path = fault.home_path
-    return Finding(place.line, place.column, path, _words(fault))
+    return Finding(place.line, place.column, path, _words(fault), is_lack=fault.node is None)
 
 
 def _words(fault: Fault) -> str:
@@ -199,14 +199,14 @@ def _foreign(fault: Fault) -> str:
     foreign = ", ".join(fault.details["foreign"])
     model = fault.parts[-2].strip("<>")
     given = set(_keys(fault.home)) & (_PARAMETERS - {"model", "tested"})
-    fitting = [name for name, part in RHEOLOGY_PARTS.items() if given == _own_parameters(part)]
+    fitting = [name for name, part in RHEOLOGY_PARTS.items() if given == set(_own_parameters(part))]
     meant = f"did you mean model: {fitting[0]}? " if fitting else ""
-    takes = ", ".join(sorted(_own_parameters(RHEOLOGY_PARTS[model])))
-    return f"{foreign}: not of the model {model}; {meant}it takes {takes}"
+    takes = ", ".join(_own_parameters(RHEOLOGY_PARTS[model]))
+    return f"{model} takes {takes}, not {foreign}; {meant}".rstrip(" ;")
 
 
-def _own_parameters(part: Any) -> set[str]:
-    return set(part.model_fields) - {"model", "tested"}
+def _own_parameters(part: Any) -> list[str]:
+    return [key for key in part.model_fields if key not in ("model", "tested")]
 
 
 def _choice(fault: Fault) -> str:
@@ -231,8 +231,14 @@ def _element(fault: Fault) -> str:
     return f"{found}; {_did_you_mean(fault)}{needed}"
 
 
+def _too_much(fault: Fault) -> str:
+    reason = f" ({REASONS[fault.key]})" if fault.key in REASONS else ""
+    return f"{_found(fault)}; must be {fault.details['le']:g} or less{reason}"
+
+
 _WORDS: dict[str, Callable[[Fault], str]] = {
     "missing": _missing,
+    "at_odds": lambda fault: f"{_found(fault)}; {fault.details['message']}",
     "extra_forbidden": _unknown_key,
     "foreign": _foreign,
     "choice": _choice,
@@ -244,5 +250,5 @@ _WORDS: dict[str, Callable[[Fault], str]] = {
     "too_long": lambda fault: f"more than {fault.details['max_length']} items; a case needs no more",
     "greater_than": lambda fault: f"{_found(fault)}; must be above {fault.details['gt']:g}",
     "greater_than_equal": lambda fault: f"{_found(fault)}; must be {fault.details['ge']:g} or more",
-    "less_than_equal": lambda fault: f"{_found(fault)}; must be {fault.details['le']:g} or less",
+    "less_than_equal": _too_much,
 }
