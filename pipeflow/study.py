@@ -10,8 +10,8 @@ import numpy as np
 from pipeflow.case.model import Case
 from pipeflow.friction import PipeFlow, Regime, Status, solve_pipes
 from pipeflow.friction.laminar import BUCKINGHAM_REINER, HAGEN_POISEUILLE, METZNER_REED, RABINOWITSCH_MOONEY
-from pipeflow.friction.solver import turbulent_method
-from pipeflow.friction.transition import RYAN_JOHNSON, SLATTER, TRANSITION_LINE
+from pipeflow.friction.methods import critical_criterion, turbulent_method
+from pipeflow.friction.transition import TRANSITION_LINE
 from pipeflow.line import route
 from pipeflow.line.catalogue import MATERIALS
 from pipeflow.line.elements import Equipment, Pipe
@@ -131,6 +131,7 @@ def solve(case: Case) -> Result:
         case.source,
         case.destination,
         turbulent=case.methods.turbulent,
+        critical=case.methods.critical,
         fittings=case.methods.fittings,
     )
     elements = tuple(_elements(case, line))
@@ -256,8 +257,6 @@ def _cautions(case: Case, line: LineFlow) -> Iterator[str]:
         yield from transition_cautions(pipe.name, at)
         yield from _flat_band(case, pipe, [flow for _, flow in at.values()])
         yield from _range_cautions(case, pipe, [flow for _, flow in at.values()])
-    if line.left_out:
-        yield f"the upper figure leaves out {', '.join(line.left_out)}: no answer in some pipe"
 
 
 def _distinct_flows(case: Case) -> tuple[str, ...]:
@@ -287,7 +286,7 @@ def _flat_band(case: Case, pipe: Pipe, flows: list[PipeFlow]) -> list[str]:
     edges = np.array([inside[0].critical_velocity, inside[0].turbulent_velocity])
     at_edges = solve_pipes(
         edges, pipe.diameter, case.fluid.density, case.fluid.rheology,
-        roughness=pipe.roughness, method=case.methods.turbulent,
+        roughness=pipe.roughness, method=case.methods.turbulent, critical=case.methods.critical,
     ).wall_shear_stress  # fmt: skip
     return flat_band_caution(pipe.name, (edges[0], edges[1]), (at_edges[0], at_edges[1]))
 
@@ -312,8 +311,7 @@ def _methods(case: Case, elements: tuple[ElementResult, ...]) -> Iterator[Method
     pipes = [element for element in elements if element.kind == "pipe"]
     if pipes:
         yield MethodUse(METZNER_REED, "Reynolds number and local index")
-        yield MethodUse(SLATTER, "end of laminar flow")
-        yield MethodUse(RYAN_JOHNSON, "end of laminar flow without a plug")
+        yield MethodUse(critical_criterion(rheology, case.methods.critical).source, "end of laminar flow")
     for key, source, used_for in (
         ("laminar", _laminar_source(rheology), "friction in laminar flow"),
         ("transitional", TRANSITION_LINE, "friction in the transition"),

@@ -88,7 +88,10 @@ class Wall:
 class TubeLaw(Protocol):
     """Laminar flow of one rheology in a tube; parameters are arrays of one shape with the wall states."""
 
-    yield_stress: Array
+    @property
+    def yield_stress(self) -> Array:
+        """Yield stress, Pa."""
+        ...
 
     def wall(self, log_excess: Array) -> Wall:
         """State of the wall at ``ln(tau_w - tau_y)``."""

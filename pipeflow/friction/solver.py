@@ -11,11 +11,13 @@ import numpy as np
 from numpy.typing import NDArray
 
 from pipeflow.arrays import Array, FloatOrArray
+from pipeflow.friction.criteria import Criterion
 from pipeflow.friction.laminar import TubeLaw, Wall, tube_law
-from pipeflow.friction.rootfind import find_root, take
-from pipeflow.friction.transition import Edges, TurbulentBranch, slatter, transition_edges
-from pipeflow.friction.turbulent import DEFAULT_METHOD, METHODS, Bore, TurbulentMethod
+from pipeflow.friction.methods import critical_criterion, turbulent_method
+from pipeflow.friction.transition import Edges, TurbulentBranch, transition_edges
+from pipeflow.friction.turbulent import Bore, TurbulentMethod
 from pipeflow.rheology import Rheology
+from pipeflow.rootfind import find_root, take
 
 CHUNK = 32768
 """Pipes solved at a time: their working arrays then stay in the processor's cache, and memory is bounded."""
@@ -78,6 +80,19 @@ class PipeFlow:
     reynolds_critical: Array
 
 
+@dataclass(frozen=True)
+class Methods:
+    """The published methods that one curve is made of."""
+
+    turbulent: TurbulentMethod
+    critical: Criterion
+
+    @classmethod
+    def chosen(cls, rheology: Rheology, turbulent: str | None, critical: str | None) -> Methods:
+        """Look the methods up by their keys, or take the defaults of the rheology."""
+        return cls(turbulent_method(rheology, turbulent), critical_criterion(rheology, critical))
+
+
 def wall_shear_stress(
     velocity: FloatOrArray,
     diameter: FloatOrArray,
@@ -105,7 +120,7 @@ def wall_shear_stress(
     Raises
     ------
     ValueError
-        For an unknown ``method``, or shapes that do not broadcast.
+        For an unknown ``method``, one that was not made for the rheology, or shapes that do not broadcast.
 
     Examples
     --------
@@ -123,35 +138,28 @@ def solve_pipes(
     rheology: Rheology,
     *,
     roughness: FloatOrArray = 0.0,
+    particle_size: FloatOrArray = np.nan,
     method: str | None = None,
+    critical: str | None = None,
     with_edges: bool = False,
 ) -> PipeFlow:
     """Solve any number of pipes in one call; as :func:`wall_shear_stress`, with all that is known of each.
 
-    ``with_edges`` works the critical velocities out for laminar pipes too, where the stress does not need them.
+    ``particle_size`` is the d85 of the solids, m, for the methods that need it; ``critical`` the key of the criterion
+    for the end of laminar flow. ``with_edges`` works the critical velocities out for laminar pipes too, where the
+    stress does not need them.
     """
-    chosen = turbulent_method(rheology, method)
-    shape, flatten = _flattener(velocity, diameter, density, roughness, rheology)
+    methods = Methods.chosen(rheology, method, critical)
+    shape, flatten = _flattener(velocity, diameter, density, roughness, particle_size, rheology)
     law = tube_law(rheology, flatten)
-    bore = Bore(flatten(diameter), flatten(density), flatten(roughness))
+    bore = Bore(flatten(diameter), flatten(density), flatten(roughness), flatten(particle_size))
     speed = flatten(velocity)
     pieces = []
     with np.errstate(all="ignore"):
         for first in range(0, max(speed.size, 1), CHUNK):
             part = slice(first, first + CHUNK)
-            pieces.append(_solve(speed[part], take(law, part), take(bore, part), chosen, with_edges))
+            pieces.append(_solve(speed[part], take(law, part), take(bore, part), methods, with_edges))
     return _joined(pieces, shape)
-
-
-def turbulent_method(rheology: Rheology, key: str | None) -> TurbulentMethod:
-    """Look the correlation up that ``key`` names, or the default of the rheology."""
-    if key is None:
-        return DEFAULT_METHOD[rheology.key]
-    if key not in METHODS:
-        raise ValueError(f"unknown turbulent method {key!r}; known are {', '.join(METHODS)}")
-    if rheology.key not in METHODS[key].models:
-        raise ValueError(f"{key} does not apply to a {rheology.key} fluid")
-    return METHODS[key]
 
 
 def _flattener(*items: Any) -> tuple[tuple[int, ...], Callable[[object], Array]]:
@@ -170,20 +178,20 @@ def _joined(pieces: list[PipeFlow], shape: tuple[int, ...]) -> PipeFlow:
     return PipeFlow(*(np.concatenate(column).reshape(shape) for column in columns))
 
 
-def _solve(velocity: Array, law: TubeLaw, bore: Bore, method: TurbulentMethod, with_edges: bool) -> PipeFlow:
+def _solve(velocity: Array, law: TubeLaw, bore: Bore, methods: Methods, with_edges: bool) -> PipeFlow:
     status = _status_of_input(velocity, law, bore)
     log_bulk = np.where(status == Status.CONVERGED, np.log(8.0 * velocity / bore.diameter), np.nan)
     laminar = find_root(_laminar_excess, law.guess(log_bulk), np.ones_like(log_bulk), (law, log_bulk))
     wall = law.wall(laminar)
-    beyond = slatter(wall, law, bore) > 0
+    beyond = methods.critical.excess(wall, law, bore) > 0
     excess, regime = laminar.copy(), np.where(beyond, Regime.TURBULENT, Regime.LAMINAR).astype(np.int8)
     velocities = np.full((3, velocity.size), np.nan)  # critical, turbulent, and Re_MR at the former
 
     some = np.flatnonzero(np.isfinite(laminar) & (with_edges | beyond))
     if some.size:
         law_here, bore_here = take(law, some), take(bore, some)
-        edges = transition_edges(law_here, bore_here, laminar[some])
-        branch = TurbulentBranch.after(edges, method, law_here, bore_here)
+        edges = transition_edges(law_here, bore_here, laminar[some], methods.critical)
+        branch = TurbulentBranch.after(edges, methods.turbulent, law_here, bore_here)
         velocities[:, some] = np.exp([edges.log_velocity, branch.log_velocity, edges.log_reynolds])
         past = beyond[some]
         excess[some[past]], regime[some[past]] = _past_laminar(
@@ -256,31 +264,33 @@ def bulk_velocity(
     rheology: Rheology,
     *,
     roughness: FloatOrArray = 0.0,
+    particle_size: FloatOrArray = np.nan,
     method: str | None = None,
+    critical: str | None = None,
 ) -> Array:
     """Bulk velocity [m/s] at a wall shear stress [Pa]: the inverse of :func:`wall_shear_stress`, same arguments.
 
     Zero up to the yield stress; nan where the input means nothing or no edge of the transition exists.
     """
-    chosen = turbulent_method(rheology, method)
-    shape, flatten = _flattener(wall_shear_stress, diameter, density, roughness, rheology)
+    methods = Methods.chosen(rheology, method, critical)
+    shape, flatten = _flattener(wall_shear_stress, diameter, density, roughness, particle_size, rheology)
     law = tube_law(rheology, flatten)
-    bore = Bore(flatten(diameter), flatten(density), flatten(roughness))
+    bore = Bore(flatten(diameter), flatten(density), flatten(roughness), flatten(particle_size))
     stress = flatten(wall_shear_stress)
     with np.errstate(all="ignore"):
-        velocity = np.where(stress <= law.yield_stress, 0.0, _velocity(stress, law, bore, chosen))
+        velocity = np.where(stress <= law.yield_stress, 0.0, _velocity(stress, law, bore, methods))
         return np.where(_status_of_input(velocity, law, bore) == Status.INVALID, np.nan, velocity).reshape(shape)
 
 
-def _velocity(stress: Array, law: TubeLaw, bore: Bore, method: TurbulentMethod) -> Array:
+def _velocity(stress: Array, law: TubeLaw, bore: Bore, methods: Methods) -> Array:
     excess = np.log(stress - law.yield_stress)
     wall = law.wall(excess)
-    edges = transition_edges(law, bore, excess)
-    branch = TurbulentBranch.after(edges, method, law, bore)
+    edges = transition_edges(law, bore, excess, methods.critical)
+    branch = TurbulentBranch.after(edges, methods.turbulent, law, bore)
     begin = branch.log_excess_at(branch.log_velocity)
     log_stress = [np.log(law.yield_stress + np.exp(x)) for x in (edges.log_excess, begin)]
     share = (np.log(stress) - log_stress[0]) / (log_stress[1] - log_stress[0])
     line = np.exp(edges.log_velocity + share * (branch.log_velocity - edges.log_velocity))
     laminar = np.exp(wall.log_bulk_rate) * bore.diameter / 8.0
-    past = np.where(excess < begin, line, method.velocity(wall, law, bore))
-    return np.where(slatter(wall, law, bore) > 0, past, laminar)
+    past = np.where(excess < begin, line, methods.turbulent.velocity(wall, law, bore))
+    return np.where(methods.critical.excess(wall, law, bore) > 0, past, laminar)

@@ -13,29 +13,14 @@ import numpy as np
 from numpy.typing import NDArray
 
 from pipeflow.arrays import Array
+from pipeflow.friction.criteria import Criterion, log_reynolds_mr
 from pipeflow.friction.laminar import TubeLaw, Wall
-from pipeflow.friction.rootfind import find_root
 from pipeflow.friction.turbulent import Bore, TurbulentMethod
+from pipeflow.rootfind import find_root
 from pipeflow.sources import Source
 
-NEWTONIAN_CRITICAL = 2100.0
 LOG_BAND = float(np.log(4000.0 / 2100.0))
-GOLDEN = (np.sqrt(5.0) - 1.0) / 2.0
-HIGHEST_RATIO_INDEX = 0.416
-"""Index at which the Ryan–Johnson ratio is highest; below it the criterion is held, as measurements do not fall."""
-
-RYAN_JOHNSON = Source(
-    key="ryan-johnson",
-    title="Critical Re_MR of power-law fluids",
-    citation="Ryan & Johnson, AIChE J. 5, 433 (1959)",
-    note="held at its n = 0.416 value below that index, where measurements contradict its fall",
-)
-SLATTER = Source(
-    key="slatter",
-    title="End of laminar flow: Reynolds number of the sheared annulus, Re_3",
-    citation="Slatter, PhD thesis, University of Cape Town (1994); Hydrotransport 13 (1996)",
-    note="with the Ryan–Johnson value where there is no plug",
-)
+GOLDEN = float((np.sqrt(5.0) - 1.0) / 2.0)
 
 TRANSITION_LINE = Source(
     key="transition-line",
@@ -44,35 +29,6 @@ TRANSITION_LINE = Source(
     confidence="medium",
     note="flow in the transition is unsteady; no published method predicts its loss closely",
 )
-
-
-def ryan_johnson(flow_index: Array) -> Array:
-    """Critical Re_MR of a power-law fluid, scaled to 2100 at n = 1.
-
-    Ryan & Johnson (1959): ``6464 n/(1+3n)² (2+n)^((2+n)/(1+n))``, of which 6464 is a rounding to 2099 at n = 1.
-    """
-    n = np.maximum(flow_index, HIGHEST_RATIO_INDEX)
-    ratio = n / (1.0 + 3.0 * n) ** 2 * (2.0 + n) ** ((2.0 + n) / (1.0 + n))
-    at_one = 3.0**1.5 / 16.0
-    return NEWTONIAN_CRITICAL * ratio / at_one
-
-
-def log_reynolds_mr(wall: Wall, bore: Bore) -> Array:
-    """``ln Re_MR = ln(8 rho V²/tau_w)`` of laminar flow at this wall stress."""
-    return np.log(bore.density * bore.diameter**2 / (8.0 * wall.stress)) + 2.0 * wall.log_bulk_rate
-
-
-def slatter(wall: Wall, law: TubeLaw, bore: Bore) -> Array:
-    """``ln(Re_3/critical)``, negative in laminar flow; Re_3 with the model's own law in the annulus.
-
-    The critical value is 2100 at the plug and the Ryan–Johnson one, as Re_3 reads it, without a plug.
-    """
-    rate, stress = law.annulus(wall)
-    velocity_squared = (bore.diameter * wall.sheared * rate) ** 2 / 8.0
-    log_re3 = np.log(bore.density * velocity_squared / (wall.stress * stress)) + 2.0 * wall.log_rate
-    n = law.flow_index(wall)
-    without_plug = ryan_johnson(n) * ((3.0 * n + 1.0) / (4.0 * n)) ** n
-    return log_re3 - np.log(NEWTONIAN_CRITICAL * wall.plug + without_plug * wall.sheared)
 
 
 @dataclass(frozen=True)
@@ -94,9 +50,9 @@ class Edges:
     band_log_velocity: Array
 
 
-def transition_edges(law: TubeLaw, bore: Bore, start: Array) -> Edges:
+def transition_edges(law: TubeLaw, bore: Bore, start: Array, criterion: Criterion) -> Edges:
     """Steps 1 and 2 of the transition, looked for from any laminar wall stress ``start = ln(tau_w - tau_y)``."""
-    edge = find_root(_criterion, start, _reynolds_slope(law.wall(start)), (law, bore))
+    edge = find_root(_criterion_excess, start, _reynolds_slope(law.wall(start)), (law, bore, criterion))
     at_edge = law.wall(edge)
     log_reynolds = log_reynolds_mr(at_edge, bore)
     slope = _reynolds_slope(at_edge)
@@ -111,8 +67,8 @@ def transition_edges(law: TubeLaw, bore: Bore, start: Array) -> Edges:
     )
 
 
-def _criterion(log_excess: Array, law: TubeLaw, bore: Bore) -> tuple[Array, None]:
-    return slatter(law.wall(log_excess), law, bore), None
+def _criterion_excess(log_excess: Array, law: TubeLaw, bore: Bore, criterion: Criterion) -> tuple[Array, None]:
+    return criterion.excess(law.wall(log_excess), law, bore), None
 
 
 def _reynolds_excess(log_excess: Array, law: TubeLaw, bore: Bore, target: Array) -> tuple[Array, Array]:

@@ -9,29 +9,36 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 
 from pipeflow.arrays import Array
 from pipeflow.friction.laminar import TubeLaw, Wall
-from pipeflow.rheology import Rheology
 from pipeflow.sources import Range, Source
 
 
 @dataclass(frozen=True)
 class Bore:
-    """The pipe and what fills it: inside diameter and roughness in m, density in kg/m³; arrays of one shape."""
+    """The pipe and what fills it; arrays of one shape.
+
+    Inside diameter and roughness in m, density in kg/m³; ``particle_size`` is the d85 of the solids in m, nan where it
+    is not known or there are none.
+    """
 
     diameter: Array
     density: Array
     roughness: Array
+    particle_size: Array
 
 
-def _friction_velocity(wall: Wall, bore: Bore) -> Array:
+def friction_velocity(wall: Wall, bore: Bore) -> Array:
+    """``u* = sqrt(tau_w/rho)``, m/s."""
     return np.sqrt(wall.stress / bore.density)
 
 
-def _log10(x: Array) -> Array:
+def log10(x: Array) -> Array:
+    """Give the decimal logarithm by the natural one, of which numpy has the faster code."""
     return np.log(x) / np.log(10.0)
 
 
@@ -41,10 +48,10 @@ def colebrook_white(wall: Wall, law: TubeLaw, bore: Bore) -> Array:
     ``1/sqrt(f_D) = -2 log10[(eps/D)/3.7 + 2.51/(Re sqrt(f_D))]``; ``Re sqrt(f_D) = sqrt(8) rho u* D/mu`` holds no
     velocity, so the equation is explicit in the wall stress.
     """
-    u = _friction_velocity(wall, bore)
+    u = friction_velocity(wall, bore)
     inverse_reynolds = np.exp(np.log(wall.stress / (bore.density * u * bore.diameter)) - wall.log_rate)
     film = 2.51 / np.sqrt(8.0) * inverse_reynolds
-    return -2.0 * np.sqrt(8.0) * u * _log10(bore.roughness / (3.7 * bore.diameter) + film)
+    return -2.0 * np.sqrt(8.0) * u * log10(bore.roughness / (3.7 * bore.diameter) + film)
 
 
 def dodge_metzner(wall: Wall, law: TubeLaw, bore: Bore) -> Array:
@@ -55,19 +62,19 @@ def dodge_metzner(wall: Wall, law: TubeLaw, bore: Bore) -> Array:
     that a smooth pipe is Dodge & Metzner's own.
     """
     n = 1.0 / wall.inverse_local_index
-    group = _log_turbulence_group(wall, bore, n) / np.log(10.0)
+    group = log_turbulence_group(wall, bore, n) / np.log(10.0)
     inverse_root = 4.0 * n**-0.75 * group - 0.4 * n**-1.2
     film = n**-1.2 * np.log10(1.26) - n**-0.75 * group
     with np.errstate(divide="ignore", invalid="ignore"):
         rough = 0.27 * bore.roughness * (3.0 * n + 1.0) / (4.0 * n * bore.diameter)
-        thinning = _log10(rough + 10.0**film) / film
+        thinning = log10(rough + 10.0**film) / film
     smooth = bore.roughness == 0
     inverse_root = inverse_root * np.where(smooth, 1.0, thinning)
     valid = (n > 0) & (n < 2) & (smooth | (film < 0))
-    return np.where(valid, np.sqrt(2.0) * inverse_root * _friction_velocity(wall, bore), np.nan)
+    return np.where(valid, np.sqrt(2.0) * inverse_root * friction_velocity(wall, bore), np.nan)
 
 
-def _log_turbulence_group(wall: Wall, bore: Bore, n: Array) -> Array:
+def log_turbulence_group(wall: Wall, bore: Bore, n: Array) -> Array:
     """``ln[Re_MR f^(1-n'/2)] = ln[rho D^n' (2 tau_w/rho)^(1-n'/2) / (8^(n'-1) K')]``."""
     log_consistency = np.log(wall.stress) - n * wall.log_bulk_rate
     return (
@@ -89,7 +96,7 @@ def wilson_thomas(wall: Wall, law: TubeLaw, bore: Bore) -> Array:
     plug = wall.plug
     blunting = -2.5 * np.log(wall.sheared) - 2.5 * plug * (1.0 + 0.5 * plug)
     gain = 11.6 * (alpha - 1.0) - 2.5 * np.log(alpha) - blunting
-    return colebrook_white(wall, law, bore) + _friction_velocity(wall, bore) * gain
+    return colebrook_white(wall, law, bore) + friction_velocity(wall, bore) * gain
 
 
 @dataclass(frozen=True)
@@ -101,9 +108,10 @@ class TurbulentMethod:
     """
 
     source: Source
-    velocity: Callable[[Wall, TubeLaw, Bore], Array]
+    velocity: Callable[[Wall, Any, Bore], Array]
     models: frozenset[str]
     rising: bool = True
+    needs_particle_size: bool = False
 
 
 ALL_MODELS = frozenset({"newtonian", "power-law", "bingham", "herschel-bulkley", "casson"})
@@ -145,21 +153,3 @@ WILSON_THOMAS = TurbulentMethod(
     wilson_thomas,
     ALL_MODELS,
 )
-METHODS = {method.source.key: method for method in (COLEBROOK_WHITE, DODGE_METZNER, WILSON_THOMAS)}
-DEFAULT_METHOD = {
-    "newtonian": COLEBROOK_WHITE,
-    "power-law": DODGE_METZNER,
-    "bingham": WILSON_THOMAS,
-    "herschel-bulkley": WILSON_THOMAS,
-    "casson": WILSON_THOMAS,
-}
-
-IN_FAMILY = (DODGE_METZNER, WILSON_THOMAS)
-"""Methods whose highest figure is the upper one of a non-Newtonian fluid."""
-
-
-def in_family(rheology: Rheology) -> tuple[str, ...]:
-    """Keys of the methods that make the upper figure of a rheology."""
-    if rheology.key == "newtonian":
-        return ()
-    return tuple(method.source.key for method in IN_FAMILY if rheology.key in method.models)

@@ -11,7 +11,7 @@ import numpy as np
 from pipeflow.arrays import Array, FloatOrArray
 from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.friction import PipeFlow, solve_pipes
-from pipeflow.friction.turbulent import in_family
+from pipeflow.friction.spread import method_spread
 from pipeflow.line.elements import Element, Equipment, Fluid, Pipe, Vessel
 from pipeflow.line.fittings import DEFAULT_METHOD, resistance
 from pipeflow.rheology import Rheology
@@ -40,8 +40,10 @@ class LineFlow:
         Metres of the slurry.
     pressure_required, pressure_required_upper : Array
         ``rho g total_head``, Pa.
-    left_out : tuple of str
-        Methods of the family that gave no answer for some pipe, and so are not in its upper figure.
+    head_loss_by_method : dict of str to Array
+        Head loss with the turbulent friction of each method of the family, m; nan where one has no answer.
+    left_out : dict of str to str
+        Methods that are not in the upper figure of some pipe, and why.
     """
 
     velocity: Array
@@ -59,7 +61,8 @@ class LineFlow:
     total_head_upper: Array
     pressure_required: Array
     pressure_required_upper: Array
-    left_out: tuple[str, ...]
+    head_loss_by_method: dict[str, Array]
+    left_out: dict[str, str]
 
 
 def solve(
@@ -70,7 +73,9 @@ def solve(
     destination: Vessel | None = None,
     *,
     turbulent: str | None = None,
+    critical: str | None = None,
     fittings: str | None = None,
+    particle_size: FloatOrArray = np.nan,
 ) -> LineFlow:
     """Solve a line for any number of flows, fluids and dimensions at once.
 
@@ -82,8 +87,10 @@ def solve(
     route : sequence of Pipe and Equipment, in flow order
     source, destination : Vessel, optional
         None is atmospheric pressure and no level.
-    turbulent, fittings : str, optional
+    turbulent, critical, fittings : str, optional
         Keys of the methods wanted; by default those settled for the rheology.
+    particle_size : float or array
+        d85 of the solids, m, for the methods that need it.
 
     Returns
     -------
@@ -97,12 +104,12 @@ def solve(
     velocity = _last_axis(flow) / (np.pi / 4.0 * diameter**2)
     density, rheology = _last_axis(fluid.density), _with_pipe_axis(fluid.rheology)
     roughness = _side_by_side([pipe.roughness for pipe in pipes])
-    arguments = (velocity, diameter, density, rheology)
-    solved = solve_pipes(*arguments, roughness=roughness, method=turbulent, with_edges=True)
-    upper, left_out = _upper_stress(solved.wall_shear_stress, arguments, roughness)
+    given: dict[str, Any] = {"roughness": roughness, "particle_size": _last_axis(particle_size), "critical": critical}
+    solved = solve_pipes(velocity, diameter, density, rheology, method=turbulent, with_edges=True, **given)
+    spread = method_spread(solved, velocity, diameter, density, rheology, **given)
 
     gradient_length = 4.0 * _side_by_side([pipe.length for pipe in pipes]) / diameter
-    friction, friction_upper = solved.wall_shear_stress * gradient_length, upper * gradient_length
+    friction, friction_upper = solved.wall_shear_stress * gradient_length, spread.upper * gradient_length
     fitting_loss = _fitting_loss(pipes, solved, velocity, density, fittings or DEFAULT_METHOD)
     equipment_loss = _side_by_side([_equipment_loss(item, flow) for item in equipment])
     equipment_loss = np.broadcast_to(equipment_loss, (*solved.status.shape[:-1], len(equipment)))
@@ -127,7 +134,11 @@ def solve(
         total_head_upper=pressure_loss_upper / weight + static_head,
         pressure_required=pressure_loss + weight * static_head,
         pressure_required_upper=pressure_loss_upper + weight * static_head,
-        left_out=left_out,
+        head_loss_by_method={
+            key: ((stress * gradient_length).sum(axis=-1) + minor) / weight
+            for key, stress in spread.by_method.items()
+        },
+        left_out=spread.left_out,
     )
 
 
@@ -145,17 +156,6 @@ def _side_by_side(items: Sequence[FloatOrArray]) -> Array:
 def _with_pipe_axis(rheology: Rheology) -> Rheology:
     parameters: dict[str, Any] = {f.name: _last_axis(getattr(rheology, f.name)) for f in fields(rheology)}  # type: ignore[arg-type]
     return replace(rheology, **parameters)  # type: ignore[type-var]
-
-
-def _upper_stress(central: Array, arguments: tuple[Any, ...], roughness: Array) -> tuple[Array, tuple[str, ...]]:
-    """Highest wall stress of the methods in the family, and those that had no answer somewhere."""
-    upper, left_out = central, []
-    for method in in_family(arguments[3]):
-        stress = solve_pipes(*arguments, roughness=roughness, method=method).wall_shear_stress
-        if np.any(np.isnan(stress) & ~np.isnan(central)):
-            left_out.append(method)
-        upper = np.fmax(upper, stress)
-    return np.where(np.isnan(central), np.nan, upper), tuple(left_out)
 
 
 def _fitting_loss(pipes: Sequence[Pipe], solved: PipeFlow, velocity: Array, density: Array, method: str) -> Array:
