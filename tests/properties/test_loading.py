@@ -25,9 +25,8 @@ WORDS = sorted(set(GOOD.replace(":", " ").replace(",", " ").split()))
 
 KEYS = (
     "title", "fluid", "density", "rheology", "model", "flow", "design", "minimum", "route", "pipe",
-    "equipment", "size", "diameter", "length", "fittings", "scenarios", "limits", "velocity", "methods", "pumps",
-    "<<", "",
-    "fluid.density", "route[suction line].length", "route[", "route[]", "pumps[x].name",
+    "equipment", "size", "diameter", "length", "fittings", "scenarios", "limits", "velocity", "methods",
+    "pumps", "<<", "", "fluid.density", "route[suction line].length", "route[", "route[]", "pumps[x].name",
     "scenarios.thick", "[key]", "<pipe>", "<map>",
 )  # fmt: skip
 VALUES = (
