@@ -50,7 +50,7 @@ def load_text(text: str, file: str = "case.yaml") -> Case:
     except UnreadableError as error:
         raise _input_error(file, [error.finding]) from None
     part, faults = examine(tree)
-    scenarios, scenario_faults = read_scenarios(tree, faults)
+    scenarios, scenario_faults = read_scenarios(tree, [*notation, *faults])
     found = [*notation, *faults, *scenario_faults]
     if found or part is None:
         raise _input_error(file, found)

@@ -272,6 +272,8 @@ def _advice(problem: str, text: str, line: int, column: int) -> str:
         return f"a value cannot start with {echo(here)}; put it in quotes"
     if "mapping values are not allowed" in problem:
         return "a second ': ' on the line or a wrong indent; put text with ': ' in quotes"
+    if "',' or" in problem:
+        return "a bracket is not closed, or text with a bracket or comma in it needs quotes"
     return problem
 
 

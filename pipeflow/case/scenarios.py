@@ -44,7 +44,7 @@ def read_scenarios(tree: Node, known: list[Finding]) -> tuple[dict[str, CasePart
     tree : Node
         The whole case.
     known : list of Finding
-        What is wrong with the case itself, not to be said again.
+        What is wrong with the case itself and is not to be said again.
 
     Returns
     -------
@@ -161,6 +161,8 @@ def _set(node: Node, steps: list[str], change: _Change, path: str) -> Node | Non
         return _set_key(node, steps, change, path)
     if isinstance(node, Sequence):
         return _set_item(node, steps, change, path)
+    if node.faulty:
+        raise _UnsureError
     raise _PathError(f"'{path}' is a single value in the case; give it as a whole")
 
 

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import subprocess
+import sys
 from pathlib import Path
 
 import pytest
@@ -34,6 +36,13 @@ def refusal(text: str) -> list[str]:
     with pytest.raises(InputError) as caught:
         load_text(text)
     return [f"{problem.line}:{problem.column} {problem.key_path}" for problem in caught.value.problems]
+
+
+def test_reading_a_case_brings_in_no_heavy_library() -> None:
+    heavy = "{'scipy', 'matplotlib', 'pint', 'jinja2'} & set(sys.modules)"
+    program = f"import sys, pipeflow.case.loading; print({heavy} or 'none')"
+    done = subprocess.run([sys.executable, "-c", program], capture_output=True, text=True, check=True)
+    assert done.stdout == "none\n"
 
 
 def test_a_full_case() -> None:
@@ -188,4 +197,5 @@ def test_a_fault_of_the_case_is_not_told_again_by_its_scenarios() -> None:
 
 def test_a_misspelt_part_is_one_fault_though_scenarios_change_it() -> None:
     assert refusal(GOOD.replace("fluid:", "fliud:", 1)) == ["4:1 fliud"]
+    assert refusal(GOOD.replace("limits:", "limits: *l\nx:")) == ["34:9 limits", "35:1 x"]
     assert refusal(GOOD.replace("- pipe: disch", "- pip: disch")) == ["27:5 route[3]"]
