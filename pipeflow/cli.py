@@ -88,7 +88,7 @@ def main() -> None:
     except BrokenPipeError:
         # the reader of a pipe has seen enough; keep the interpreter from complaining when it flushes
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
-    except Exception as error:  # noqa: BLE001
+    except Exception as error:
         if os.environ.get("PIPEFLOW_TRACEBACK"):
             raise
         typer.echo(f"pipeflow: a bug of ours: {type(error).__name__}: {error}", err=True)

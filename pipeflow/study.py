@@ -315,7 +315,11 @@ def _methods(case: Case, elements: tuple[ElementResult, ...]) -> Iterator[Method
     for key, source, used_for in (
         ("laminar", _laminar_source(rheology), "friction in laminar flow"),
         ("transitional", TRANSITION_LINE, "friction in the transition"),
-        ("turbulent", turbulent_method(rheology, case.methods.turbulent).source, "friction in turbulent flow"),
+        (
+            "turbulent",
+            turbulent_method(rheology, case.methods.turbulent).source,
+            "friction in turbulent flow",
+        ),
     ):
         names = [pipe.name for pipe in pipes if pipe.regime == key or pipe.regime == "transitional"]
         if names:

@@ -30,9 +30,7 @@ def torrance(wall: Wall, law: GeneralizedPowerLawTube, bore: Bore) -> Array:
     ``V/u* = 3.8/n + (2.78/n) ln[(1-phi) rho u*^(2-n) R^n/K] - 4.17``; rough ``(2.5/n) ln(R/eps) + 8.5 - 3.75/n``.
     """
     n, u, radius = law.index, friction_velocity(wall, bore), bore.diameter / 2.0
-    log_reynolds = (
-        np.log(bore.density) + (2.0 - n) * np.log(u) + n * np.log(radius) - law.log_consistency
-    )
+    log_reynolds = np.log(bore.density) + (2.0 - n) * np.log(u) + n * np.log(radius) - law.log_consistency
     smooth = 3.8 / n + 2.78 / n * (np.log(wall.sheared) + log_reynolds) - 4.17
     with np.errstate(divide="ignore"):
         rough = 2.5 / n * np.log(radius / bore.roughness) + 8.5 - 3.75 / n
@@ -103,9 +101,7 @@ HANKS_NODES = 48
 HANKS_STRETCH = 14.0
 _nodes, _weights = np.polynomial.legendre.leggauss(HANKS_NODES)
 _position = np.expm1(HANKS_STRETCH * (_nodes + 1.0) / 2.0) / np.expm1(HANKS_STRETCH)
-_weight = (
-    _weights / 2.0 * HANKS_STRETCH * np.exp(HANKS_STRETCH * (_nodes + 1.0) / 2.0) / np.expm1(HANKS_STRETCH)
-)
+_weight = _weights / 2.0 * HANKS_STRETCH * np.exp(HANKS_STRETCH * (_nodes + 1.0) / 2.0) / np.expm1(HANKS_STRETCH)
 
 
 def hanks(wall: Wall, law: GeneralizedPowerLawTube, bore: Bore) -> Array:
@@ -123,7 +119,9 @@ def hanks(wall: Wall, law: GeneralizedPowerLawTube, bore: Bore) -> Array:
         - 2.0 / n * law.log_consistency
     )
     log_hedstrom = hedstrom_number(law, bore)
-    damping = (np.exp(log_rh) - np.exp(_critical_log_rh(law, log_hedstrom))) / (2.0 * np.sqrt(2.0) * _hanks_b(n, log_hedstrom))
+    damping = (np.exp(log_rh) - np.exp(_critical_log_rh(law, log_hedstrom))) / (
+        2.0 * np.sqrt(2.0) * _hanks_b(n, log_hedstrom)
+    )
     depth = wall.sheared * _position[:, None]  # 1 - xi, closest together at the wall
     length = 0.36 * radius * depth * -np.expm1(-np.maximum(damping, 0.0) * depth)
     log_excess = np.log(wall.stress * (wall.sheared - depth))

@@ -7,15 +7,12 @@ cancels from the plug to the power-law end.
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Protocol
 
 import numpy as np
 
 from pipeflow.arrays import Array
-from pipeflow.rheology import Casson, Rheology
-from pipeflow.rheology.models import GeneralizedPowerLaw
 from pipeflow.sources import Source
 
 RABINOWITSCH_MOONEY = Source(
@@ -132,11 +129,7 @@ class GeneralizedPowerLawTube:
         stress = self.yield_stress + excess
         sheared = excess / stress
         plug = self.yield_stress / stress
-        section = (
-            sheared * sheared / (3.0 * n + 1.0)
-            + plug * sheared / (n + 0.5)
-            + plug * plug / (n + 1.0)
-        )
+        section = sheared * sheared / (3.0 * n + 1.0) + plug * sheared / (n + 0.5) + plug * plug / (n + 1.0)
         log_rate = (log_excess - self.log_consistency) / n
         return Wall(log_excess, stress, plug, sheared, log_rate, 4.0 * n * sheared * section)
 
@@ -203,15 +196,3 @@ class CassonTube:
     def flow_index(self, wall: Wall) -> Array:
         """1: past its yield stress the law bends towards a Newtonian fluid."""
         return np.ones_like(wall.stress)
-
-
-def tube_law(rheology: Rheology, like: Callable[[object], Array] = np.asarray) -> TubeLaw:
-    """Give the laminar tube flow of a rheology; ``like`` brings each parameter to the shape of the pipes."""
-    if isinstance(rheology, GeneralizedPowerLaw):
-        law = rheology.as_herschel_bulkley()
-        return GeneralizedPowerLawTube(
-            like(law.yield_stress), np.log(like(law.consistency)), like(law.flow_index)
-        )
-    if isinstance(rheology, Casson):
-        return CassonTube(like(rheology.yield_stress), np.log(like(rheology.casson_viscosity)))
-    raise TypeError(f"no laminar tube flow is known for {type(rheology).__name__}")

@@ -12,9 +12,10 @@ from numpy.typing import NDArray
 
 from pipeflow.arrays import Array, FloatOrArray
 from pipeflow.friction.criteria import Criterion
-from pipeflow.friction.laminar import TubeLaw, Wall, tube_law
+from pipeflow.friction.laminar import TubeLaw, Wall
 from pipeflow.friction.methods import critical_criterion, turbulent_method
 from pipeflow.friction.transition import Edges, TurbulentBranch, transition_edges
+from pipeflow.friction.tube import tube_law
 from pipeflow.friction.turbulent import Bore, TurbulentMethod
 from pipeflow.rheology import Rheology
 from pipeflow.rootfind import find_root, take
@@ -164,7 +165,9 @@ def solve_pipes(
 
 def _flattener(*items: Any) -> tuple[tuple[int, ...], Callable[[object], Array]]:
     """Find the common shape of arrays and of the parameters of a rheology, and how to bring one to it, flat."""
-    shapes = [np.shape(value) for item in items for value in (vars(item).values() if isinstance(item, Rheology) else [item])]
+    shapes = [
+        np.shape(value) for item in items for value in (vars(item).values() if isinstance(item, Rheology) else [item])
+    ]
     shape = np.broadcast_shapes(*shapes)
 
     def flatten(value: object) -> Array:

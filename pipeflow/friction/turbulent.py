@@ -114,8 +114,12 @@ class TurbulentMethod:
     needs_particle_size: bool = False
 
 
-ALL_MODELS = frozenset({"newtonian", "power-law", "bingham", "herschel-bulkley", "casson"})
-YIELD_MODELS = frozenset({"bingham", "herschel-bulkley", "casson"})
+ALL_MODELS = frozenset(
+    {
+        "newtonian", "power-law", "bingham", "herschel-bulkley", "casson",
+        "cross", "carreau", "sisko", "ellis", "robertson-stiff",
+    }
+)  # fmt: skip
 
 COLEBROOK_WHITE = TurbulentMethod(
     Source(

@@ -54,7 +54,9 @@ class _Page:
         self.console.print(Text("-" * min(len(text), self.console.width)))
 
     def text(self, text: str, indent: str = "") -> None:
-        self.console.print(Text(fill(text, self.console.width, initial_indent=indent, subsequent_indent=" " * len(indent))))
+        self.console.print(
+            Text(fill(text, self.console.width, initial_indent=indent, subsequent_indent=" " * len(indent)))
+        )
 
     def rows(self, columns: Iterable[str], rows: Iterable[Iterable[str]], names: int = 1) -> None:
         """Print a table; its first ``names`` columns are words, the others figures."""
@@ -75,7 +77,11 @@ class _Page:
         self.heading("Fluid and basis")
         self.rows(("", ""), _basis(case), names=2)
         self.heading("Route")
-        self.rows(("element", "size", "bore mm", "length m", "rise m", "rough. mm", "fittings"), _route(result), names=2)
+        self.rows(
+            ("element", "size", "bore mm", "length m", "rise m", "rough. mm", "fittings"),
+            _route(result),
+            names=2,
+        )
         self.scenario(result)
         self.heading("Methods")
         for use in result.methods:
@@ -123,7 +129,10 @@ def _basis(case: Case) -> Iterator[tuple[str, str]]:
     flows = case.flow
     yield "flow, design", format_value(flows.design, "volume flow")
     if flows.minimum != flows.maximum:
-        yield "  minimum .. maximum", f"{_number(flows.minimum, 'm3/h')} .. {format_value(flows.maximum, 'm3/h')}"
+        yield (
+            "  minimum .. maximum",
+            f"{_number(flows.minimum, 'm3/h')} .. {format_value(flows.maximum, 'm3/h')}",
+        )
     for name, vessel in (("source", case.source), ("destination", case.destination)):
         if vessel:
             pressure, level = format_value(vessel.pressure, "kPa"), format_value(vessel.level, "m")
@@ -173,7 +182,12 @@ def _flow_row(element: ElementResult) -> tuple[str, ...]:
 
 def _totals(result: Result) -> Iterator[tuple[str, ...]]:
     totals = result.totals
-    yield "pipe friction", _number(totals.friction_loss, "kPa"), _number(totals.friction_loss_upper, "kPa"), "kPa"
+    yield (
+        "pipe friction",
+        _number(totals.friction_loss, "kPa"),
+        _number(totals.friction_loss_upper, "kPa"),
+        "kPa",
+    )
     yield "fittings", _number(totals.fitting_loss, "kPa"), "", "kPa"
     yield "equipment", _number(totals.equipment_loss, "kPa"), "", "kPa"
     yield "head loss", _number(totals.head_loss), _number(totals.head_loss_upper), "m of slurry"

@@ -34,7 +34,7 @@ class Rheology(ABC):
 
     def apparent_viscosity(self, shear_rate: FloatOrArray) -> Array:
         """Shear stress over shear rate [Pa.s] at a shear rate [1/s]; at zero rate the limit from above, which may be inf."""
-        rate = _not_negative(shear_rate)
+        rate = not_negative(shear_rate)
         with np.errstate(divide="ignore", invalid="ignore"):
             quotient = self.shear_stress(rate) / rate
         return np.where(rate > 0, quotient, self._viscosity_at_rest() + 0.0 * rate)
@@ -44,7 +44,8 @@ class Rheology(ABC):
         """Give the limit of the apparent viscosity as the shear rate goes to zero."""
 
 
-def _not_negative(values: FloatOrArray) -> Array:
+def not_negative(values: FloatOrArray) -> Array:
+    """Give the values as an array, nan for those below zero."""
     array = np.asarray(values, dtype=np.float64)
     return np.where(array >= 0, array, np.nan)
 
@@ -62,12 +63,12 @@ class GeneralizedPowerLaw(Rheology):
     def shear_stress(self, shear_rate: FloatOrArray) -> Array:
         """``tau_y + K rate**n`` [Pa] at a shear rate [1/s]."""
         law = self.as_herschel_bulkley()
-        return np.asarray(law.yield_stress + law.consistency * _not_negative(shear_rate) ** law.flow_index)
+        return np.asarray(law.yield_stress + law.consistency * not_negative(shear_rate) ** law.flow_index)
 
     def shear_rate(self, shear_stress: FloatOrArray) -> Array:
         """``((tau - tau_y)/K)**(1/n)`` [1/s] at a shear stress [Pa], zero up to the yield stress."""
         law = self.as_herschel_bulkley()
-        excess = np.maximum(_not_negative(shear_stress) - law.yield_stress, 0.0)
+        excess = np.maximum(not_negative(shear_stress) - law.yield_stress, 0.0)
         return np.asarray((excess / law.consistency) ** (1.0 / np.asarray(law.flow_index)))
 
     def _viscosity_at_rest(self) -> Array:
@@ -146,15 +147,15 @@ class Casson(Rheology):
 
     def shear_stress(self, shear_rate: FloatOrArray) -> Array:
         """``(sqrt(tau_y) + sqrt(mu_c rate))**2`` [Pa] at a shear rate [1/s]."""
-        return np.asarray(
-            (np.sqrt(self.yield_stress) + np.sqrt(self.casson_viscosity * _not_negative(shear_rate))) ** 2
-        )
+        return np.asarray((np.sqrt(self.yield_stress) + np.sqrt(self.casson_viscosity * not_negative(shear_rate))) ** 2)
 
     def shear_rate(self, shear_stress: FloatOrArray) -> Array:
         """``(sqrt(tau) - sqrt(tau_y))**2 / mu_c`` [1/s] at a shear stress [Pa], zero up to the yield stress."""
-        stress = np.maximum(_not_negative(shear_stress), self.yield_stress)
+        stress = np.maximum(not_negative(shear_stress), self.yield_stress)
         # the difference of roots, written so that it keeps its digits just above the yield stress
-        root = (stress - self.yield_stress) / np.maximum(np.sqrt(stress) + np.sqrt(self.yield_stress), np.finfo(float).tiny)
+        root = (stress - self.yield_stress) / np.maximum(
+            np.sqrt(stress) + np.sqrt(self.yield_stress), np.finfo(float).tiny
+        )
         return np.asarray(root**2 / self.casson_viscosity)
 
     def _viscosity_at_rest(self) -> Array:
