@@ -17,9 +17,7 @@ from pipeflow.line.catalogue import INCH, MATERIALS
 from pipeflow.line.elements import Element, Equipment, Fluid, Pipe, Vessel
 from pipeflow.rheology import Bingham, Casson, HerschelBulkley, Newtonian, PowerLaw, Rheology
 
-_LAWS: dict[str, type[Rheology]] = {
-    law.key: law for law in (Newtonian, PowerLaw, Bingham, HerschelBulkley, Casson)
-}
+_LAWS: dict[str, type[Rheology]] = {law.key: law for law in (Newtonian, PowerLaw, Bingham, HerschelBulkley, Casson)}
 
 
 def build_case(part: CasePart, file: str) -> Case:

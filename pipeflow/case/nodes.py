@@ -153,9 +153,7 @@ class _Builder:
         if event.anchor is not None:
             self._note(event, f"found the anchor {echo('&' + event.anchor)}; anchors are not accepted")
         if event.tag is not None:
-            self._note(
-                event, f"found the tag {echo(event.tag.replace(_CORE_TAG, '!!'))}; tags are not accepted"
-            )
+            self._note(event, f"found the tag {echo(event.tag.replace(_CORE_TAG, '!!'))}; tags are not accepted")
         return event.anchor is not None or event.tag is not None
 
     def _note(self, event: yaml.Event, message: str) -> None:

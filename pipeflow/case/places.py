@@ -58,6 +58,7 @@ EXAMPLES: Final = {
     "design": "140 m3/h",
     "length": "12 m",
     "pressure_loss": "12 kPa",
+    "name": "candidate A",
     "kind": "centrifugal",
     "curve": "candidate-a.csv",
 }

@@ -75,9 +75,7 @@ def _map_needed(node: Node, what: str) -> str:
     return f"{found}; a map of {what} is needed"
 
 
-def _read_one(
-    tree: Node, scenarios: Mapping, name: str, known: set[Finding]
-) -> tuple[CasePart | None, list[Finding]]:
+def _read_one(tree: Node, scenarios: Mapping, name: str, known: set[Finding]) -> tuple[CasePart | None, list[Finding]]:
     node, home = scenarios.values[name], join("scenarios", name)
     if node.faulty:
         return None, []
@@ -127,7 +125,7 @@ def _steps(tree: Node, path: str) -> list[str]:
     items, rest = match.group(1), path[match.end() :]
     names = _names(tree, items)
     fitting = [name for name in names if name and (rest == f"{name}]" or rest.startswith(f"{name}]."))]
-    if not fitting and "" in names:
+    if not fitting and ("" in names or (items == "route" and not names)):
         raise _UnsureError
     if not fitting:
         raise _PathError(_no_such_item(items, rest, names))

@@ -256,9 +256,7 @@ class PipePart(Part):
         if has_size and value is not None:
             raise at_odds("'size' is given too; one of the two is needed")
         if not has_size and value is None:
-            raise needs(
-                "size", "diameter", message="missing; give 'size' (NPS 8 Sch 40) or 'diameter' (inside)"
-            )
+            raise needs("size", "diameter", message="missing; give 'size' (NPS 8 Sch 40) or 'diameter' (inside)")
         return value
 
     @check("rise")

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Callable
 from dataclasses import dataclass
 from difflib import get_close_matches
@@ -19,7 +20,7 @@ _LISTED = 12
 _PARAMETERS = frozenset(key for part in RHEOLOGY_PARTS.values() for key in part.model_fields)
 
 
-@dataclass
+@dataclass(eq=False)
 class Fault:
     """One error of the schema, walked down to its place in the tree.
 
@@ -39,6 +40,7 @@ class Fault:
     parts: tuple[str, ...] = ()
     faulty: bool = False
     suggestion: str = ""
+    lacking: tuple[str, ...] = ()
 
     def step(self, part: str | int) -> None:
         """Walk one step of the error's location down."""
@@ -145,11 +147,22 @@ def _is_foreign(fault: Fault) -> bool:
 
 
 def _without_consequences(faults: list[Fault]) -> list[Fault]:
-    """Leave out what is missing only because its key is misspelt."""
-    meant = {(id(fault.home), fault.suggestion) for fault in faults if fault.kind == "extra_forbidden"}
-    return [
-        fault for fault in faults if not any((id(fault.home), key) in meant for key in fault.keys_missing)
-    ]
+    """Leave out what is missing only because its key is misspelt, or stands there under another name."""
+    unknown = [fault for fault in faults if fault.kind == "extra_forbidden"]
+    meant = {(id(fault.home), fault.suggestion) for fault in unknown}
+    left = [fault for fault in faults if not any((id(fault.home), key) in meant for key in fault.keys_missing)]
+    strange, lacks = _only_one(unknown), _only_one([fault for fault in left if fault.keys_missing])
+    for home, fault in strange.items():
+        if home in lacks and not fault.suggestion:
+            fault.lacking = lacks[home].keys_missing
+            left.remove(lacks[home])
+    return left
+
+
+def _only_one(faults: list[Fault]) -> dict[int, Fault]:
+    """Give, by map, the fault that is the only one of its map."""
+    counts = Counter(id(fault.home) for fault in faults)
+    return {id(fault.home): fault for fault in faults if counts[id(fault.home)] == 1}
 
 
 def _finding(fault: Fault) -> Finding:
@@ -188,7 +201,8 @@ def _fields(parts: tuple[str, ...]) -> list[tuple[str, Any]]:
 
 def _unknown_key(fault: Fault) -> str:
     accepted = ", ".join(_accepted(fault.parts[:-1]))
-    return f"unknown key; {_did_you_mean(fault)}accepted: {accepted}"
+    lacking = f"{' or '.join(fault.lacking)} is missing; " if fault.lacking else ""
+    return f"unknown key; {_did_you_mean(fault)}{lacking}accepted: {accepted}"
 
 
 def _did_you_mean(fault: Fault) -> str:

@@ -37,9 +37,7 @@ def methods_table() -> str:
 
 
 def units_table() -> str:
-    rows = [
-        f"| {dimension} | {', '.join(f'`{unit}`' for unit in units)} |" for dimension, units in UNITS.items()
-    ]
+    rows = [f"| {dimension} | {', '.join(f'`{unit}`' for unit in units)} |" for dimension, units in UNITS.items()]
     return "\n".join(["| dimension | accepted units |", "|---|---|", *rows])
 
 

@@ -49,9 +49,7 @@ def test_a_full_case() -> None:
     case = load_case(Path(__file__).parent / "good.yaml")
     assert case.fluid.density == 1420.0
     assert case.fluid.rheology == HerschelBulkley(9.5, 0.62, 0.58)
-    assert case.flow == FlowRange(
-        pytest.approx(110 / 3600), pytest.approx(140 / 3600), pytest.approx(160 / 3600)
-    )
+    assert case.flow == FlowRange(pytest.approx(110 / 3600), pytest.approx(140 / 3600), pytest.approx(160 / 3600))
     assert (case.source, case.destination) == (Vessel(0.0, 3.2), Vessel(350e3, 2.0))
     assert pipe(case).fittings == {"entrance": 1.0, "elbow_90_long_radius": 2.0, "butterfly_valve": 1.0}
     assert case.route[1] == Equipment("densitometer", 12e3, pytest.approx(140 / 3600), 2.0)
