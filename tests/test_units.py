@@ -175,9 +175,7 @@ def test_ranges(text: str) -> None:
     assert units.parse_range(text, "shear rate") == (5.0, 400.0)
 
 
-@pytest.mark.parametrize(
-    "text", ["400 .. 5 1/s", "5 .. 5 1/s", "5 1/s", "5 - 400 1/s", "5 .. 400", "5 .. 4 m"]
-)
+@pytest.mark.parametrize("text", ["400 .. 5 1/s", "5 .. 5 1/s", "5 1/s", "5 - 400 1/s", "5 .. 400", "5 .. 4 m"])
 def test_ranges_refused(text: str) -> None:
     with pytest.raises(units.UnitError, match="found"):
         units.parse_range(text, "shear rate")
@@ -192,9 +190,7 @@ def test_round_trip_through_every_unit(entry: tuple[str, str], number: float) ->
 
 
 @given(st.sampled_from(ENTRIES), st.floats(1e-3, 1e9), st.integers(1, 15))
-def test_what_is_written_is_read_back_to_its_digits(
-    entry: tuple[str, str], value: float, digits: int
-) -> None:
+def test_what_is_written_is_read_back_to_its_digits(entry: tuple[str, str], value: float, digits: int) -> None:
     dimension, text = entry
     written = units.format_value(value, text, digits)
     shown = units.to_display(value, text)

@@ -142,9 +142,7 @@ def cut(text: str, rng: random.Random) -> str:
     return text[: rng.randrange(len(text) + 1)]
 
 
-QUANTITY_LINES = [
-    number for number, line in enumerate(LINES) if line.endswith((" m", " mm", " Pa", " kPa", " kg/m3"))
-]
+QUANTITY_LINES = [number for number, line in enumerate(LINES) if line.endswith((" m", " mm", " Pa", " kPa", " kg/m3"))]
 
 
 @given(st.sampled_from(QUANTITY_LINES), st.sampled_from(("nan m", "1,5 m", "1", "x", "1e400 m")))
