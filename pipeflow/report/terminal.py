@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Container, Iterable, Iterator, Mapping
 from dataclasses import fields
 from textwrap import fill
 
@@ -13,12 +13,13 @@ from rich.text import Text
 from pipeflow.case.model import Case
 from pipeflow.line.elements import Pipe
 from pipeflow.rheology import Rheology
-from pipeflow.study import SAFETY_NOTICE, ElementResult, Result
+from pipeflow.study.result import SAFETY_NOTICE, ElementResult, Result
 from pipeflow.units import format_value, significant, to_display
 from pipeflow.verdict import Check
 
 WIDTH = 80
-MARK = {"ok": "ok", "caution": "CAUTION", "fail": "FAIL", "not checked": "not checked"}
+MARK = {"ok": "ok", "not checked": "not checked", "caution": "CAUTION", "fail": "FAIL"}
+"""The word for each status, the gravest last."""
 STYLE = {"ok": "green", "caution": "yellow", "fail": "bold red", "not checked": "dim"}
 PARAMETERS = {
     "viscosity": "viscosity",
@@ -34,10 +35,16 @@ def print_result(result: Result, console: Console | None = None) -> None:
     console = console or Console(highlight=False)
     console.width = min(console.width, WIDTH)
     page = _Page(console)
-    page.result(result)
+    page.case(result)
+    page.flow(result)
+    page.methods(result)
+    if result.scenarios:
+        page.heading("Scenarios side by side, at design flow")
+        columns = ("", "head loss\nm", "upper\nm", "total head\nm", "pressure\nkPa", "regime", "checks")
+        page.rows(columns, _side_by_side(result), words=(0, 5, 6))
     for name, scenario in result.scenarios.items():
-        page.heading(f"Scenario: {name}")
-        page.scenario(scenario)
+        page.banner(f"Scenario: {name}")
+        page.flow(scenario)
     page.heading("Before relying on this")
     page.text(SAFETY_NOTICE)
 
@@ -48,65 +55,117 @@ class _Page:
     def __init__(self, console: Console) -> None:
         self.console = console
 
+    def banner(self, text: str) -> None:
+        self.console.print()
+        self.console.print(Text("=" * self.console.width))
+        self.console.print(Text(text, style="bold"))
+
     def heading(self, text: str) -> None:
         self.console.print()
         self.console.print(Text(text, style="bold"))
         self.console.print(Text("-" * min(len(text), self.console.width)))
 
-    def text(self, text: str, indent: str = "") -> None:
-        self.console.print(
-            Text(fill(text, self.console.width, initial_indent=indent, subsequent_indent=" " * len(indent)))
-        )
+    def text(self, text: str, mark: str = "") -> None:
+        """Print a paragraph, ``mark`` hanging before it."""
+        hang = " " * len(mark)
+        self.console.print(Text(fill(text, self.console.width, initial_indent=mark, subsequent_indent=hang)))
 
-    def rows(self, columns: Iterable[str], rows: Iterable[Iterable[str]], names: int = 1) -> None:
-        """Print a table; its first ``names`` columns are words, the others figures."""
-        table = Table(box=None, padding=(0, 1, 0, 0), pad_edge=False, header_style="dim")
+    def rows(self, columns: Iterable[str], rows: Iterable[Iterable[str]], words: Container[int] = (0,)) -> None:
+        """Print a table; the columns numbered in ``words`` hold words, the others figures."""
+        table = Table(box=None, padding=(0, 2, 0, 0), pad_edge=False, collapse_padding=True)
         for index, column in enumerate(columns):
-            table.add_column(column, justify="left" if index < names else "right", overflow="fold")
+            table.add_column(
+                Text(column), justify="left" if index in words else "right", overflow="fold", no_wrap=index > 0
+            )
+        table.show_header = any(column.header.plain for column in table.columns)  # type: ignore[union-attr]
         for row in rows:
             table.add_row(*(Text(cell) for cell in row))
         self.console.print(table)
 
-    def result(self, result: Result) -> None:
+    def case(self, result: Result) -> None:
         case = result.case
-        title = f"{case.title}" + (f"  (revision {case.revision})" if case.revision else "")
+        title = case.title + (f", revision {case.revision}" if case.revision else "")
         self.console.print(Text(fill(title, self.console.width), style="bold"))
         self.console.print(Text(case.file))
         if case.notes:
             self.text(case.notes)
         self.heading("Fluid and basis")
-        self.rows(("", ""), _basis(case), names=2)
+        self.rows(("", ""), _basis(case), words=(0, 1))
         self.heading("Route")
-        self.rows(
-            ("element", "size", "bore mm", "length m", "rise m", "rough. mm", "fittings"),
-            _route(result),
-            names=2,
-        )
-        self.scenario(result)
-        self.heading("Methods")
-        for use in result.methods:
-            self.text(f"{use.source.key}: {use.source.citation}. For {use.used_for}.", indent="  ")
+        columns = ("element", "size", "bore\nmm", "length\nm", "rise\nm", "roughness\nmm")
+        self.rows(columns, _route(result), words=(0, 1))
+        for pipe in case.route:
+            if isinstance(pipe, Pipe) and pipe.fittings:
+                self.text(", ".join(_counted(pipe.fittings)), mark=f"  {pipe.name}: ")
 
-    def scenario(self, result: Result) -> None:
+    def flow(self, result: Result) -> None:
         self.heading(f"Flow at design, {format_value(result.case.flow.design, 'volume flow')}")
-        columns = ("element", "m/s", "Re_MR", "critical", "regime", "wall Pa", "friction kPa", "fittings kPa")
-        self.rows(columns, (_flow_row(element) for element in result.elements))
+        columns = (
+            "element",
+            "V\nm/s",
+            "Re_MR",
+            "Re_MR\ncritical",
+            "regime",
+            "wall\nPa",
+            "friction\nkPa",
+            "minor\nkPa",
+        )
+        self.rows(columns, (_flow_row(element) for element in result.elements), words=(0, 4))
         self.heading("Totals")
-        self.rows(("", "central", "upper", ""), _totals(result))
+        self.rows(("", "central", "upper", ""), _totals(result), words=(0, 3))
+        self.spread(result)
         self.checks(result)
         if result.cautions:
             self.heading("Cautions")
             for caution in result.cautions:
-                self.text(caution, indent="! ")
+                self.text(caution, mark="! ")
+
+    def spread(self, result: Result) -> None:
+        if result.spread.head_loss:
+            figures = ", ".join(f"{key} {_number(head)}" for key, head in result.spread.head_loss.items())
+            self.text(f"Head loss by method, m: {figures}.", mark="  ")
+        if result.spread.left_out:
+            reasons = "; ".join(f"{key}, {why}" for key, why in result.spread.left_out.items())
+            self.text(f"Not in the upper figure: {reasons}.", mark="  ")
 
     def checks(self, result: Result) -> None:
         self.heading("Checks")
         if not result.checks:
-            self.text("No limit is stated in the case, so none was checked.")
+            self.text("The case states no limit, so none was checked.")
         for check in result.checks:
-            line = Text(f"{MARK[check.status]:<8}", style=STYLE[check.status])
-            self.console.print(line.append(Text(f"{check.name}: {_against(check)}", style="default")))
-            self.text(check.basis, indent=" " * 8)
+            self.console.print(Text(f"{MARK[check.status]:<8}", style=STYLE[check.status]), end="")
+            name = check.name.replace("_", " ")
+            self.console.print(Text(fill(f"{name} {_against(check)}; {check.basis}", self.console.width - 8,
+                                         subsequent_indent=" " * 8)))  # fmt: skip
+
+    def methods(self, result: Result) -> None:
+        self.heading("Methods")
+        for use in result.methods:
+            note = f" Note: {use.source.note}." if use.source.note else ""
+            self.text(f"{use.source.key}: {use.used_for}. {use.source.citation}.{note}", mark="- ")
+
+
+def _counted(fittings: Mapping[str, float]) -> list[str]:
+    return [f"{count:g} x {key.replace('_', ' ')}" for key, count in fittings.items()]
+
+
+def _side_by_side(result: Result) -> Iterator[tuple[str, ...]]:
+    for name, one in (("the case", result), *result.scenarios.items()):
+        totals = one.totals
+        regimes = dict.fromkeys(element.regime for element in one.elements if element.regime)
+        statuses = {check.status for check in one.checks}
+        worst = next(
+            (MARK[status] for status in ("fail", "caution", "not checked", "ok") if status in statuses), "none"
+        )
+        yield (
+            name,
+            _number(totals.head_loss),
+            _number(totals.head_loss_upper),
+            _number(totals.total_head),
+            _number(totals.pressure_required, "kPa"),
+            "\n".join(regimes),
+            worst,
+        )
 
 
 def _against(check: Check) -> str:
@@ -120,7 +179,7 @@ def _against(check: Check) -> str:
 
 
 def _basis(case: Case) -> Iterator[tuple[str, str]]:
-    yield "density", format_value(case.fluid.density, "kg/m3")
+    yield "density", format_value(float(case.fluid.density), "kg/m3")
     yield "rheology", case.fluid.rheology.key
     yield from _parameters(case.fluid.rheology)
     if case.tested_shear_rate:
@@ -135,7 +194,7 @@ def _basis(case: Case) -> Iterator[tuple[str, str]]:
         )
     for name, vessel in (("source", case.source), ("destination", case.destination)):
         if vessel:
-            pressure, level = format_value(vessel.pressure, "kPa"), format_value(vessel.level, "m")
+            pressure, level = format_value(float(vessel.pressure), "kPa"), format_value(float(vessel.level), "m")
             yield name, f"{pressure} gauge, level {level}"
 
 
@@ -148,21 +207,18 @@ def _parameters(rheology: Rheology) -> Iterator[tuple[str, str]]:
 
 
 def _route(result: Result) -> Iterator[tuple[str, ...]]:
-    fittings = {pipe.name: pipe.fittings for pipe in result.case.route if isinstance(pipe, Pipe)}
     for element in result.elements:
         if element.kind == "equipment":
-            yield element.name, "equipment", "", "", "", "", ""
-            continue
-        counts = ", ".join(f"{count:g} {key}" for key, count in fittings[element.name].items())
-        yield (
-            element.name,
-            element.size or "by bore",
-            _number(element.diameter, "mm"),
-            _number(element.length, "m"),
-            _number(element.rise, "m"),
-            _number(element.roughness, "mm", 2),
-            counts,
-        )
+            yield element.name, "equipment", "", "", "", ""
+        else:
+            yield (
+                element.name,
+                element.size or "by bore",
+                _number(element.diameter, "mm"),
+                _number(element.length, "m"),
+                _number(element.rise, "m"),
+                _number(element.roughness, "mm", 2),
+            )
 
 
 def _flow_row(element: ElementResult) -> tuple[str, ...]:
