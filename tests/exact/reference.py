@@ -2,8 +2,8 @@
 
 Nothing here is taken from the project: a fluid is its own ``tau(rate)``; laminar flow is the Rabinowitsch–Mooney
 integral in its by-parts form, ``8V/D = 4/3 rate_w - 4/(3 tau_w^3) Int_0^rate_w tau^3 d rate`` (Rabinowitsch 1929,
-Mooney 1931), done by quadrature; turbulent laws stand in their classical implicit form in f and Re and are bisected. All of
-these formulas are from memory of the papers named at each.
+Mooney 1931), done by quadrature; turbulent laws stand in their classical implicit form in f and Re and are
+bisected. All of these formulas are from memory of the papers named at each.
 """
 
 from __future__ import annotations

@@ -135,7 +135,7 @@ def test_ryan_johnson_as_printed_is_2099_at_n_1():
 
 @pytest.mark.parametrize("model", ["bingham", "herschel-bulkley", "casson"])
 def test_dodge_metzner_of_yield_fluids_keeps_to_its_rising_branch(model):
-    """By the reference V only rises above the stress where the branch begins; just below it the flow is transitional."""
+    """By the reference V only rises above the stress where the branch begins; just below, the flow is transitional."""
     for fluid, diameter, density, roughness, first in cases(model)[:5]:
         pipe = (diameter, density, fluid.rheology())
         edges = solve_pipes(

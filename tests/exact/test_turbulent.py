@@ -135,7 +135,7 @@ def test_reference_quantities_in_their_limits():
 
 @pytest.mark.parametrize("n", [2.0, 2.5])
 def test_no_turbulent_figure_from_n_2_on(n):
-    """``Re_MR ~ V^(2-n)`` no longer rises with the velocity, so nothing ends laminar flow: no figure, or a laminar one."""
+    """``Re_MR ~ V^(2-n)`` no longer rises with the velocity, so nothing ends laminar flow."""
     consistency = np.array([1e-12, 1.0])
     flow = solve_pipes(3.0, 0.1, 1000.0, PowerLaw(consistency, n), with_edges=True)
     assert flow.status.tolist() == [Status.NO_ROOT, Status.CONVERGED]
