@@ -22,9 +22,10 @@ def tube_law(rheology: Rheology, like: Callable[[object], Array] = np.asarray) -
     """
     if isinstance(rheology, GeneralizedPowerLaw):
         law = rheology.as_herschel_bulkley()
-        return GeneralizedPowerLawTube(like(law.yield_stress), np.log(like(law.consistency)), like(law.flow_index))
+        consistency, index = _above_zero(like(law.consistency)), _above_zero(like(law.flow_index))
+        return GeneralizedPowerLawTube(like(law.yield_stress), np.log(consistency), index)
     if isinstance(rheology, Casson):
-        return CassonTube(like(rheology.yield_stress), np.log(like(rheology.casson_viscosity)))
+        return CassonTube(like(rheology.yield_stress), np.log(_above_zero(like(rheology.casson_viscosity))))
     parameters: dict[str, Any] = {f.name: like(getattr(rheology, f.name)) for f in fields(rheology)}  # type: ignore[arg-type]
     if isinstance(rheology, Ellis):
         return EllisTube(replace(rheology, **parameters), like(0.0))
@@ -32,3 +33,7 @@ def tube_law(rheology: Rheology, like: Callable[[object], Array] = np.asarray) -
         yield_stress = np.where(rheology.is_rising(), rheology.yield_stress, np.nan)
         return ByPartsTube(replace(rheology, **parameters), like(yield_stress))  # type: ignore[type-var]
     raise TypeError(f"no laminar tube flow is known for {type(rheology).__name__}")
+
+
+def _above_zero(values: Array) -> Array:
+    return np.where(values > 0, values, np.nan)

@@ -169,7 +169,8 @@ def _fitting_loss(pipes: Sequence[Pipe], solved: PipeFlow, velocity: Array, dens
 def _equipment_loss(item: Equipment, flow: FloatOrArray) -> FloatOrArray:
     if item.at_flow is None:
         return item.pressure_loss
-    return item.pressure_loss * (np.asarray(flow) / item.at_flow) ** item.exponent
+    with np.errstate(invalid="ignore"):
+        return item.pressure_loss * (np.asarray(flow) / item.at_flow) ** item.exponent
 
 
 def _static_head(weight: Array, pipes: Sequence[Pipe], source: Vessel, destination: Vessel) -> Array:
