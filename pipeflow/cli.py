@@ -83,6 +83,8 @@ def _print(result: Result, as_json: bool) -> None:
 
 def main() -> None:
     """Run the command; an error that is none of the user's leaves with status 3 and says so."""
+    # no plugin of pydantic is wanted, and looking for them costs more than solving the case
+    os.environ.setdefault("PYDANTIC_DISABLE_PLUGINS", "__all__")
     try:
         app()
     except BrokenPipeError:

@@ -7,7 +7,7 @@ from dataclasses import fields
 from typing import Any
 
 from pipeflow.sources import Source
-from pipeflow.study import SAFETY_NOTICE, ElementResult, MethodUse, Result, Totals
+from pipeflow.study.result import SAFETY_NOTICE, ElementResult, MethodUse, Result, Totals
 from pipeflow.verdict import Check
 
 _UNITS = {
@@ -17,6 +17,8 @@ _UNITS = {
     "roughness": "m",
     "velocity": "m_s",
     "critical_velocity": "m_s",
+    "critical_velocity_lowest": "m_s",
+    "critical_velocity_highest": "m_s",
     "turbulent_velocity": "m_s",
     "wall_shear_stress": "Pa",
     "wall_shear_rate": "1_s",
@@ -46,6 +48,7 @@ def document(result: Result) -> dict[str, Any]:
         "flow_maximum_m3_s": case.flow.maximum,
         "elements": [_fields(element) for element in result.elements],
         "totals": _fields(result.totals),
+        "method_spread": {"head_loss_m": result.spread.head_loss, "left_out": result.spread.left_out},
         "checks": [_check(check) for check in result.checks],
         "cautions": list(result.cautions),
         "methods": [_method(use) for use in result.methods],

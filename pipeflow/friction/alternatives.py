@@ -6,6 +6,8 @@ power law past its yield stress, ``R`` the radius of the pipe.
 
 from __future__ import annotations
 
+from functools import cache
+
 import numpy as np
 
 from pipeflow.arrays import Array
@@ -99,9 +101,15 @@ def hedstrom(wall: Wall, law: GeneralizedPowerLawTube, bore: Bore) -> Array:
 
 HANKS_NODES = 48
 HANKS_STRETCH = 14.0
-_nodes, _weights = np.polynomial.legendre.leggauss(HANKS_NODES)
-_position = np.expm1(HANKS_STRETCH * (_nodes + 1.0) / 2.0) / np.expm1(HANKS_STRETCH)
-_weight = _weights / 2.0 * HANKS_STRETCH * np.exp(HANKS_STRETCH * (_nodes + 1.0) / 2.0) / np.expm1(HANKS_STRETCH)
+
+
+@cache
+def _section_rule() -> tuple[Array, Array]:
+    """Nodes and weights on (0, 1) as columns, closest together at 0 by so many e-folds as :data:`HANKS_STRETCH`."""
+    nodes, weights = np.polynomial.legendre.leggauss(HANKS_NODES)
+    exponent = HANKS_STRETCH * (nodes + 1.0) / 2.0
+    full = np.expm1(HANKS_STRETCH)
+    return (np.expm1(exponent) / full)[:, None], (weights / 2.0 * HANKS_STRETCH * np.exp(exponent) / full)[:, None]
 
 
 def hanks(wall: Wall, law: GeneralizedPowerLawTube, bore: Bore) -> Array:
@@ -122,11 +130,12 @@ def hanks(wall: Wall, law: GeneralizedPowerLawTube, bore: Bore) -> Array:
     damping = (np.exp(log_rh) - np.exp(_critical_log_rh(law, log_hedstrom))) / (
         2.0 * np.sqrt(2.0) * _hanks_b(n, log_hedstrom)
     )
-    depth = wall.sheared * _position[:, None]  # 1 - xi, closest together at the wall
+    position, weight = _section_rule()
+    depth = wall.sheared * position  # 1 - xi
     length = 0.36 * radius * depth * -np.expm1(-np.maximum(damping, 0.0) * depth)
     log_excess = np.log(wall.stress * (wall.sheared - depth))
     rate = np.exp(_log_rate_with_mixing(log_excess, law, np.log(bore.density * length**2)))
-    return radius * wall.sheared * (_weight[:, None] * rate * (1.0 - depth) ** 2).sum(axis=0)
+    return radius * wall.sheared * (weight * rate * (1.0 - depth) ** 2).sum(axis=0)
 
 
 def _log_rate_with_mixing(log_excess: Array, law: GeneralizedPowerLawTube, log_mixing: Array) -> Array:

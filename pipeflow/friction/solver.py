@@ -11,7 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from pipeflow.arrays import Array, FloatOrArray
-from pipeflow.friction.criteria import Criterion
+from pipeflow.friction.criteria import CRITERIA, Criterion
 from pipeflow.friction.laminar import TubeLaw, Wall
 from pipeflow.friction.methods import critical_criterion, turbulent_method
 from pipeflow.friction.transition import Edges, TurbulentBranch, transition_edges
@@ -161,6 +161,19 @@ def solve_pipes(
             part = slice(first, first + CHUNK)
             pieces.append(_solve(speed[part], take(law, part), take(bore, part), methods, with_edges))
     return _joined(pieces, shape)
+
+
+def critical_velocities(
+    diameter: FloatOrArray, density: FloatOrArray, rheology: Rheology
+) -> dict[str, Array]:
+    """End of laminar flow, m/s, by every criterion that knows the rheology; arguments as for the solver."""
+    shape, flatten = _flattener(diameter, density, rheology)
+    law, bore = tube_law(rheology, flatten), Bore(flatten(diameter), flatten(density), flatten(0.0), flatten(np.nan))
+    known = {key: criterion for key, criterion in CRITERIA.items() if rheology.key in criterion.models}
+    with np.errstate(all="ignore"):
+        start = law.guess(np.log(8.0 / bore.diameter))
+        found = {key: transition_edges(law, bore, start, criterion) for key, criterion in known.items()}
+        return {key: np.exp(edges.log_velocity).reshape(shape) for key, edges in found.items()}
 
 
 def _flattener(*items: Any) -> tuple[tuple[int, ...], Callable[[object], Array]]:

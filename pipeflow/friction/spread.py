@@ -108,3 +108,4 @@ def _pick_rheology(rheology: Rheology, shape: tuple[int, ...], index: NDArray[np
         for f in fields(rheology)  # type: ignore[arg-type]
     }
     return replace(rheology, **parameters)  # type: ignore[type-var]
+

@@ -20,7 +20,7 @@ from pipeflow.rootfind import find_root
 from pipeflow.sources import Source
 
 LOG_BAND = float(np.log(4000.0 / 2100.0))
-GOLDEN = float((np.sqrt(5.0) - 1.0) / 2.0)
+TURNING_LADDERS = (57, 17, 17, 17, 17)
 
 TRANSITION_LINE = Source(
     key="transition-line",
@@ -139,16 +139,16 @@ def _turbulent_excess(
 def last_turning_point(method: TurbulentMethod, law: TubeLaw, bore: Bore) -> Array:
     """``ln(tau_w - tau_y)`` above which the velocity of a turbulent law only rises; -inf where it always does.
 
-    With n' taken at the turbulent wall stress, n' -> 0 at the plug bends the curve back: roots below are false.
+    With n' taken at the turbulent wall stress, n' -> 0 at the plug bends the curve back: roots below are false. Looked
+    for on a ladder of stresses, and on finer ones between the rungs about it.
     """
-    ladder = np.log(law.yield_stress) + np.arange(-5.0, 9.0, 0.25)[:, None]
-    velocity = np.stack([method.velocity(law.wall(rung), law, bore) for rung in ladder])
-    falling = ~(np.diff(velocity, axis=0) > 0)
-    last = falling.shape[0] - 1 - np.argmax(falling[::-1], axis=0)
-    column = np.arange(ladder.shape[1])
-    low, high = ladder[last, column], ladder[np.minimum(last + 2, len(ladder) - 1), column]
-    for _ in range(45):
-        first, second = high - GOLDEN * (high - low), low + GOLDEN * (high - low)
-        rising = method.velocity(law.wall(first), law, bore) < method.velocity(law.wall(second), law, bore)
-        low, high = np.where(rising, low, first), np.where(rising, second, high)
-    return np.where(falling.any(axis=0), high, -np.inf)
+    low, high = np.log(law.yield_stress) - 5.0, np.log(law.yield_stress) + 9.0
+    found = np.zeros(low.shape, dtype=bool)
+    for rungs in TURNING_LADDERS:
+        ladder = low + np.linspace(0.0, 1.0, rungs)[:, None] * (high - low)
+        falling = ~(np.diff(method.velocity(law.wall(ladder), law, bore), axis=0) > 0)
+        found |= falling.any(axis=0)
+        last = rungs - 2 - np.argmax(falling[::-1], axis=0)
+        column = np.arange(low.size)
+        low, high = ladder[last, column], ladder[np.minimum(last + 2, rungs - 1), column]
+    return np.where(found, high, -np.inf)

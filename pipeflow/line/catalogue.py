@@ -11,8 +11,9 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from fractions import Fraction
 from functools import cache
-from importlib.resources import files
+from pathlib import Path
 
+DATA = Path(__file__).parent.parent / "data"
 INCH = 0.0254
 DIN_SERIES = {
     "DIN 11850 series 1": "DIN 11850 series 1",
@@ -77,7 +78,7 @@ MATERIALS = {
 @cache
 def table(name: str) -> tuple[dict[str, str], ...]:
     """Rows of a table of ``pipeflow/data``, by column, its ``#`` lines of source left out."""
-    text = files("pipeflow").joinpath("data").joinpath(name).read_text(encoding="utf-8")
+    text = (DATA / name).read_text(encoding="utf-8")
     return tuple(csv.DictReader(line for line in text.splitlines() if not line.startswith("#")))
 
 

@@ -2,12 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Container, Iterable, Iterator, Mapping
+from collections.abc import Container, Iterable, Iterator, Mapping, Sequence
 from dataclasses import fields
 from textwrap import fill
 
 from rich.console import Console
-from rich.table import Table
 from rich.text import Text
 
 from pipeflow.case.model import Case
@@ -70,17 +69,10 @@ class _Page:
         hang = " " * len(mark)
         self.console.print(Text(fill(text, self.console.width, initial_indent=mark, subsequent_indent=hang)))
 
-    def rows(self, columns: Iterable[str], rows: Iterable[Iterable[str]], words: Container[int] = (0,)) -> None:
+    def rows(self, columns: Sequence[str], rows: Iterable[Sequence[str]], words: Container[int] = (0,)) -> None:
         """Print a table; the columns numbered in ``words`` hold words, the others figures."""
-        table = Table(box=None, padding=(0, 2, 0, 0), pad_edge=False, collapse_padding=True)
-        for index, column in enumerate(columns):
-            table.add_column(
-                Text(column), justify="left" if index in words else "right", overflow="fold", no_wrap=index > 0
-            )
-        table.show_header = any(column.header.plain for column in table.columns)  # type: ignore[union-attr]
-        for row in rows:
-            table.add_row(*(Text(cell) for cell in row))
-        self.console.print(table)
+        for line in _aligned([*_heads(columns), *rows], words):
+            self.console.print(Text(line))
 
     def case(self, result: Result) -> None:
         case = result.case
@@ -143,6 +135,24 @@ class _Page:
         for use in result.methods:
             note = f" Note: {use.source.note}." if use.source.note else ""
             self.text(f"{use.source.key}: {use.used_for}. {use.source.citation}.{note}", mark="- ")
+
+
+def _heads(columns: Sequence[str]) -> list[list[str]]:
+    """Lay the lines of column heads out as rows, the last line of each next to its figures; none if all are empty."""
+    parts = [column.split("\n") for column in columns]
+    height = max(len(part) for part in parts) if any(columns) else 0
+    return [[part[row - height] if row >= height - len(part) else "" for part in parts] for row in range(height)]
+
+
+def _aligned(rows: Sequence[Sequence[str]], words: Container[int]) -> Iterator[str]:
+    """Lines of a table of cells, words to the left and figures to the right, two spaces apart."""
+    widths = [max(len(cell) for cell in column) for column in zip(*rows, strict=True)]
+    for row in rows:
+        cells = (
+            cell.ljust(width) if index in words else cell.rjust(width)
+            for index, (cell, width) in enumerate(zip(row, widths, strict=True))
+        )
+        yield "  ".join(cells).rstrip()
 
 
 def _counted(fittings: Mapping[str, float]) -> list[str]:

@@ -1,114 +1,30 @@
-"""One case, one result: everything computed for a page, nothing printed."""
+"""Solve a case: the line at its flows, its limits, its cautions, the methods behind it."""
 
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass, fields
+from dataclasses import fields
 
 import numpy as np
 
+from pipeflow.arrays import Array
 from pipeflow.case.model import Case
-from pipeflow.friction import PipeFlow, Regime, Status, solve_pipes
+from pipeflow.friction import Regime, Status
 from pipeflow.friction.laminar import BUCKINGHAM_REINER, HAGEN_POISEUILLE, METZNER_REED, RABINOWITSCH_MOONEY
 from pipeflow.friction.methods import critical_criterion, turbulent_method
+from pipeflow.friction.solver import critical_velocities
 from pipeflow.friction.transition import TRANSITION_LINE
 from pipeflow.line import route
-from pipeflow.line.catalogue import MATERIALS
 from pipeflow.line.elements import Equipment, Pipe
-from pipeflow.line.fittings import DEFAULT_METHOD, ENDS, METHODS, fittings
+from pipeflow.line.fittings import DEFAULT_METHOD, METHODS, fittings
 from pipeflow.line.route import LineFlow
 from pipeflow.operability.limits import at_least, at_most
-from pipeflow.operability.transition import flat_band_caution, transition_cautions
-from pipeflow.operability.validity import range_cautions, tested_rate_cautions
 from pipeflow.rheology import Rheology
 from pipeflow.sources import Source
+from pipeflow.study.cautions import cautions
+from pipeflow.study.flows import DESIGN, MAXIMUM, MINIMUM, one_pipe, pipes_of
+from pipeflow.study.result import ElementResult, MethodSpread, MethodUse, Result, Totals
 from pipeflow.verdict import Check
-
-DESIGN, MINIMUM, MAXIMUM = 0, 1, 2
-FLOW_NAMES = ("design flow", "minimum flow", "maximum flow")
-
-SAFETY_NOTICE = (
-    "A pressurised slurry line can hurt people. A blocked or stopped line may need far more pressure to restart than to "
-    "run, and may hold pressure after the pump stops: fit relief, isolation and a way to depressurise, and prove it "
-    "empty before opening it. Hot or corrosive contents need their own precautions. These figures are an aid to "
-    "design: local codes and the judgement of a licensed engineer take precedence."
-)
-
-
-@dataclass(frozen=True)
-class ElementResult:
-    """One element at design flow, SI units; None where a figure has no meaning for the element or the flow."""
-
-    name: str
-    kind: str
-    rise: float = 0.0
-    friction_loss: float = 0.0
-    friction_loss_upper: float = 0.0
-    fitting_loss: float = 0.0
-    equipment_loss: float = 0.0
-    size: str | None = None
-    diameter: float | None = None
-    length: float | None = None
-    roughness: float | None = None
-    velocity: float | None = None
-    regime: str | None = None
-    method: str | None = None
-    reynolds_mr: float | None = None
-    reynolds_critical: float | None = None
-    critical_velocity: float | None = None
-    turbulent_velocity: float | None = None
-    friction_factor_fanning: float | None = None
-    wall_shear_stress: float | None = None
-    wall_shear_rate: float | None = None
-    local_flow_index: float | None = None
-
-
-@dataclass(frozen=True)
-class Totals:
-    """The line at design flow: losses in Pa, heads in metres of the slurry."""
-
-    friction_loss: float
-    friction_loss_upper: float
-    fitting_loss: float
-    equipment_loss: float
-    head_loss: float
-    head_loss_upper: float
-    static_head: float
-    total_head: float
-    total_head_upper: float
-    pressure_required: float
-    pressure_required_upper: float
-
-
-@dataclass(frozen=True)
-class MethodUse:
-    """A published method that the result rests on, and what for."""
-
-    source: Source
-    used_for: str
-
-
-@dataclass(frozen=True)
-class Result:
-    """What is known of one case.
-
-    ``fails`` tells whether a check fails, here or in a scenario.
-    """
-
-    case: Case
-    elements: tuple[ElementResult, ...]
-    totals: Totals
-    checks: tuple[Check, ...]
-    cautions: tuple[str, ...]
-    methods: tuple[MethodUse, ...]
-    scenarios: dict[str, Result]
-
-    @property
-    def fails(self) -> bool:
-        """A check fails, of the case itself or of one of its scenarios."""
-        return any(check.status == "fail" for check in self.checks) or any(
-            result.fails for result in self.scenarios.values()
-        )
 
 
 def solve(case: Case) -> Result:
@@ -139,29 +55,41 @@ def solve(case: Case) -> Result:
         case=case,
         elements=elements,
         totals=_totals(line),
+        spread=_spread(line, elements),
         checks=tuple(_checks(case, line)),
-        cautions=tuple(dict.fromkeys(_cautions(case, line))),
+        cautions=tuple(cautions(case, line, elements)),
         methods=tuple(_methods(case, elements)),
         scenarios={name: solve(scenario) for name, scenario in case.scenarios.items()},
     )
 
 
 def _elements(case: Case, line: LineFlow) -> Iterator[ElementResult]:
-    pipes = equipment = 0
+    band = _critical_band(case)
+    pipe_indices = iter(range(line.velocity.shape[-1]))
+    losses = iter(line.equipment_loss[DESIGN])
     for element in case.route:
         if isinstance(element, Equipment):
-            loss = np.broadcast_to(line.equipment_loss, (3, line.equipment_loss.shape[-1]))[DESIGN, equipment]
-            yield ElementResult(element.name, "equipment", equipment_loss=float(loss))
-            equipment += 1
+            yield ElementResult(element.name, "equipment", equipment_loss=float(next(losses)))
         else:
-            yield _pipe(case, element, line, pipes)
-            pipes += 1
+            yield _pipe(case, element, line, next(pipe_indices), band)
 
 
-def _pipe(case: Case, pipe: Pipe, line: LineFlow, index: int) -> ElementResult:
-    flow = _one(line, DESIGN, index)
+def _critical_band(case: Case) -> Array:
+    """Lowest and highest end of laminar flow of each pipe over the criteria, m/s."""
+    pipes = pipes_of(case)
+    if not pipes:
+        return np.empty((2, 0))
+    diameter = np.array([pipe.diameter for pipe in pipes])
+    found = critical_velocities(diameter, case.fluid.density, case.fluid.rheology)
+    each = np.stack(list(found.values()))
+    return np.stack([np.fmin.reduce(each), np.fmax.reduce(each)])
+
+
+def _pipe(case: Case, pipe: Pipe, line: LineFlow, index: int, band: Array) -> ElementResult:
+    flow = one_pipe(line, DESIGN, index)
     velocity = float(line.velocity[DESIGN, index])
-    dynamic = case.fluid.density * velocity**2 / 2.0
+    dynamic_pressure = case.fluid.density * velocity**2 / 2.0
+    regime = Regime(int(flow.regime))
     return ElementResult(
         name=pipe.name,
         kind="pipe",
@@ -174,26 +102,23 @@ def _pipe(case: Case, pipe: Pipe, line: LineFlow, index: int) -> ElementResult:
         length=float(pipe.length),
         roughness=float(pipe.roughness),
         velocity=velocity,
-        regime=Regime(int(flow.regime)).name.lower().replace("_", " "),
-        method=_method_key(case, Regime(int(flow.regime))),
+        regime=regime.name.lower().replace("_", " "),
+        method=_method_key(case, regime),
         reynolds_mr=float(flow.reynolds_mr),
-        reynolds_critical=_number(flow.reynolds_critical),
-        critical_velocity=_number(flow.critical_velocity),
-        turbulent_velocity=_number(flow.turbulent_velocity),
-        friction_factor_fanning=_number(flow.wall_shear_stress / dynamic) if dynamic else None,
-        wall_shear_stress=_number(flow.wall_shear_stress),
-        wall_shear_rate=_number(flow.wall_shear_rate),
-        local_flow_index=_number(flow.local_flow_index),
+        reynolds_critical=_known(flow.reynolds_critical),
+        critical_velocity=_known(flow.critical_velocity),
+        critical_velocity_lowest=_known(band[0, index]),
+        critical_velocity_highest=_known(band[1, index]),
+        turbulent_velocity=_known(flow.turbulent_velocity),
+        friction_factor_fanning=_known(flow.wall_shear_stress / dynamic_pressure) if dynamic_pressure else None,
+        wall_shear_stress=_known(flow.wall_shear_stress),
+        wall_shear_rate=_known(flow.wall_shear_rate),
+        local_flow_index=_known(flow.local_flow_index),
     )
 
 
-def _number(value: np.ndarray) -> float | None:
+def _known(value: Array) -> float | None:
     return float(value) if np.isfinite(value) else None
-
-
-def _one(line: LineFlow, flow: int, pipe: int) -> PipeFlow:
-    """Pick one pipe at one flow."""
-    return PipeFlow(*(getattr(line.pipes, field.name)[flow, pipe] for field in fields(PipeFlow)))
 
 
 def _laminar_source(rheology: Rheology) -> Source:
@@ -202,24 +127,26 @@ def _laminar_source(rheology: Rheology) -> Source:
 
 
 def _method_key(case: Case, regime: Regime) -> str:
-    rheology = case.fluid.rheology
     if regime == Regime.TURBULENT:
-        return turbulent_method(rheology, case.methods.turbulent).source.key
-    return TRANSITION_LINE.key if regime == Regime.TRANSITIONAL else _laminar_source(rheology).key
+        return turbulent_method(case.fluid.rheology, case.methods.turbulent).source.key
+    return TRANSITION_LINE.key if regime == Regime.TRANSITIONAL else _laminar_source(case.fluid.rheology).key
 
 
 def _totals(line: LineFlow) -> Totals:
-    each_pipe_or_equipment = ("friction_loss", "friction_loss_upper", "fitting_loss", "equipment_loss")
-    return Totals(**{
-        field.name: float(getattr(line, field.name)[DESIGN].sum() if field.name in each_pipe_or_equipment
-                          else getattr(line, field.name)[DESIGN])
-        for field in fields(Totals)
-    })  # fmt: skip
+    """Sum what is laid out element by element, take the rest as it stands."""
+    figures = {field.name: getattr(line, field.name)[DESIGN] for field in fields(Totals)}
+    return Totals(**{name: float(figure.sum()) for name, figure in figures.items()})
+
+
+def _spread(line: LineFlow, elements: tuple[ElementResult, ...]) -> MethodSpread:
+    if not any(element.regime in ("turbulent", "transitional") for element in elements):
+        return MethodSpread({}, {})
+    found = {key: float(loss[DESIGN]) for key, loss in line.head_loss_by_method.items() if np.isfinite(loss[DESIGN])}
+    return MethodSpread(found, line.left_out)
 
 
 def _checks(case: Case, line: LineFlow) -> Iterator[Check]:
     limits = case.limits
-    highest = f"at maximum flow, {case.flow.maximum * 3600.0:.4g} m3/h"
     if np.any(line.pipes.status == Status.NO_ROOT):
         yield Check("solution", "fail", None, None, "", "no wall shear stress was found for some pipe and flow")
     for name, unit, limit, central, upper in (
@@ -227,83 +154,21 @@ def _checks(case: Case, line: LineFlow) -> Iterator[Check]:
         ("pressure_loss", "Pa", limits.pressure_loss, line.pressure_loss, line.pressure_loss_upper),
     ):
         if limit is not None:
-            yield at_most(name, float(central[MAXIMUM]), float(upper[MAXIMUM]), limit, unit, highest)
-    velocity = line.velocity
-    if limits.velocity_minimum is not None and velocity.shape[-1]:
+            yield at_most(name, float(central[MAXIMUM]), float(upper[MAXIMUM]), limit, unit, "at maximum flow")
+    if line.velocity.shape[-1]:
+        yield from _velocity_checks(case, line.velocity)
+
+
+def _velocity_checks(case: Case, velocity: Array) -> Iterator[Check]:
+    names, limits = [pipe.name for pipe in pipes_of(case)], case.limits
+    if limits.velocity_minimum is not None:
         slowest = int(velocity[MINIMUM].argmin())
-        basis = f"at minimum flow, {case.flow.minimum * 3600.0:.4g} m3/h, in {_pipes(case)[slowest].name}"
+        basis = f"at minimum flow, in {names[slowest]}"
         yield at_least("velocity_minimum", float(velocity[MINIMUM, slowest]), limits.velocity_minimum, "m/s", basis)
-    if limits.velocity_maximum is not None and velocity.shape[-1]:
+    if limits.velocity_maximum is not None:
         fastest = int(velocity[MAXIMUM].argmax())
-        value = float(velocity[MAXIMUM, fastest])
-        basis = f"{highest}, in {_pipes(case)[fastest].name}"
+        value, basis = float(velocity[MAXIMUM, fastest]), f"at maximum flow, in {names[fastest]}"
         yield at_most("velocity_maximum", value, value, limits.velocity_maximum, "m/s", basis)
-
-
-def _pipes(case: Case) -> list[Pipe]:
-    return [element for element in case.route if isinstance(element, Pipe)]
-
-
-def _cautions(case: Case, line: LineFlow) -> Iterator[str]:
-    yield from _input_cautions(case)
-    for index, pipe in enumerate(_pipes(case)):
-        at = {
-            name: (float(line.velocity[flow, index]), _one(line, flow, index))
-            for flow, name in enumerate(_distinct_flows(case))
-            if line.pipes.status[flow, index] == Status.CONVERGED
-        }
-        if not at:
-            continue
-        yield from transition_cautions(pipe.name, at)
-        yield from _flat_band(case, pipe, [flow for _, flow in at.values()])
-        yield from _range_cautions(case, pipe, [flow for _, flow in at.values()])
-
-
-def _distinct_flows(case: Case) -> tuple[str, ...]:
-    """Names of the flows to speak of; a case with one flow has one."""
-    return FLOW_NAMES[:1] if case.flow.minimum == case.flow.maximum else FLOW_NAMES
-
-
-def _input_cautions(case: Case) -> Iterator[str]:
-    pipes = _pipes(case)
-    for material in dict.fromkeys(case.default_roughness.values()):
-        names = [pipe for pipe, of in case.default_roughness.items() if of == material]
-        roughness = MATERIALS[material].roughness * 1e3
-        yield f"roughness {roughness:g} mm, of new {material}, is assumed for {', '.join(names)}"
-    named = {key for pipe in pipes for key in pipe.fittings}
-    if case.source and case.destination and not named & ENDS:
-        yield "the line joins two vessels, but no entrance or exit loss is among its fittings"
-    if case.flow.design == 0:
-        yield "at rest: the losses shown are those that must be overcome before anything moves"
-    if case.pumps:
-        yield "the pumps of the case are read, but not yet set against the system curve"
-
-
-def _flat_band(case: Case, pipe: Pipe, flows: list[PipeFlow]) -> list[str]:
-    inside = [flow for flow in flows if flow.regime == Regime.TRANSITIONAL]
-    if not inside:
-        return []
-    edges = np.array([inside[0].critical_velocity, inside[0].turbulent_velocity])
-    at_edges = solve_pipes(
-        edges, pipe.diameter, case.fluid.density, case.fluid.rheology,
-        roughness=pipe.roughness, method=case.methods.turbulent, critical=case.methods.critical,
-    ).wall_shear_stress  # fmt: skip
-    return flat_band_caution(pipe.name, (edges[0], edges[1]), (at_edges[0], at_edges[1]))
-
-
-def _range_cautions(case: Case, pipe: Pipe, flows: list[PipeFlow]) -> Iterator[str]:
-    source = turbulent_method(case.fluid.rheology, case.methods.turbulent).source
-    for flow in flows:
-        if flow.regime == Regime.TURBULENT:
-            values = {
-                "Re_MR": float(flow.reynolds_mr),
-                "n'": float(flow.local_flow_index),
-                "eps/D": float(pipe.roughness / pipe.diameter),
-            }
-            yield from range_cautions(pipe.name, source, values)
-    rates = [float(flow.wall_shear_rate) for flow in flows]
-    if case.tested_shear_rate:
-        yield from tested_rate_cautions(pipe.name, min(rates), max(rates), case.tested_shear_rate)
 
 
 def _methods(case: Case, elements: tuple[ElementResult, ...]) -> Iterator[MethodUse]:
@@ -312,20 +177,17 @@ def _methods(case: Case, elements: tuple[ElementResult, ...]) -> Iterator[Method
     if pipes:
         yield MethodUse(METZNER_REED, "Reynolds number and local index")
         yield MethodUse(critical_criterion(rheology, case.methods.critical).source, "end of laminar flow")
-    for key, source, used_for in (
-        ("laminar", _laminar_source(rheology), "friction in laminar flow"),
-        ("transitional", TRANSITION_LINE, "friction in the transition"),
-        (
-            "turbulent",
-            turbulent_method(rheology, case.methods.turbulent).source,
-            "friction in turbulent flow",
-        ),
+    turbulent = turbulent_method(rheology, case.methods.turbulent).source
+    for regimes, source, used_for in (
+        (("laminar", "transitional"), _laminar_source(rheology), "laminar friction"),
+        (("transitional",), TRANSITION_LINE, "friction in the transition"),
+        (("turbulent", "transitional"), turbulent, "turbulent friction"),
     ):
-        names = [pipe.name for pipe in pipes if pipe.regime == key or pipe.regime == "transitional"]
+        names = [pipe.name for pipe in pipes if pipe.regime in regimes]
         if names:
-            yield MethodUse(source, f"{used_for}: {', '.join(names)}")
+            yield MethodUse(source, f"{used_for} in {', '.join(names)}")
     preferred = case.methods.fittings or DEFAULT_METHOD
-    used = {key for pipe in _pipes(case) for key in pipe.fittings}
+    used = {key for pipe in pipes_of(case) for key in pipe.fittings}
     for method in METHODS.values():
         keys = sorted(key for key in used if fittings()[key].method(preferred) is method)
         if keys:

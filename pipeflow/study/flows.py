@@ -1,0 +1,28 @@
+"""The flows a case is solved at, and one pipe picked out of a solved line."""
+
+from __future__ import annotations
+
+from dataclasses import fields
+
+from pipeflow.case.model import Case
+from pipeflow.friction import PipeFlow
+from pipeflow.line.elements import Pipe
+from pipeflow.line.route import LineFlow
+
+DESIGN, MINIMUM, MAXIMUM = 0, 1, 2
+FLOW_NAMES = ("design flow", "minimum flow", "maximum flow")
+
+
+def distinct_flows(case: Case) -> tuple[str, ...]:
+    """Names of the flows to speak of: a case with one flow has one."""
+    return FLOW_NAMES[:1] if case.flow.minimum == case.flow.maximum else FLOW_NAMES
+
+
+def pipes_of(case: Case) -> list[Pipe]:
+    """The pipes of the route, in flow order."""
+    return [element for element in case.route if isinstance(element, Pipe)]
+
+
+def one_pipe(line: LineFlow, flow: int, pipe: int) -> PipeFlow:
+    """Pick one pipe at one of the flows."""
+    return PipeFlow(*(getattr(line.pipes, field.name)[flow, pipe] for field in fields(PipeFlow)))

@@ -1,0 +1,103 @@
+"""What a study gives: frozen dataclasses in SI units."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from pipeflow.case.model import Case
+from pipeflow.sources import Source
+from pipeflow.verdict import Check
+
+SAFETY_NOTICE = (
+    "A pressurised slurry line can hurt people. A blocked or stopped line may need far more pressure to restart than "
+    "to run, and may hold pressure after the pump stops: fit relief, isolation and a way to depressurise, and prove "
+    "it empty before opening it. Hot or corrosive contents need their own precautions. These figures are an aid to "
+    "design: local codes and the judgement of a licensed engineer take precedence."
+)
+
+
+@dataclass(frozen=True)
+class ElementResult:
+    """One element at design flow; None where a figure has no meaning for the element or the flow.
+
+    ``critical_velocity`` is the end of laminar flow by the method chosen, ``critical_velocity_lowest`` and ``_highest``
+    by all criteria that know the rheology.
+    """
+
+    name: str
+    kind: str
+    rise: float = 0.0
+    friction_loss: float = 0.0
+    friction_loss_upper: float = 0.0
+    fitting_loss: float = 0.0
+    equipment_loss: float = 0.0
+    size: str | None = None
+    diameter: float | None = None
+    length: float | None = None
+    roughness: float | None = None
+    velocity: float | None = None
+    regime: str | None = None
+    method: str | None = None
+    reynolds_mr: float | None = None
+    reynolds_critical: float | None = None
+    critical_velocity: float | None = None
+    critical_velocity_lowest: float | None = None
+    critical_velocity_highest: float | None = None
+    turbulent_velocity: float | None = None
+    friction_factor_fanning: float | None = None
+    wall_shear_stress: float | None = None
+    wall_shear_rate: float | None = None
+    local_flow_index: float | None = None
+
+
+@dataclass(frozen=True)
+class Totals:
+    """The line at design flow: losses in Pa, heads in metres of the slurry."""
+
+    friction_loss: float
+    friction_loss_upper: float
+    fitting_loss: float
+    equipment_loss: float
+    head_loss: float
+    head_loss_upper: float
+    static_head: float
+    total_head: float
+    total_head_upper: float
+    pressure_required: float
+    pressure_required_upper: float
+
+
+@dataclass(frozen=True)
+class MethodUse:
+    """A published method that the result rests on, and what for."""
+
+    source: Source
+    used_for: str
+
+
+@dataclass(frozen=True)
+class MethodSpread:
+    """Head loss at design flow by each turbulent method of the family, m, and why others are not among them."""
+
+    head_loss: dict[str, float]
+    left_out: dict[str, str]
+
+
+@dataclass(frozen=True)
+class Result:
+    """What is known of one case; the scenarios are results of their own."""
+
+    case: Case
+    elements: tuple[ElementResult, ...]
+    totals: Totals
+    spread: MethodSpread
+    checks: tuple[Check, ...]
+    cautions: tuple[str, ...]
+    methods: tuple[MethodUse, ...]
+    scenarios: dict[str, Result]
+
+    @property
+    def fails(self) -> bool:
+        """A check fails, of the case itself or of one of its scenarios."""
+        own = any(check.status == "fail" for check in self.checks)
+        return own or any(result.fails for result in self.scenarios.values())
