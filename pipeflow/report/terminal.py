@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Container, Iterable, Iterator, Mapping, Sequence
 from dataclasses import fields
-from textwrap import fill
+from textwrap import fill, wrap
 
 from rich.console import Console
 from rich.text import Text
@@ -17,6 +17,8 @@ from pipeflow.units import format_value, significant, to_display
 from pipeflow.verdict import Check
 
 WIDTH = 80
+GAP = "  "
+NARROWEST = 12
 MARK = {"ok": "ok", "not checked": "not checked", "caution": "CAUTION", "fail": "FAIL"}
 """The word for each status, the gravest last."""
 STYLE = {"ok": "green", "caution": "yellow", "fail": "bold red", "not checked": "dim"}
@@ -33,7 +35,7 @@ def print_result(result: Result, console: Console | None = None) -> None:
     """Print the page of a result and of its scenarios."""
     console = console or Console(highlight=False)
     console.width = min(console.width, WIDTH)
-    page = _Page(console)
+    page = _Page(console.width)
     page.case(result)
     page.flow(result)
     page.methods(result)
@@ -46,39 +48,43 @@ def print_result(result: Result, console: Console | None = None) -> None:
         page.flow(scenario)
     page.heading("Before relying on this")
     page.text(SAFETY_NOTICE)
+    console.print(page.written, end="", soft_wrap=True)
 
 
 class _Page:
-    """A console with the few shapes the page is made of."""
+    """The page as it is written, in the few shapes it is made of."""
 
-    def __init__(self, console: Console) -> None:
-        self.console = console
+    def __init__(self, width: int) -> None:
+        self.width = width
+        self.written = Text()
+
+    def line(self, text: str = "", style: str = "") -> None:
+        self.written.append(f"{text}\n", style=style)
 
     def banner(self, text: str) -> None:
-        self.console.print()
-        self.console.print(Text("=" * self.console.width))
-        self.console.print(Text(text, style="bold"))
+        self.line()
+        self.line("=" * self.width)
+        self.line(text, style="bold")
 
     def heading(self, text: str) -> None:
-        self.console.print()
-        self.console.print(Text(text, style="bold"))
-        self.console.print(Text("-" * min(len(text), self.console.width)))
+        self.line()
+        self.line(text, style="bold")
+        self.line("-" * min(len(text), self.width))
 
     def text(self, text: str, mark: str = "") -> None:
-        """Print a paragraph, ``mark`` hanging before it."""
-        hang = " " * len(mark)
-        self.console.print(Text(fill(text, self.console.width, initial_indent=mark, subsequent_indent=hang)))
+        """Write a paragraph, ``mark`` hanging before it."""
+        self.line(fill(text, self.width, initial_indent=mark, subsequent_indent=" " * len(mark)))
 
     def rows(self, columns: Sequence[str], rows: Iterable[Sequence[str]], words: Container[int] = (0,)) -> None:
-        """Print a table; the columns numbered in ``words`` hold words, the others figures."""
-        for line in _aligned([*_heads(columns), *rows], words):
-            self.console.print(Text(line))
+        """Write a table; the columns numbered in ``words`` hold words, the others figures."""
+        for line in _aligned([*_heads(columns), *rows], words, self.width):
+            self.line(line)
 
     def case(self, result: Result) -> None:
         case = result.case
         title = case.title + (f", revision {case.revision}" if case.revision else "")
-        self.console.print(Text(fill(title, self.console.width), style="bold"))
-        self.console.print(Text(case.file))
+        self.line(fill(title, self.width), style="bold")
+        self.line(case.file)
         if case.notes:
             self.text(case.notes)
         self.heading("Fluid and basis")
@@ -125,10 +131,10 @@ class _Page:
         if not result.checks:
             self.text("The case states no limit, so none was checked.")
         for check in result.checks:
-            self.console.print(Text(f"{MARK[check.status]:<8}", style=STYLE[check.status]), end="")
-            name = check.name.replace("_", " ")
-            self.console.print(Text(fill(f"{name} {_against(check)}; {check.basis}", self.console.width - 8,
-                                         subsequent_indent=" " * 8)))  # fmt: skip
+            said = f"{check.name.replace('_', ' ')} {_against(check)}; {check.basis}"
+            mark = f"{MARK[check.status]:<8}"
+            self.written.append(mark, style=STYLE[check.status])
+            self.line(fill(said, self.width, initial_indent=mark, subsequent_indent=" " * len(mark))[len(mark) :])
 
     def methods(self, result: Result) -> None:
         self.heading("Methods")
@@ -144,15 +150,18 @@ def _heads(columns: Sequence[str]) -> list[list[str]]:
     return [[part[row - height] if row >= height - len(part) else "" for part in parts] for row in range(height)]
 
 
-def _aligned(rows: Sequence[Sequence[str]], words: Container[int]) -> Iterator[str]:
-    """Lines of a table of cells, words to the left and figures to the right, two spaces apart."""
+def _aligned(rows: Sequence[Sequence[str]], words: Container[int], most: int) -> Iterator[str]:
+    """Lines of a table of cells, words to the left and figures to the right; first cells wrap where it is too wide."""
     widths = [max(len(cell) for cell in column) for column in zip(*rows, strict=True)]
-    for row in rows:
-        cells = (
+    widths[0] = min(widths[0], max(most - sum(widths[1:]) - len(GAP) * (len(widths) - 1), NARROWEST))
+    for first, *others in rows:
+        head, *rest = wrap(first, widths[0]) or [""]
+        cells = [
             cell.ljust(width) if index in words else cell.rjust(width)
-            for index, (cell, width) in enumerate(zip(row, widths, strict=True))
-        )
-        yield "  ".join(cells).rstrip()
+            for index, (cell, width) in enumerate(zip((head, *others), widths, strict=True))
+        ]
+        yield GAP.join(cells).rstrip()
+        yield from (f"  {line}" for line in rest)
 
 
 def _counted(fittings: Mapping[str, float]) -> list[str]:
