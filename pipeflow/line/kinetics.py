@@ -14,7 +14,8 @@ import numpy as np
 
 from pipeflow.arrays import Array, FloatOrArray
 from pipeflow.friction import PipeFlow, Regime
-from pipeflow.friction.laminar import CassonTube, GeneralizedPowerLawTube, TubeLaw, Wall, tube_law
+from pipeflow.friction.laminar import CassonTube, GeneralizedPowerLawTube, TubeLaw, Wall
+from pipeflow.friction.tube import tube_law
 from pipeflow.rheology import Rheology
 from pipeflow.sources import Source
 
@@ -33,7 +34,7 @@ LOGARITHMIC_PROFILE = Source(
     note="not used in losses",
 )
 VON_KARMAN = 0.4
-ALMOST_AT_REST = -200.0
+ALMOST_AT_REST = -60.0
 """Logarithm of a stress so small that every law without a yield stress is at its limit of no flow."""
 
 
@@ -160,9 +161,7 @@ def integrated_factors(law: TubeLaw, wall: Wall) -> KineticFactors:
     ``x = t²`` from the plug to the wall, at the Gauss–Legendre points of t and the polynomial through them.
     """
     t = 0.5 * (_NODES + 1.0)
-    rate = np.stack(
-        [np.exp(law.wall(wall.log_excess + 2.0 * np.log(one)).log_rate - wall.log_rate) for one in t]
-    )
+    rate = np.stack([np.exp(law.wall(wall.log_excess + 2.0 * np.log(one)).log_rate - wall.log_rate) for one in t])
     velocity = np.tensordot(_integrals_to_the_wall(t), (rate.T * 2.0 * t).T, axes=1)
     greatest = np.tensordot(0.5 * _WEIGHTS, (rate.T * 2.0 * t).T, axes=1)
     w = velocity / greatest
@@ -170,7 +169,8 @@ def integrated_factors(law: TubeLaw, wall: Wall) -> KineticFactors:
     area = 2.0 * wall.sheared * (wall.plug + wall.sheared * t[spread] ** 2) * 2.0 * t[spread]
 
     def moment(k: int) -> Array:
-        return np.asarray(wall.plug**2 + np.tensordot(0.5 * _WEIGHTS, area * w**k, axes=1))
+        sheared = np.tensordot(0.5 * _WEIGHTS, area * w**k, axes=1)
+        return np.asarray(wall.plug**2 + np.where(wall.sheared == 0.0, 0.0, sheared))
 
     return _from_moments(moment(1), moment(2), moment(3))
 
@@ -179,9 +179,7 @@ def _integrals_to_the_wall(t: Array) -> Array:
     """Matrix from values at the points to integrals, from each point to 1, of the polynomial through them."""
     legendre = np.polynomial.legendre
     basis = legendre.legvander(2.0 * t - 1.0, POINTS - 1)
-    integral = np.stack(
-        [legendre.legval(2.0 * t - 1.0, legendre.legint(row, lbnd=1)) for row in np.eye(POINTS)]
-    )
+    integral = np.stack([legendre.legval(2.0 * t - 1.0, legendre.legint(row, lbnd=1)) for row in np.eye(POINTS)])
     return np.asarray(-0.5 * integral.T @ np.linalg.inv(basis))
 
 
@@ -209,18 +207,23 @@ def laminar_state(flow: PipeFlow, rheology: Rheology) -> KineticFactors:
     rheology : Rheology
         Its parameters broadcast to the shape of ``flow``.
     """
-    shape = flow.wall_shear_stress.shape
+    stress = flow.laminar_wall_shear_stress
 
-    def like(values: object) -> Array:
-        return np.broadcast_to(np.asarray(values, dtype=np.float64), shape)
+    def flat(values: object) -> Array:
+        return np.broadcast_to(np.asarray(values, dtype=np.float64), stress.shape).reshape(-1)
 
     with np.errstate(all="ignore"):
-        law = tube_law(rheology, like)
-        excess = flow.laminar_wall_shear_stress - law.yield_stress
-        moving = np.where(excess > 0, np.log(excess), np.where(law.yield_stress > 0, -np.inf, ALMOST_AT_REST))
-        factors = laminar_factors(law, law.wall(np.where(np.isnan(excess), np.nan, moving)))
-    sound = np.isfinite(flow.laminar_wall_shear_stress)
-    return KineticFactors(*(np.where(sound, values, np.nan) for values in vars(factors).values()))
+        law = tube_law(rheology, flat)
+        factors = laminar_factors(law, law.wall(_log_excess(flat(stress), law.yield_stress)))
+    sound = np.isfinite(stress)
+    return KineticFactors(*(np.where(sound, values.reshape(stress.shape), np.nan) for values in vars(factors).values()))
+
+
+def _log_excess(stress: Array, yield_stress: Array) -> Array:
+    """``ln(tau_w - tau_y)``; at rest that of a full plug, or of a stress so small that the law is at its limit."""
+    excess = stress - yield_stress
+    at_rest = np.where(yield_stress > 0, -np.inf, ALMOST_AT_REST)
+    return np.where(excess <= 0, at_rest, np.log(excess))
 
 
 def turbulent_share(flow: PipeFlow, velocity: Array) -> Array:
@@ -233,9 +236,7 @@ def turbulent_share(flow: PipeFlow, velocity: Array) -> Array:
     return np.where(np.isfinite(flow.wall_shear_stress), share, np.nan)
 
 
-def pipe_factors(
-    flow: PipeFlow, velocity: Array, density: FloatOrArray, rheology: Rheology
-) -> KineticFactors:
+def pipe_factors(flow: PipeFlow, velocity: Array, density: FloatOrArray, rheology: Rheology) -> KineticFactors:
     """Kinetic factors of the profile in each pipe: laminar, logarithmic, and along ln V in the transition.
 
     For residence times and kinetic energy; losses take turbulent flow as even (:func:`loss_factors`).
@@ -260,6 +261,4 @@ def loss_factors(flow: PipeFlow, velocity: Array, rheology: Rheology) -> Kinetic
 
 def _between(laminar: KineticFactors, turbulent: KineticFactors, share: Array) -> KineticFactors:
     pairs = zip(vars(laminar).values(), vars(turbulent).values(), strict=True)
-    return KineticFactors(
-        *(np.where(share > 0, low + share * (high - low), low + 0.0 * share) for low, high in pairs)
-    )
+    return KineticFactors(*(np.where(share > 0, low + share * (high - low), low + 0.0 * share) for low, high in pairs))

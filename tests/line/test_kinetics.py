@@ -26,7 +26,16 @@ from pipeflow.line.kinetics import (
     pipe_factors,
     turbulent_factors,
 )
-from pipeflow.rheology import Bingham, Casson, HerschelBulkley, Newtonian, PowerLaw
+from pipeflow.rheology import (
+    Bingham,
+    Casson,
+    Cross,
+    HerschelBulkley,
+    Newtonian,
+    PowerLaw,
+    RobertsonStiff,
+    Sisko,
+)
 
 NAMES = ("energy", "momentum", "maximum_velocity")
 
@@ -220,13 +229,14 @@ def test_factors_are_continuous_in_flow(fluid):
         (HerschelBulkley(0.0, 0.3, 0.6), generalized_power_law_factors(0.0, 0.6)),
         (Casson(0.0, 0.3), generalized_power_law_factors(0.0, 1.0)),
         (Casson(3.0, 0.3), KineticFactors(*(np.ones(3)))),
+        (RobertsonStiff(3.0, 0.5, 0.6), KineticFactors(*(np.ones(3)))),
+        (Cross(2.0, 0.01, 0.5, 0.7), generalized_power_law_factors(0.0, 1.0)),
+        (Sisko(0.01, 0.5, 0.5), generalized_power_law_factors(0.0, 0.5)),
     ],
     ids=str,
 )
 def test_at_rest_is_the_limit(fluid, expected):
-    rest, slow = (
-        laminar_state(solve_pipes(v, 0.15, 1300.0, fluid, with_edges=True), fluid) for v in (0.0, 1e-24)
-    )
+    rest, slow = (laminar_state(solve_pipes(v, 0.15, 1300.0, fluid, with_edges=True), fluid) for v in (0.0, 1e-24))
     assert values(rest) == pytest.approx(values(expected), rel=1e-13)
     assert values(slow) == pytest.approx(values(rest), rel=1e-7)
 
