@@ -80,6 +80,11 @@ _FACTORS: Final[dict[str, dict[str, float]]] = {
     "temperature": {"K": 1.0},
     "time": {"s": 1.0, "min": 60.0, "h": _HOUR, "d": _DAY},
     "power": {"kW": 1e3, "W": 1.0, "MW": 1e6},
+    "torque": {
+        "N.m": 1.0, "mN.m": 1e-3, "µN.m": 1e-6, "uN.m": 1e-6, "N.cm": 1e-2, "dyn.cm": 1e-7,
+        "lbf.ft": _POUND_FORCE * _FOOT, "lbf.in": _POUND_FORCE * _INCH, "ft.lbf": _POUND_FORCE * _FOOT,
+        "Nm": 1.0, "mNm": 1e-3,
+    },
 }  # fmt: skip
 
 _AFFINE: Final = (
@@ -104,6 +109,7 @@ _DISPLAY: Final = {
     "temperature": "°C",
     "time": "s",
     "power": "kW",
+    "torque": "mN.m",
 }
 
 _HINTS: Final = {

@@ -32,6 +32,9 @@ PINT_SPELLING = {
     "um": "micrometer",
     "uPa.s": "micropascal * second",
     "P": "poise",
+    "uN.m": "micronewton * m",
+    "Nm": "newton * m",
+    "mNm": "millinewton * m",
 }
 
 BASE_UNITS = {
@@ -49,6 +52,7 @@ BASE_UNITS = {
     "temperature": "K",
     "time": "s",
     "power": "W",
+    "torque": "N*m",
 }
 
 ENTRIES = [(dimension, unit.text) for dimension, table in units.UNITS.items() for unit in table.values()]
