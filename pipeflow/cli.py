@@ -81,6 +81,14 @@ def _print(result: Result, as_json: bool) -> None:
         print_result(result)
 
 
+@app.command()
+def methods() -> None:
+    """List the methods a case may choose from: key, source, range, and how sure the transcription is."""
+    from pipeflow.report.methods_page import methods_page
+
+    typer.echo(methods_page())
+
+
 def main() -> None:
     """Run the command; an error that is none of the user's leaves with status 3 and says so."""
     # no plugin of pydantic is wanted, and looking for them costs more than solving the case

@@ -4,21 +4,18 @@ from __future__ import annotations
 
 from collections.abc import Container, Iterable, Iterator, Mapping, Sequence
 from dataclasses import fields
-from textwrap import fill, wrap
 
 from rich.console import Console
 from rich.text import Text
 
 from pipeflow.case.model import Case
 from pipeflow.line.elements import Pipe
+from pipeflow.report.text import WIDTH, paragraph, table
 from pipeflow.rheology import Rheology
 from pipeflow.study.result import SAFETY_NOTICE, ElementResult, Result
 from pipeflow.units import format_value, significant, to_display
 from pipeflow.verdict import Check
 
-WIDTH = 80
-GAP = "  "
-NARROWEST = 12
 MARK = {"ok": "ok", "not checked": "not checked", "caution": "CAUTION", "fail": "FAIL"}
 """The word for each status, the gravest last."""
 STYLE = {"ok": "green", "caution": "yellow", "fail": "bold red", "not checked": "dim"}
@@ -73,17 +70,17 @@ class _Page:
 
     def text(self, text: str, mark: str = "") -> None:
         """Write a paragraph, ``mark`` hanging before it."""
-        self.line(fill(text, self.width, initial_indent=mark, subsequent_indent=" " * len(mark)))
+        self.line(paragraph(text, self.width, mark))
 
     def rows(self, columns: Sequence[str], rows: Iterable[Sequence[str]], words: Container[int] = (0,)) -> None:
         """Write a table; the columns numbered in ``words`` hold words, the others figures."""
-        for line in _aligned([*_heads(columns), *rows], words, self.width):
+        for line in table(columns, list(rows), words, self.width):
             self.line(line)
 
     def case(self, result: Result) -> None:
         case = result.case
         title = case.title + (f", revision {case.revision}" if case.revision else "")
-        self.line(fill(title, self.width), style="bold")
+        self.line(paragraph(title, self.width), style="bold")
         self.line(case.file)
         if case.notes:
             self.text(case.notes)
@@ -134,38 +131,13 @@ class _Page:
             said = f"{check.name.replace('_', ' ')} {_against(check)}; {check.basis}"
             mark = f"{MARK[check.status]:<8}"
             self.written.append(mark, style=STYLE[check.status])
-            self.line(fill(said, self.width, initial_indent=mark, subsequent_indent=" " * len(mark))[len(mark) :])
+            self.line(paragraph(said, self.width, mark)[len(mark) :])
 
     def methods(self, result: Result) -> None:
         self.heading("Methods")
         for use in result.methods:
             note = f" Note: {use.source.note}." if use.source.note else ""
             self.text(f"{use.source.key}: {use.used_for}. {use.source.citation}.{note}", mark="- ")
-
-
-def _heads(columns: Sequence[str]) -> list[list[str]]:
-    """Lay the lines of column heads out as rows, the last line of each next to its figures; none if all are empty."""
-    parts = [column.split("\n") for column in columns]
-    height = max(len(part) for part in parts) if any(columns) else 0
-    return [[part[row - height] if row >= height - len(part) else "" for part in parts] for row in range(height)]
-
-
-def _aligned(rows: Sequence[Sequence[str]], words: Container[int], most: int) -> Iterator[str]:
-    """Lines of a table of cells, words to the left and figures to the right; first cells wrap where it is too wide."""
-    widths = [max(len(cell) for cell in column) for column in zip(*rows, strict=True)]
-    widths[0] = min(widths[0], max(most - sum(widths[1:]) - len(GAP) * (len(widths) - 1), NARROWEST))
-    for first, *others in rows:
-        head, *rest = wrap(first, widths[0]) or [""]
-        cells = [
-            cell.ljust(width) if index in words else cell.rjust(width)
-            for index, (cell, width) in enumerate(zip((head, *others), widths, strict=True))
-        ]
-        yield GAP.join(cells).rstrip()
-        yield from (f"  {line}" for line in rest)
-
-
-def _counted(fittings: Mapping[str, float]) -> list[str]:
-    return [f"{count:g} x {key.replace('_', ' ')}" for key, count in fittings.items()]
 
 
 def _side_by_side(result: Result) -> Iterator[tuple[str, ...]]:

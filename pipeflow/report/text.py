@@ -1,0 +1,48 @@
+"""Plain text in the shapes of a terminal page: paragraphs and aligned columns."""
+
+from __future__ import annotations
+
+from collections.abc import Container, Iterator, Sequence
+from textwrap import fill, wrap
+
+WIDTH = 80
+GAP = "  "
+NARROWEST = 12
+"""First column of a table is not made narrower than this."""
+
+
+def paragraph(text: str, width: int = WIDTH, mark: str = "") -> str:
+    """Fill a paragraph, ``mark`` hanging before it."""
+    return fill(text, width, initial_indent=mark, subsequent_indent=" " * len(mark), break_on_hyphens=False)
+
+
+def underlined(title: str, width: int = WIDTH) -> str:
+    """Give a title with a line under it."""
+    return f"{title}\n{'-' * min(len(title), width)}"
+
+
+def table(
+    columns: Sequence[str], rows: Sequence[Sequence[str]], words: Container[int] = (0,), width: int = WIDTH
+) -> Iterator[str]:
+    """Lines of a table: words to the left, figures to the right; first cells wrap where it is too wide.
+
+    ``words`` numbers the columns of words. Heads of several lines stand with their last line next to the figures;
+    empty ones are left out.
+    """
+    cells = [*_heads(columns), *rows]
+    widths = [max(len(cell) for cell in column) for column in zip(*cells, strict=True)]
+    widths[0] = min(widths[0], max(width - sum(widths[1:]) - len(GAP) * (len(widths) - 1), NARROWEST))
+    for first, *others in cells:
+        head, *rest = wrap(first, widths[0]) or [""]
+        aligned = (
+            cell.ljust(column) if index in words else cell.rjust(column)
+            for index, (cell, column) in enumerate(zip((head, *others), widths, strict=True))
+        )
+        yield GAP.join(aligned).rstrip()
+        yield from (f"  {line}" for line in rest)
+
+
+def _heads(columns: Sequence[str]) -> list[list[str]]:
+    parts = [column.split("\n") for column in columns]
+    height = max(len(part) for part in parts) if any(columns) else 0
+    return [[part[row - height] if row >= height - len(part) else "" for part in parts] for row in range(height)]
