@@ -3,15 +3,10 @@
 from __future__ import annotations
 
 import sys
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterator
 from pathlib import Path
 
-from pipeflow.friction.criteria import CRITERIA
-from pipeflow.friction.laminar import BUCKINGHAM_REINER, HAGEN_POISEUILLE, METZNER_REED, RABINOWITSCH_MOONEY
-from pipeflow.friction.methods import FAMILY, TURBULENT
-from pipeflow.friction.transition import TRANSITION_LINE
-from pipeflow.line.fittings import METHODS as FITTINGS
-from pipeflow.sources import Source
+from pipeflow.study.methods import Section, method_sections
 
 DOCS = Path(__file__).parent
 CONFIDENCE = {
@@ -34,35 +29,18 @@ def _methods_lines() -> Iterator[str]:
     yield "How sure the transcription is:"
     yield ""
     yield from (f"- **{key}**: {meaning}" for key, meaning in CONFIDENCE.items())
-    yield from _section(
-        "Laminar flow", ((s, "") for s in (RABINOWITSCH_MOONEY, BUCKINGHAM_REINER, HAGEN_POISEUILLE, METZNER_REED))
-    )
-    family = {method.source.key for method in FAMILY}
-    yield from _section(
-        "Turbulent flow (`methods: {turbulent: KEY}`)",
-        (
-            (m.source, f"for {', '.join(sorted(m.models))}" + ("; in the upper figure" if key in family else ""))
-            for key, m in TURBULENT.items()
-        ),
-    )
-    yield from _section(
-        "End of laminar flow (`methods: {critical: KEY}`)",
-        ((c.source, f"for {', '.join(sorted(c.models))}") for c in CRITERIA.values()),
-    )
-    yield from _section("Transition", [(TRANSITION_LINE, "")])
-    yield from _section("Fittings (`methods: {fittings: KEY}`)", ((s, "") for s in FITTINGS.values()))
+    for section in method_sections():
+        yield from _section(section)
 
 
-def _section(title: str, sources: Iterable[tuple[Source, str]]) -> Iterator[str]:
-    yield from (
-        "",
-        f"## {title}",
-        "",
-        "| key | what | source | range | how sure | for, and notes |",
-        "|---|---|---|---|---|---|",
-    )
-    for source, use in sources:
-        ranges = "<br>".join(str(bound) for bound in source.ranges)
+def _section(section: Section) -> Iterator[str]:
+    chosen_by = f" (`{section.case_key}`)" if section.case_key else ""
+    yield from ("", f"## {section.title}{chosen_by}", "", "| key | what | source | range | how sure | for, and notes |")
+    yield "|---|---|---|---|---|---|"
+    for choice in section.choices:
+        source = choice.source
+        ranges = "<br>".join(str(bound) for bound in source.ranges) or "none stated"
+        use = f"for {choice.fluids}" + ("; in the upper figure" if choice.in_family else "")
         notes = "; ".join(part for part in (use, source.note) if part)
         yield f"| `{source.key}` | {source.title} | {source.citation} | {ranges} | {source.confidence} | {notes} |"
 

@@ -140,6 +140,10 @@ class _Page:
             self.text(f"{use.source.key}: {use.used_for}. {use.source.citation}.{note}", mark="- ")
 
 
+def _counted(fittings: Mapping[str, float]) -> list[str]:
+    return [f"{count:g} x {key.replace('_', ' ')}" for key, count in fittings.items()]
+
+
 def _side_by_side(result: Result) -> Iterator[tuple[str, ...]]:
     for name, one in (("the case", result), *result.scenarios.items()):
         totals = one.totals
