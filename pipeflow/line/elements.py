@@ -6,9 +6,12 @@ Every dimensioned field may be a float or a numpy array; arrays broadcast agains
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from typing import Literal
 
 from pipeflow.arrays import FloatOrArray
 from pipeflow.rheology import Rheology
+
+Discharge = Literal["submerged", "free"]
 
 
 @dataclass(frozen=True)
@@ -21,10 +24,27 @@ class Fluid:
 
 @dataclass(frozen=True)
 class Vessel:
-    """One end of the line: gauge pressure on the liquid, Pa, and level of its surface above that end, m."""
+    """One end of the line.
+
+    Parameters
+    ----------
+    pressure : float or array
+        Gauge pressure on the liquid, Pa.
+    level : float or array
+        Level of its surface above that end of the line, m.
+    discharge : str
+        Of a destination: ``submerged``, the pipe ends below the surface; ``free``, it ends above it, in the gas, and
+        the level then neither helps nor hinders.
+    """
 
     pressure: FloatOrArray = 0.0
     level: FloatOrArray = 0.0
+    discharge: Discharge = "submerged"
+
+    @property
+    def head_of_level(self) -> FloatOrArray:
+        """Level of the surface that the line feels, m: zero for a free discharge."""
+        return 0.0 if self.discharge == "free" else self.level
 
 
 @dataclass(frozen=True)
@@ -46,6 +66,8 @@ class Pipe:
         Nominal size in inches, as the fitting constants want it.
     fittings : mapping of str to float
         Number of each fitting, by its key in :mod:`pipeflow.line.fittings`.
+    loss_coefficient : float or array
+        Sum of further loss coefficients on ``rho V²/2`` of this pipe, dimensionless.
     """
 
     name: str
@@ -55,13 +77,14 @@ class Pipe:
     roughness: FloatOrArray = 0.0
     nominal_diameter: FloatOrArray = 0.0
     fittings: dict[str, float] = field(default_factory=dict)
+    loss_coefficient: FloatOrArray = 0.0
 
 
 @dataclass(frozen=True)
 class Equipment:
     """A loss stated by its maker: fixed, or following the flow as ``(Q/at_flow)**exponent``.
 
-    ``pressure_loss`` in Pa, ``at_flow`` in m³/s or None for a fixed loss.
+    ``pressure_loss`` in Pa, ``at_flow`` in m³/s or None for a fixed loss; an exponent of 0 is a fixed loss too.
     """
 
     name: str

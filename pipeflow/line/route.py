@@ -13,7 +13,8 @@ from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.friction import PipeFlow, solve_pipes
 from pipeflow.friction.spread import method_spread
 from pipeflow.line.elements import Element, Equipment, Fluid, Pipe, Vessel
-from pipeflow.line.fittings import DEFAULT_METHOD, resistance
+from pipeflow.line.fittings import DEFAULT_METHOD
+from pipeflow.line.losses import equipment_loss, minor_losses, side_by_side
 from pipeflow.rheology import Rheology
 
 
@@ -33,7 +34,7 @@ class LineFlow:
     friction_loss, friction_loss_upper : Array
         Pipe friction by the central method, and by the highest of its family, Pa.
     fitting_loss, equipment_loss : Array
-        Pa.
+        Pa. Fittings include the ends of the line, the changes of bore and the user's coefficients.
     pressure_loss, pressure_loss_upper : Array
         Friction, fittings and equipment together, Pa.
     head_loss, head_loss_upper, static_head, total_head, total_head_upper : Array
@@ -44,6 +45,8 @@ class LineFlow:
         Head loss with the turbulent friction of each method of the family, m; nan where one has no answer.
     left_out : dict of str to str
         Methods that are not in the upper figure of some pipe, and why.
+    reducer_loss, entrance_loss, exit_loss : Array
+        Parts of the fitting loss, Pa: the change of bore from the pipe before, and the ends of the line.
     """
 
     velocity: Array
@@ -63,6 +66,9 @@ class LineFlow:
     pressure_required_upper: Array
     head_loss_by_method: dict[str, Array]
     left_out: dict[str, str]
+    reducer_loss: Array
+    entrance_loss: Array
+    exit_loss: Array
 
 
 def solve(
@@ -100,20 +106,20 @@ def solve(
     """
     pipes = [element for element in route if isinstance(element, Pipe)]
     equipment = [element for element in route if isinstance(element, Equipment)]
-    diameter = _side_by_side([pipe.diameter for pipe in pipes])
+    diameter = side_by_side([pipe.diameter for pipe in pipes])
     velocity = _last_axis(flow) / (np.pi / 4.0 * diameter**2)
     density, rheology = _last_axis(fluid.density), _with_pipe_axis(fluid.rheology)
-    roughness = _side_by_side([pipe.roughness for pipe in pipes])
+    roughness = side_by_side([pipe.roughness for pipe in pipes])
     given: dict[str, Any] = {"roughness": roughness, "particle_size": _last_axis(particle_size), "critical": critical}
     solved = solve_pipes(velocity, diameter, density, rheology, method=turbulent, with_edges=True, **given)
     spread = method_spread(solved, velocity, diameter, density, rheology, **given)
 
-    gradient_length = 4.0 * _side_by_side([pipe.length for pipe in pipes]) / diameter
+    gradient_length = 4.0 * side_by_side([pipe.length for pipe in pipes]) / diameter
     friction, friction_upper = solved.wall_shear_stress * gradient_length, spread.upper * gradient_length
-    fitting_loss = _fitting_loss(pipes, solved, velocity, density, fittings or DEFAULT_METHOD)
-    equipment_loss = _side_by_side([_equipment_loss(item, flow) for item in equipment])
-    equipment_loss = np.broadcast_to(equipment_loss, (*solved.status.shape[:-1], len(equipment)))
-    minor = fitting_loss.sum(axis=-1) + equipment_loss.sum(axis=-1)
+    losses = minor_losses(pipes, solved, velocity, diameter, density, rheology, fittings or DEFAULT_METHOD)
+    of_equipment = side_by_side([equipment_loss(item, flow) for item in equipment])
+    of_equipment = np.broadcast_to(of_equipment, (*solved.status.shape[:-1], len(equipment)))
+    minor = losses.total.sum(axis=-1) + of_equipment.sum(axis=-1)
     pressure_loss, pressure_loss_upper = friction.sum(axis=-1) + minor, friction_upper.sum(axis=-1) + minor
 
     weight = np.asarray(fluid.density) * STANDARD_GRAVITY
@@ -123,8 +129,8 @@ def solve(
         pipes=solved,
         friction_loss=friction,
         friction_loss_upper=friction_upper,
-        fitting_loss=fitting_loss,
-        equipment_loss=equipment_loss,
+        fitting_loss=losses.total,
+        equipment_loss=of_equipment,
         pressure_loss=pressure_loss,
         pressure_loss_upper=pressure_loss_upper,
         head_loss=pressure_loss / weight,
@@ -135,10 +141,12 @@ def solve(
         pressure_required=pressure_loss + weight * static_head,
         pressure_required_upper=pressure_loss_upper + weight * static_head,
         head_loss_by_method={
-            key: ((stress * gradient_length).sum(axis=-1) + minor) / weight
-            for key, stress in spread.by_method.items()
+            key: ((stress * gradient_length).sum(axis=-1) + minor) / weight for key, stress in spread.by_method.items()
         },
         left_out=spread.left_out,
+        reducer_loss=losses.reducer,
+        entrance_loss=losses.entrance,
+        exit_loss=losses.exit,
     )
 
 
@@ -146,34 +154,12 @@ def _last_axis(values: FloatOrArray) -> Array:
     return np.asarray(values, dtype=np.float64)[..., None]
 
 
-def _side_by_side(items: Sequence[FloatOrArray]) -> Array:
-    """Lay one quantity of all elements along a last axis."""
-    if not items:
-        return np.zeros(0)
-    return np.stack(np.broadcast_arrays(*(np.asarray(item, dtype=np.float64) for item in items)), axis=-1)
-
-
 def _with_pipe_axis(rheology: Rheology) -> Rheology:
     parameters: dict[str, Any] = {f.name: _last_axis(getattr(rheology, f.name)) for f in fields(rheology)}  # type: ignore[arg-type]
     return replace(rheology, **parameters)  # type: ignore[type-var]
 
 
-def _fitting_loss(pipes: Sequence[Pipe], solved: PipeFlow, velocity: Array, density: Array, method: str) -> Array:
-    """``(K_laminar/Re_MR + K_turbulent) rho V²/2``, with ``rho V²/(2 Re_MR) = tau_w,laminar/16`` so that rest is a limit."""
-    constants = [resistance(pipe.fittings, pipe.diameter, pipe.nominal_diameter, method) for pipe in pipes]
-    laminar = _side_by_side([pair[0] for pair in constants])
-    turbulent = _side_by_side([pair[1] for pair in constants])
-    return laminar * solved.laminar_wall_shear_stress / 16.0 + turbulent * density * velocity**2 / 2.0
-
-
-def _equipment_loss(item: Equipment, flow: FloatOrArray) -> FloatOrArray:
-    if item.at_flow is None:
-        return item.pressure_loss
-    with np.errstate(invalid="ignore"):
-        return item.pressure_loss * (np.asarray(flow) / item.at_flow) ** item.exponent
-
-
 def _static_head(weight: Array, pipes: Sequence[Pipe], source: Vessel, destination: Vessel) -> Array:
     rise = sum((np.asarray(pipe.rise) for pipe in pipes), start=np.zeros(()))
     pressure = (np.asarray(destination.pressure) - source.pressure) / weight
-    return np.asarray(destination.level + rise - source.level + pressure)
+    return np.asarray(destination.head_of_level + rise - source.level + pressure)
