@@ -81,7 +81,7 @@ def find_root(
         x, step_before, value_before = new, step, value
         if done.any():
             root[active[done]] = x[done]
-            left = ~done
+            left = np.flatnonzero(~done)  # numpy picks by index much faster than by mask
             active = active[left]
             if not active.size:
                 break

@@ -209,7 +209,7 @@ def _solve(velocity: Array, law: TubeLaw, bore: Bore, methods: Methods, with_edg
         edges = transition_edges(law_here, bore_here, laminar[some], methods.critical)
         branch = TurbulentBranch.after(edges, methods.turbulent, law_here, bore_here)
         velocities[:, some] = np.exp([edges.log_velocity, branch.log_velocity, edges.log_reynolds])
-        past = beyond[some]
+        past = np.flatnonzero(beyond[some])
         excess[some[past]], regime[some[past]] = _past_laminar(
             np.log(velocity[some[past]]), take(edges, past), take(branch, past)
         )
