@@ -68,11 +68,12 @@ def undocumented() -> Iterator[str]:
 
 def stale_pages() -> Iterator[str]:
     """Name generated pages that are not what the program would write."""
-    run = subprocess.run(
-        [sys.executable, str(ROOT / "docs/generate.py"), "--check"], capture_output=True, text=True, check=False
-    )
-    if run.returncode:
-        yield run.stdout.strip() or run.stderr.strip()
+    for script in ("generate.py", "spread.py"):
+        run = subprocess.run(
+            [sys.executable, str(ROOT / "docs" / script), "--check"], capture_output=True, text=True, check=False
+        )
+        if run.returncode:
+            yield run.stdout.strip() or run.stderr.strip()
 
 
 def main() -> int:

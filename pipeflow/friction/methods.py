@@ -38,10 +38,9 @@ DEFAULT = {
     "newtonian": COLEBROOK_WHITE,
     "power-law": DODGE_METZNER,
 }
-FAMILY = (DODGE_METZNER, WILSON_THOMAS, TORRANCE, SLATTER_TURBULENT, IRVINE, CLAPP)
+FAMILY = (DODGE_METZNER, WILSON_THOMAS, TORRANCE, SLATTER_TURBULENT, HANKS, IRVINE, CLAPP)
 LEFT_OUT_OF_FAMILY = {
-    "hanks": "its damping fit is not physical at Hedstrom numbers of 1e3 to 1e4",
-    "tomita": "within some per cent of wilson-thomas",
+    "tomita": "it adds nothing, within some per cent of wilson-thomas",
     "hedstrom": "an estimate of the upper bound, not a correlation",
 }
 """Why a method that fits the rheology is never in the family."""

@@ -24,7 +24,7 @@ class Choice:
 
 @dataclass(frozen=True)
 class Section:
-    """Methods of one kind; ``case_key`` is the key of a case that chooses among them, empty where there is no choice."""
+    """Methods of one kind; ``case_key`` is the key of a case that chooses among them, if any does."""
 
     title: str
     case_key: str
