@@ -36,7 +36,7 @@ def reynolds_of(consistency, n, velocity, diameter, density):
     return density * mp.mpf(velocity) ** (2 - n) * mp.mpf(diameter) ** n / (8 ** (n - 1) * apparent)
 
 
-def turbulent_power_law_cases(roughness_share, count=120):
+def turbulent_power_law_cases(roughness_share, count=80):
     rng = np.random.default_rng(11)
     for _ in range(count):
         n = float(rng.uniform(0.1, 1.9))
@@ -60,7 +60,7 @@ def test_power_law_factor(roughness_share):
         factor = dodge_metzner_factor(reynolds, n, mp.mpf(rough * diameter) / diameter)
         ours = 2 * float(flow.wall_shear_stress) / (density * velocity**2)
         assert ours == pytest.approx(float(factor), rel=TOLERANCE)
-    assert turbulent >= 90
+    assert turbulent >= 60
 
 
 @pytest.mark.parametrize("relative", [0.0, 1e-6, 1e-4, 1e-3, 1e-2, 0.05])

@@ -36,7 +36,7 @@ FLUIDS = st.one_of(
     st.builds(Casson, YIELD_STRESSES, CONSISTENCIES),
 )
 ROUGHNESSES = st.sampled_from([0.0, 1e-6, 5e-5])
-SEVERAL = settings(max_examples=150, deadline=None)
+SEVERAL = settings(max_examples=100, deadline=None)
 
 
 @SEVERAL
