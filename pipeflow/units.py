@@ -10,6 +10,7 @@ import math
 import re
 from dataclasses import dataclass
 from difflib import get_close_matches
+from functools import cache
 from typing import Final
 
 ECHO_LENGTH: Final = 40
@@ -97,6 +98,7 @@ _AFFINE: Final = (
 _DISPLAY: Final = {
     "length": "m",
     "pressure": "kPa",
+    "absolute pressure": "kPa",
     "stress": "Pa",
     "viscosity": "Pa.s",
     "consistency": "Pa.s^n",
@@ -135,15 +137,23 @@ _HINTS: Final = {
 }
 
 
+_ABSOLUTE_HINTS: Final = dict.fromkeys(("psig", "barg"), "an absolute pressure is needed")
+
+
 def _with_small_litre(units: dict[str, float]) -> dict[str, float]:
     small = {text.replace("L", "l"): factor for text, factor in units.items() if "L" in text}
     return {**units, **small}
 
 
+def _absolute(pressure: dict[str, float]) -> dict[str, float]:
+    marked = {"kPa(a)": 1e3, "bara": 1e5, "psia": pressure["psi"]}
+    return {**pressure, **marked}
+
+
 def _build() -> dict[str, dict[str, Unit]]:
     table = {
         dimension: {text: Unit(text, dimension, factor) for text, factor in _with_small_litre(units).items()}
-        for dimension, units in _FACTORS.items()
+        for dimension, units in [*_FACTORS.items(), ("absolute pressure", _absolute(_FACTORS["pressure"]))]
     }
     table["temperature"] = {unit.text: unit for unit in _AFFINE} | table["temperature"]
     return table
@@ -267,6 +277,7 @@ def echo(text: str) -> str:
     return f"'{shown}'" if len(shown) <= ECHO_LENGTH else f"'{shown[: ECHO_LENGTH - 1]}…'"
 
 
+@cache
 def accepted(*dimensions: str) -> str:
     """List the units an error offers for a dimension, the commonest first."""
     each = 6 // len(dimensions)
@@ -307,8 +318,9 @@ def _wrong_unit(text: str, written: str, normal: str, dimensions: tuple[str, ...
     found = f"found {echo(text)}"
     if re.match(r",|[ ]*[0-9]+([ ,.]|$)", written):
         return f"{found}; numbers have a decimal point and no thousands mark, as 1234.5"
-    if normal in _HINTS:
-        return f"{found}; {_HINTS[normal]}; units that fit: {accepted(*dimensions)}"
+    hints = _HINTS | _ABSOLUTE_HINTS if "absolute pressure" in dimensions else _HINTS
+    if normal in hints:
+        return f"{found}; {hints[normal]}; units that fit: {accepted(*dimensions)}"
     return f"{found}; {_advice(written, normal, dimensions)}units that fit: {accepted(*dimensions)}"
 
 

@@ -32,6 +32,9 @@ PINT_SPELLING = {
     "um": "micrometer",
     "uPa.s": "micropascal * second",
     "P": "poise",
+    "kPa(a)": "kPa",
+    "bara": "bar",
+    "psia": "psi",
     "uN.m": "micronewton * m",
     "Nm": "newton * m",
     "mNm": "millinewton * m",
@@ -40,6 +43,7 @@ PINT_SPELLING = {
 BASE_UNITS = {
     "length": "m",
     "pressure": "Pa",
+    "absolute pressure": "Pa",
     "stress": "Pa",
     "viscosity": "Pa*s",
     "consistency": "Pa",
@@ -146,6 +150,9 @@ def test_spellings_engineers_type(text: str, dimension: str, value: float) -> No
         ("3 hp", "power", "kW"),
         ("3 cSt", "viscosity", "kinematic"),
         ("3 m\u0000", "length", "did you mean m?"),
+        ("3 bara", "pressure", "less the atmosphere"),
+        ("3 kPa(a)", "pressure", "a unit of absolute pressure"),
+        ("3 psig", "absolute pressure", "an absolute pressure is needed"),
     ],
 )
 def test_what_is_refused_and_the_advice_given(text: str, dimension: str, hint: str) -> None:
