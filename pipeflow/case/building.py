@@ -2,36 +2,33 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
+from dataclasses import replace
+from typing import Any
+
 from pipeflow.case.fields import FlowValue
-from pipeflow.case.model import Case, FlowRange, Limits, Methods, Pump
-from pipeflow.case.schema import (
-    CasePart,
-    EquipmentPart,
-    FlowPart,
-    LimitsPart,
-    ModelPart,
-    PipePart,
-    VesselPart,
-)
+from pipeflow.case.fluid_part import FluidPart
+from pipeflow.case.model import Case, FlowRange, Limits, Liquid, Methods, Pump, Site, Solids
+from pipeflow.case.part import ASSUMED, InputPart
+from pipeflow.case.route_part import EquipmentPart, PipePart
+from pipeflow.case.schema import CasePart, FlowPart, LimitsPart, VesselPart
 from pipeflow.line.catalogue import INCH, MATERIALS
 from pipeflow.line.elements import Element, Equipment, Fluid, Pipe, Vessel
-from pipeflow.rheology import Bingham, Casson, HerschelBulkley, Newtonian, PowerLaw, Rheology
-
-_LAWS: dict[str, type[Rheology]] = {law.key: law for law in (Newtonian, PowerLaw, Bingham, HerschelBulkley, Casson)}
+from pipeflow.rheology import mixture
 
 
 def build_case(part: CasePart, file: str) -> Case:
     """Make the case, without its scenarios, of a file found to be right."""
-    density = part.fluid.density
+    density = part.fluid.slurry_density
     pipes = [element for element in part.route if isinstance(element, PipePart)]
-    model = part.fluid.rheology
+    solids = _solids(part.fluid)
     return Case(
         file=file,
         title=part.title,
         revision=part.revision or "",
         notes=part.notes or "",
-        fluid=Fluid(density, _law(model)),
-        flow=_flow_range(part.flow, density),
+        fluid=Fluid(density, part.fluid.rheology.rheology()),
+        flow=_flow_range(part.flow, density, solids),
         source=_vessel(part.source),
         destination=_vessel(part.destination),
         route=tuple(_element(element, density) for element in part.route),
@@ -39,25 +36,72 @@ def build_case(part: CasePart, file: str) -> Case:
         methods=Methods(**part.methods.model_dump()),
         sizes={pipe.pipe: pipe.size.name for pipe in pipes if pipe.size},
         default_roughness={pipe.pipe: _material(pipe) for pipe in pipes if pipe.roughness is None},
-        tested_shear_rate=model.tested,
+        tested_shear_rate=part.fluid.rheology.tested,
         pumps=tuple(Pump(**pump.model_dump()) for pump in part.pumps),
+        solids=solids,
+        liquid=_liquid(part.fluid, solids),
+        site=Site(**_inputs(part.site)) if part.site else None,
+        temperature=part.fluid.temperature,
+        density_is_mixed=part.fluid.density is None,
+        assumed=tuple(path for path, inputs in _inputs_by_path(part) if inputs.status == ASSUMED),
     )
 
 
-def _law(part: ModelPart) -> Rheology:
-    return _LAWS[part.model](**part.model_dump(exclude={"model", "tested"}))
+def _inputs(part: InputPart) -> dict[str, Any]:
+    return part.model_dump(exclude={"status"})
 
 
-def _flow_range(flow: FlowPart | FlowValue, density: float) -> FlowRange:
-    if isinstance(flow, FlowValue):
-        flow = FlowPart.model_construct(design=flow)
-    design = flow.design.volume(density)
-    minimum, maximum = (end.volume(density) if end else design for end in (flow.minimum, flow.maximum))
-    return FlowRange(minimum, design, maximum)
+def _inputs_by_path(part: CasePart) -> Iterator[tuple[str, InputPart]]:
+    """Give every map that may say where its inputs come from, by key path."""
+    fluid = part.fluid
+    named = {
+        "fluid": fluid,
+        "fluid.solids": fluid.solids,
+        "fluid.liquid": fluid.liquid,
+        "fluid.rheology": fluid.rheology,
+        "flow": part.flow,
+        "site": part.site,
+        "source": part.source,
+        "destination": part.destination,
+        **{f"route[{element.name}]": element for element in part.route},
+    }
+    yield from ((path, inputs) for path, inputs in named.items() if isinstance(inputs, InputPart))
+
+
+def _solids(fluid: FluidPart) -> Solids | None:
+    if fluid.solids is None:
+        return None
+    # a density stated a little off the mixed one must not make the two fractions contradict each other
+    density = fluid.mixed_density or fluid.slurry_density
+    fractions = {
+        "mass_fraction": fluid.solids.of_the_mass(density),
+        "volume_fraction": fluid.solids.of_the_volume(density),
+    }
+    return Solids(**_inputs(fluid.solids) | fractions)
+
+
+def _liquid(fluid: FluidPart, solids: Solids | None) -> Liquid | None:
+    if fluid.liquid is None:
+        return None
+    liquid = Liquid(**_inputs(fluid.liquid))
+    if liquid.density is None and solids is not None:
+        left = float(mixture.liquid_density(solids.volume_fraction, solids.density, fluid.slurry_density))
+        return replace(liquid, density=left)
+    return liquid
+
+
+def _flow_range(flow: FlowPart | FlowValue, density: float, solids: Solids | None) -> FlowRange:
+    dry = flow.dry_solids if isinstance(flow, FlowPart) else None
+    given = flow if dry is None else dry
+    if isinstance(given, FlowValue):
+        given = FlowPart.model_construct(design=given)
+    share = solids.mass_fraction if dry is not None and solids is not None else 1.0
+    ends = given.minimum or given.design, given.design, given.maximum or given.design
+    return FlowRange(*(end.volume(density * share) for end in ends if end))
 
 
 def _vessel(part: VesselPart | None) -> Vessel | None:
-    return None if part is None else Vessel(part.pressure, part.level)
+    return None if part is None else Vessel(**_inputs(part))
 
 
 def _element(part: PipePart | EquipmentPart, density: float) -> Element:
@@ -73,6 +117,7 @@ def _element(part: PipePart | EquipmentPart, density: float) -> Element:
         roughness=MATERIALS[_material(part)].roughness if part.roughness is None else part.roughness,
         nominal_diameter=part.size.nominal_diameter if part.size else part.bore / INCH,
         fittings=part.fittings,
+        loss_coefficient=part.loss_coefficient,
     )
 
 

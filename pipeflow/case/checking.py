@@ -14,7 +14,7 @@ from pipeflow.case.wording import findings
 def examine(tree: Node) -> tuple[CasePart | None, list[Finding]]:
     """Give what the tree says, or everything wrong with it in file order."""
     try:
-        return CasePart.model_validate(_plain(tree), context={"element": set(), "pump": set()}), []
+        return CasePart.model_validate(_plain(tree), context={"element": set(), "pump": set(), "fluid": None}), []
     except ValidationError as error:
         return None, findings(tree, error.errors(include_url=False, include_input=False))
 

@@ -1,6 +1,7 @@
 """What one value of a case file may be: text, a number, a quantity with its unit, a name from a list.
 
-Each type reads a scalar as written (:class:`pipeflow.case.nodes.Scalar`) and gives the value the field holds.
+Each reader takes a scalar as written (:class:`pipeflow.case.nodes.Scalar`) and gives the value the field holds. Readers
+are objects that know what they accept, so that :mod:`pipeflow.case.json_schema` can say it too.
 """
 
 from __future__ import annotations
@@ -44,9 +45,17 @@ def said(message: str) -> PydanticCustomError:
     return PydanticCustomError("said", "{message}", {"message": message})
 
 
-def at_odds(message: str) -> PydanticCustomError:
-    """Make an error for a value that does not go with another; what was found is put before it."""
-    return PydanticCustomError("at_odds", "{message}", {"message": message})
+def at_odds(message: str, *below: str) -> PydanticCustomError:
+    """Make an error for a value that does not go with another; what was found is put before it.
+
+    ``below`` leads to the value where the error is raised for the map around it.
+    """
+    return PydanticCustomError("at_odds", "{message}", {"message": message, "below": below})
+
+
+def lacks() -> PydanticCustomError:
+    """Make the error of a required key for one that is required only here."""
+    return PydanticCustomError("missing", "missing")
 
 
 def needs(*keys: str, message: str) -> PydanticCustomError:
@@ -78,32 +87,41 @@ def _within_reach(value: float, text: str) -> float:
     return value
 
 
-def quantity(*dimensions: str) -> BeforeValidator:
-    """Read a quantity with its unit to SI."""
-    example = f"a quantity in {units.accepted(*dimensions)}"
+@dataclass(frozen=True)
+class Quantity:
+    """Reads a quantity with its unit to SI."""
 
-    def to_si(value: object) -> float:
-        scalar = _scalar(value, example)
+    dimensions: tuple[str, ...]
+
+    def __call__(self, value: object) -> float:
+        """Read one."""
+        scalar = _scalar(value, f"a quantity in {units.accepted(*self.dimensions)}")
         try:
-            return _within_reach(units.parse(scalar.text, *dimensions), scalar.text)
+            return _within_reach(units.parse(scalar.text, *self.dimensions), scalar.text)
         except units.UnitError as error:
             raise said(str(error)) from None
 
-    return BeforeValidator(to_si)
+
+@dataclass(frozen=True)
+class FlowReader:
+    """Reads a flow to SI, and keeps whether it is one of mass."""
+
+    dimensions: tuple[str, ...]
+
+    def __call__(self, value: object) -> FlowValue:
+        """Read one."""
+        scalar = _scalar(value, f"a flow in {units.accepted(*self.dimensions)}")
+        try:
+            number, dimension = units.parse_with_dimension(scalar.text, *self.dimensions)
+        except units.UnitError as error:
+            raise said(str(error)) from None
+        if number < 0:
+            raise said(f"found {units.echo(scalar.text)}; must be 0 or more (flow runs along the route)")
+        return FlowValue(_within_reach(number, scalar.text), dimension == "mass flow")
 
 
-def _flow(value: object) -> FlowValue:
-    scalar = _scalar(value, f"a flow in {units.accepted('volume flow', 'mass flow')}")
-    try:
-        number, dimension = units.parse_with_dimension(scalar.text, "volume flow", "mass flow")
-    except units.UnitError as error:
-        raise said(str(error)) from None
-    if number < 0:
-        raise said(f"found {units.echo(scalar.text)}; must be 0 or more (flow runs along the route)")
-    return FlowValue(_within_reach(number, scalar.text), dimension == "mass flow")
-
-
-def _range(value: object) -> tuple[float, float]:
+def read_range(value: object) -> tuple[float, float]:
+    """Read a range of shear rates."""
     scalar = _scalar(value, "a range of shear rates, as '5 .. 400 1/s',")
     try:
         low, high = units.parse_range(scalar.text, "shear rate")
@@ -114,7 +132,8 @@ def _range(value: object) -> tuple[float, float]:
     return _within_reach(low, scalar.text), _within_reach(high, scalar.text)
 
 
-def _number(value: object) -> float:
+def read_number(value: object) -> float:
+    """Read a bare number."""
     scalar = _scalar(value, "a bare number")
     if not (scalar.plain and _NUMBER.fullmatch(scalar.text)):
         raise said(f"found {units.echo(scalar.text)}; a bare number is needed (no unit, no quotes)")
@@ -124,39 +143,59 @@ def _number(value: object) -> float:
     return number
 
 
-def _text(longest: int, what: str, layout: str = "") -> Callable[[object], str]:
-    def read(value: object) -> str:
-        text = _scalar(value, what).text.strip()
+@dataclass(frozen=True)
+class Words:
+    """Reads a text of bounded length."""
+
+    longest: int
+    what: str
+    layout: str = ""
+
+    def __call__(self, value: object) -> str:
+        """Read one."""
+        text = _scalar(value, self.what).text.strip()
         if not text:
-            raise no_value(what)
-        if len(text) > longest:
-            raise said(f"found {len(text)} characters; at most {longest} are accepted")
-        odd = next((char for char in text if not (char.isprintable() or char in layout)), None)
+            raise no_value(self.what)
+        if len(text) > self.longest:
+            raise said(f"found {len(text)} characters; at most {self.longest} are accepted")
+        odd = next((char for char in text if not (char.isprintable() or char in self.layout)), None)
         if odd is not None:
             raise said(f"found the character {units.echo(odd)} in the text; printable text is needed")
         return text
 
-    return read
 
+@dataclass(frozen=True)
+class Choice:
+    """Reads a name that must be one of a list."""
 
-def choice(what: str, options: Callable[[], Sequence[str]]) -> BeforeValidator:
-    """Read a name that must be one of a list."""
+    what: str
+    options: Callable[[], Sequence[str]]
 
-    def read(value: object) -> str:
-        text = _scalar(value, f"a {what}").text
-        if text not in options():
-            raise wrong_choice(text, what, options())
+    def __call__(self, value: object) -> str:
+        """Read one."""
+        text = _scalar(value, f"a {self.what}").text
+        if text not in self.options():
+            raise wrong_choice(text, self.what, self.options())
         return text
 
-    return BeforeValidator(read)
 
-
-def _size(value: object) -> PipeSize:
+def read_size(value: object) -> PipeSize:
+    """Read the name of a pipe size."""
     text = _scalar(value, "a pipe size, as 'NPS 8 Sch 40',").text
     size = find_size(text)
     if size is None:
         raise wrong_choice(text, "pipe size", size_names())
     return size
+
+
+def quantity(*dimensions: str) -> BeforeValidator:
+    """Say that a field is a quantity of one of some dimensions."""
+    return BeforeValidator(Quantity(dimensions))
+
+
+def choice(what: str, options: Callable[[], Sequence[str]]) -> BeforeValidator:
+    """Say that a field is a name from a list."""
+    return BeforeValidator(Choice(what, options))
 
 
 @cache
@@ -165,23 +204,32 @@ def fitting_keys() -> tuple[str, ...]:
     return tuple(row["key"] for row in table("fittings.csv"))
 
 
-Name = Annotated[str, BeforeValidator(_text(NAME_LENGTH, "a name"))]
-Text = Annotated[str, BeforeValidator(_text(TEXT_LENGTH, "a text", "\n\t"))]
-Number = Annotated[float, BeforeValidator(_number)]
-Count = Annotated[float, Field(ge=0, le=10_000), BeforeValidator(_number)]
-FlowIndex = Annotated[float, Field(gt=0, le=2), BeforeValidator(_number)]
-Flow = Annotated[FlowValue, PlainValidator(_flow)]
-ShearRates = Annotated[tuple[float, float], PlainValidator(_range)]
-Size = Annotated[PipeSize, PlainValidator(_size)]
+Name = Annotated[str, BeforeValidator(Words(NAME_LENGTH, "a name"))]
+Text = Annotated[str, BeforeValidator(Words(TEXT_LENGTH, "a text", "\n\t"))]
+Number = Annotated[float, BeforeValidator(read_number)]
+Count = Annotated[float, Field(ge=0, le=10_000), BeforeValidator(read_number)]
+FlowIndex = Annotated[float, Field(gt=0, le=2), BeforeValidator(read_number)]
+Exponent = Annotated[float, Field(gt=0, le=10), BeforeValidator(read_number)]
+Fraction = Annotated[float, Field(gt=0, lt=1), BeforeValidator(read_number)]
+Flow = Annotated[FlowValue, PlainValidator(FlowReader(("volume flow", "mass flow")))]
+MassFlow = Annotated[FlowValue, PlainValidator(FlowReader(("mass flow",)))]
+ShearRates = Annotated[tuple[float, float], PlainValidator(read_range)]
+Size = Annotated[PipeSize, PlainValidator(read_size)]
 
 Length = Annotated[float, Field(gt=0), quantity("length")]
 Rise = Annotated[float, quantity("length")]
 Roughness = Annotated[float, Field(ge=0), quantity("length")]
 Density = Annotated[float, Field(gt=0), quantity("density")]
 YieldStress = Annotated[float, Field(ge=0), quantity("stress")]
+Stress = Annotated[float, Field(gt=0), quantity("stress")]
 Viscosity = Annotated[float, Field(gt=0), quantity("viscosity")]
+LimitViscosity = Annotated[float, Field(ge=0), quantity("viscosity")]
 Consistency = Annotated[float, Field(gt=0), quantity("consistency")]
+ShearRate = Annotated[float, Field(ge=0), quantity("shear rate")]
+Time = Annotated[float, Field(gt=0), quantity("time")]
 PressureLoss = Annotated[float, Field(ge=0), quantity("pressure")]
 Pressure = Annotated[float, quantity("pressure")]
+AbsolutePressure = Annotated[float, Field(gt=0), quantity("absolute pressure")]
 Velocity = Annotated[float, Field(ge=0), quantity("velocity")]
 Speed = Annotated[float, Field(gt=0), quantity("rotational speed")]
+Temperature = Annotated[float, quantity("temperature")]

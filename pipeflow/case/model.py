@@ -36,6 +36,41 @@ class Methods:
 
 
 @dataclass(frozen=True)
+class Solids:
+    """The solids of a slurry: density in kg/m³, fractions of the whole, sizes in m; None where not given.
+
+    The fraction not given is worked out with the density of the slurry.
+    """
+
+    density: float
+    mass_fraction: float
+    volume_fraction: float
+    d50: float | None = None
+    d85: float | None = None
+    fraction_below_45um: float | None = None
+
+
+@dataclass(frozen=True)
+class Liquid:
+    """The liquid of a slurry: density in kg/m³, viscosity in Pa.s, absolute vapour pressure in Pa; None if not given.
+
+    A density not given is the one the solids leave, where they are known.
+    """
+
+    density: float | None = None
+    viscosity: float | None = None
+    vapour_pressure: float | None = None
+
+
+@dataclass(frozen=True)
+class Site:
+    """Where the line stands: altitude in m, or the atmospheric pressure in Pa; the other is None."""
+
+    altitude: float | None = None
+    atmospheric_pressure: float | None = None
+
+
+@dataclass(frozen=True)
 class Pump:
     """A candidate pump: speeds in rad/s, ``curve`` the path of its water curve as written in the case."""
 
@@ -60,6 +95,12 @@ class Case:
         Material whose default roughness stands in for a value the case does not give, by pipe name.
     tested_shear_rate : tuple of float, optional
         Lowest and highest shear rate over which the rheology was measured, 1/s.
+    temperature : float, optional
+        Temperature of the fluid, K.
+    density_is_mixed : bool
+        The density of the fluid is worked out from solids and liquid.
+    assumed : tuple of str
+        Key paths of the maps whose inputs the case says are assumed, in file order of the keys.
     scenarios : dict of str to Case
         The case with each named set of changes made.
     """
@@ -79,4 +120,10 @@ class Case:
     default_roughness: dict[str, str] = field(default_factory=dict)
     tested_shear_rate: tuple[float, float] | None = None
     pumps: tuple[Pump, ...] = ()
+    solids: Solids | None = None
+    liquid: Liquid | None = None
+    site: Site | None = None
+    temperature: float | None = None
+    density_is_mixed: bool = False
+    assumed: tuple[str, ...] = ()
     scenarios: dict[str, Case] = field(default_factory=dict)

@@ -7,6 +7,7 @@ of YAML can change a number or a name in silence.
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from functools import cached_property
 from typing import Any
 
 import yaml
@@ -77,6 +78,21 @@ class Sequence:
     column: int
     items: list[Node] = field(default_factory=list)
     faulty: bool = False
+
+    @cached_property
+    def names(self) -> list[str]:
+        """The name each item carries, empty if it carries none; to be asked for once the list is complete."""
+        return [name_of(item) for item in self.items]
+
+    def with_item(self, place: int, item: Node | None) -> Sequence:
+        """Give the list with one item changed, or left out."""
+        new = [] if item is None else [item]
+        changed = Sequence(self.line, self.column, self.items.copy(), self.faulty)
+        changed.items[place : place + 1] = new
+        # a scenario may change a long list often, one item at a time: its names are carried over
+        names = vars(changed)["names"] = self.names.copy()
+        names[place : place + 1] = map(name_of, new)
+        return changed
 
 
 Node = Scalar | Mapping | Sequence

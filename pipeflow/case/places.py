@@ -4,17 +4,19 @@ from __future__ import annotations
 
 from typing import Final
 
+from pipeflow.case.fluid_part import FluidPart, LiquidPart, SolidsPart
+from pipeflow.case.part import Part
+from pipeflow.case.rheology_part import RHEOLOGY_PARTS
+from pipeflow.case.route_part import EquipmentPart, PipePart
 from pipeflow.case.schema import (
-    RHEOLOGY_PARTS,
     CasePart,
-    EquipmentPart,
+    DestinationPart,
+    DrySolidsPart,
     FlowPart,
-    FluidPart,
     LimitsPart,
     MethodsPart,
-    Part,
-    PipePart,
     PumpPart,
+    SitePart,
     VelocityPart,
     VesselPart,
 )
@@ -23,9 +25,13 @@ PARTS_AT: Final[dict[tuple[str, ...], type[Part]]] = {
     (): CasePart,
     ("fluid",): FluidPart,
     **{("fluid", "rheology", f"<{model}>"): part for model, part in RHEOLOGY_PARTS.items()},
+    ("fluid", "solids"): SolidsPart,
+    ("fluid", "liquid"): LiquidPart,
     ("flow", "<map>"): FlowPart,
+    ("flow", "<map>", "dry_solids", "<map>"): DrySolidsPart,
+    ("site",): SitePart,
     ("source",): VesselPart,
-    ("destination",): VesselPart,
+    ("destination",): DestinationPart,
     ("route", "<pipe>"): PipePart,
     ("route", "<equipment>"): EquipmentPart,
     ("limits",): LimitsPart,
@@ -35,15 +41,19 @@ PARTS_AT: Final[dict[tuple[str, ...], type[Part]]] = {
 }
 """The part of the schema at a place of the file, the numbers of list items left out."""
 
-REASONS: Final = {
+REASONS: Final[dict[str, str]] = {
     "flow_index": "no known fluid thickens more steeply",
-    "exponent": "the usual one is 2",
+    "route.<equipment>.exponent": "the usual one is 2",
+    "mass_fraction": "a fraction, not a percentage",
+    "volume_fraction": "a fraction, not a percentage",
+    "fraction_below_45um": "a fraction, not a percentage",
 }
-"""Why a number has its upper bound, by key."""
+"""Why a number has its upper bound, by key or by the place of one."""
 
-EXAMPLES: Final = {
+EXAMPLES: Final[dict[str, str]] = {
     "title": "Thickener underflow line",
     "density": "1420 kg/m3",
+    "fluid.solids.density": "2850 kg/m3",
     "rheology": "{model: newtonian, viscosity: 21 mPa.s}",
     "model": "herschel-bulkley",
     "flow_curve": "readings.csv",
@@ -51,15 +61,28 @@ EXAMPLES: Final = {
     "viscosity": "21 mPa.s",
     "plastic_viscosity": "21 mPa.s",
     "casson_viscosity": "21 mPa.s",
+    "zero_shear_viscosity": "12 Pa.s",
+    "infinite_shear_viscosity": "21 mPa.s",
+    "time_constant": "2 s",
+    "half_stress": "8 Pa",
+    "rate_offset": "4 1/s",
     "yield_stress": "9.5 Pa",
     "consistency": "0.62 Pa.s^n",
     "flow_index": "0.58",
+    "fluid.rheology.<cross>.exponent": "0.8",
+    "fluid.rheology.<ellis>.exponent": "2.4",
     "flow": "140 m3/h",
     "design": "140 m3/h",
+    "flow.<map>.dry_solids.<map>.design": "55 t/h",
     "length": "12 m",
     "pressure_loss": "12 kPa",
     "name": "candidate A",
     "kind": "centrifugal",
     "curve": "candidate-a.csv",
 }
-"""A value for each required key, shown where it is missing."""
+"""A value for each required key, shown where it is missing; by key or by the place of one."""
+
+
+def at_place(words: dict[str, str], parts: tuple[str, ...]) -> str:
+    """Look up what is said of a key at its place, or else wherever it stands; empty if nothing is."""
+    return words.get(".".join(parts)) or words.get(parts[-1] if parts else "", "")

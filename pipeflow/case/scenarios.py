@@ -7,7 +7,7 @@ from dataclasses import dataclass, replace
 from difflib import get_close_matches
 
 from pipeflow.case.checking import examine
-from pipeflow.case.nodes import Finding, Mapping, Node, Scalar, Sequence, join, kind, name_of, shown
+from pipeflow.case.nodes import Finding, Mapping, Node, Scalar, Sequence, join, kind, shown
 from pipeflow.case.schema import MAX_SCENARIOS, CasePart
 from pipeflow.units import echo
 
@@ -124,7 +124,8 @@ def _steps(tree: Node, path: str) -> list[str]:
         return path.split(".")
     items, rest = match.group(1), path[match.end() :]
     names = _names(tree, items)
-    fitting = [name for name in names if name and (rest == f"{name}]" or rest.startswith(f"{name}]."))]
+    near = [name for name in names if name and rest.startswith(name)]
+    fitting = [name for name in near if rest == f"{name}]" or rest.startswith(f"{name}].")]
     if not fitting and ("" in names or (items == "route" and not names)):
         raise _UnsureError
     if not fitting:
@@ -136,11 +137,7 @@ def _steps(tree: Node, path: str) -> list[str]:
 
 def _names(tree: Node, items: str) -> list[str]:
     node = tree.values.get(items) if isinstance(tree, Mapping) else None
-    return _names_in(node) if isinstance(node, Sequence) else []
-
-
-def _names_in(node: Sequence) -> list[str]:
-    return [name_of(item) for item in node.items]
+    return node.names if isinstance(node, Sequence) else []
 
 
 def _no_such_item(items: str, rest: str, names: list[str]) -> str:
@@ -181,13 +178,10 @@ def _set_key(node: Mapping, steps: list[str], change: _Change, path: str) -> Map
 
 def _set_item(node: Sequence, steps: list[str], change: _Change, path: str) -> Sequence:
     step, *rest = steps
-    names = [f"[{name}]" for name in _names_in(node)]
-    if step not in names:
+    if not (step.startswith("[") and step.endswith("]") and step[1:-1] in node.names):
         raise _PathError(f"'{path}' is a list; write {path}[name of the item]")
-    place = names.index(step)
-    item = _set(node.items[place], rest, change, path + shown(step))
-    items = [*node.items[:place], *([] if item is None else [item]), *node.items[place + 1 :]]
-    return Sequence(node.line, node.column, items, node.faulty)
+    place = node.names.index(step[1:-1])
+    return node.with_item(place, _set(node.items[place], rest, change, path + shown(step)))
 
 
 def _caused(faults: list[Finding], changes: list[_Change], case_is_wrong: bool) -> list[Finding]:

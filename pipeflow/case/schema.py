@@ -1,200 +1,121 @@
-"""What a case file may say: its keys, what each may hold, and what makes physical sense.
-
-The values come as written (:class:`pipeflow.case.nodes.Scalar`). A relation between keys is checked at the
-later of them, so that each fault is found whatever else is wrong.
-"""
+"""What a case file may say: its keys, what each may hold, and what makes physical sense."""
 
 from __future__ import annotations
 
 from typing import Annotated, Any, Final
 
-from pydantic import (
-    AfterValidator,
-    BaseModel,
-    BeforeValidator,
-    ConfigDict,
-    Discriminator,
-    Field,
-    Tag,
-    ValidationInfo,
-)
+from pydantic import Discriminator, Field, Tag, ValidationInfo
 from pydantic import field_validator as check
 
 from pipeflow.case.fields import (
-    Consistency,
-    Count,
-    Density,
+    AbsolutePressure,
     Flow,
-    FlowIndex,
     FlowValue,
     Length,
+    MassFlow,
     Name,
-    Number,
     Pressure,
     PressureLoss,
     Rise,
-    Roughness,
-    ShearRates,
-    Size,
     Speed,
     Text,
     Velocity,
-    Viscosity,
-    YieldStress,
     at_odds,
     choice,
-    fitting_keys,
+    lacks,
     needs,
     said,
-    wrong_choice,
 )
-from pipeflow.case.nodes import Scalar
-from pipeflow.line.catalogue import MATERIALS, PipeSize
-from pipeflow.units import echo
+from pipeflow.case.fluid_part import FluidPart
+from pipeflow.case.part import FAILED, InputPart, Part
+from pipeflow.case.route_part import ElementPart, NewName
+from pipeflow.friction.criteria import CRITERIA
+from pipeflow.friction.methods import TURBULENT
+from pipeflow.line.fittings import METHODS as FITTING_METHODS
 
 METHOD_KEYS: Final[dict[str, tuple[str, ...]]] = {
-    "turbulent": ("colebrook-white", "dodge-metzner", "wilson-thomas"),
-    "critical": ("slatter",),
-    "fittings": ("darby-3k", "hooper-2k"),
+    "turbulent": tuple(TURBULENT),
+    "critical": tuple(CRITERIA),
+    "fittings": tuple(FITTING_METHODS),
 }
 """The methods a case may ask for, by the key it asks with."""
 
 PUMP_KINDS: Final = ("centrifugal", "positive-displacement")
+DISCHARGES: Final = ("submerged", "free")
 MAX_ELEMENTS = 500
 MAX_PUMPS = 20
 MAX_SCENARIOS = 50
-RELATIVE_ROUGHNESS_MAX = 0.1
 VACUUM: Final = -101_325.0 * 1.1
 """Gauge pressure below which no place on earth has a vacuum, Pa."""
+ALTITUDES: Final = (-2_000.0, 9_000.0)
+"""Where the standard atmosphere holds, up to the highest summit, m."""
+ATMOSPHERES: Final = (25e3, 200e3)
+"""Atmospheric pressures that no mine or summit is outside of, Pa."""
 
-_FAILED: Final = object()
-
-
-class Part(BaseModel):
-    """A map of the case file."""
-
-    model_config = ConfigDict(extra="forbid", frozen=True, arbitrary_types_allowed=True)
+_FLOWS: Final = ("minimum", "design", "maximum")
 
 
-class ModelPart(Part):
-    """What every rheological model has beside its parameters."""
-
-    model: Name
-    tested: ShearRates | None = None
-
-
-class NewtonianPart(ModelPart):
-    """Parameters of a Newtonian fluid."""
-
-    viscosity: Viscosity
-
-
-class PowerLawPart(ModelPart):
-    """Parameters of a power-law fluid."""
-
-    consistency: Consistency
-    flow_index: FlowIndex
+def _in_order(value: FlowValue | None, info: ValidationInfo) -> FlowValue | None:
+    """Hold a flow against the one below it."""
+    key = "minimum" if info.field_name == "design" else "design"
+    lower: FlowValue | None = info.data.get(key)
+    if lower is None or value is None:
+        return value
+    if lower.is_mass != value.is_mass:
+        raise at_odds(f"'{key}' is given otherwise; all mass flows or all volume flows are needed")
+    if lower.value > value.value:
+        raise at_odds(f"less than '{key}'; minimum <= design <= maximum is needed")
+    return value
 
 
-class BinghamPart(ModelPart):
-    """Parameters of a Bingham fluid."""
-
-    yield_stress: YieldStress
-    plastic_viscosity: Viscosity
+def _fluid(info: ValidationInfo) -> FluidPart | None:
+    """Give the fluid of the case; None if it has a fault of its own."""
+    return (info.context or {}).get("fluid")
 
 
-class HerschelBulkleyPart(ModelPart):
-    """Parameters of a Herschel-Bulkley fluid."""
+class DrySolidsPart(Part):
+    """The dry solids the line must carry."""
 
-    yield_stress: YieldStress
-    consistency: Consistency
-    flow_index: FlowIndex
+    minimum: MassFlow | None = None
+    design: MassFlow
+    maximum: MassFlow | None = None
 
-
-class CassonPart(ModelPart):
-    """Parameters of a Casson fluid."""
-
-    yield_stress: YieldStress
-    casson_viscosity: Viscosity
+    _ordered = check("design", "maximum")(_in_order)
 
 
-RHEOLOGY_PARTS: Final[dict[str, type[ModelPart]]] = {
-    "newtonian": NewtonianPart,
-    "power-law": PowerLawPart,
-    "bingham": BinghamPart,
-    "herschel-bulkley": HerschelBulkleyPart,
-    "casson": CassonPart,
-}
-
-
-class UnknownModelPart(ModelPart):
-    """A rheology of no known model: nothing but the name of the model is looked at."""
-
-    model_config = ConfigDict(extra="ignore")
-
-    model: Annotated[str, choice("model", lambda: tuple(RHEOLOGY_PARTS))]
-
-
-def _no_flow_curve(value: object) -> str:
-    raise said("fitting a flow curve is not part of this version; give 'model' and its parameters")
-
-
-class FlowCurvePart(ModelPart):
-    """A rheology given by readings, which waits for fitting."""
-
-    model_config = ConfigDict(extra="ignore")
-
-    model: Name = ""
-    flow_curve: Annotated[str, BeforeValidator(_no_flow_curve)]
-
-
-def _rheology_tag(value: object) -> str:
-    if not isinstance(value, dict):
-        return "<other>"
-    if "flow_curve" in value:
-        return "<flow_curve>"
-    model = value.get("model")
-    name = model.text if isinstance(model, Scalar) else ""
-    return f"<{name}>" if name in RHEOLOGY_PARTS else "<other>"
-
-
-RheologyPart = Annotated[
-    Annotated[NewtonianPart, Tag("<newtonian>")]
-    | Annotated[PowerLawPart, Tag("<power-law>")]
-    | Annotated[BinghamPart, Tag("<bingham>")]
-    | Annotated[HerschelBulkleyPart, Tag("<herschel-bulkley>")]
-    | Annotated[CassonPart, Tag("<casson>")]
-    | Annotated[FlowCurvePart, Tag("<flow_curve>")]
-    | Annotated[UnknownModelPart, Tag("<other>")],
-    Discriminator(_rheology_tag),
+DrySolids = Annotated[
+    Annotated[DrySolidsPart, Tag("<map>")] | Annotated[MassFlow, Tag("<one>")],
+    Discriminator(lambda value: "<map>" if isinstance(value, dict) else "<one>"),
 ]
 
 
-class FluidPart(Part):
-    """What flows."""
+class FlowPart(InputPart):
+    """The flows the line must carry, of the slurry or of its solids."""
 
-    density: Density
-    rheology: RheologyPart
-
-
-class FlowPart(Part):
-    """The flows the line must carry."""
-
+    dry_solids: DrySolids | None = None
     minimum: Flow | None = None
-    design: Flow
+    design: Annotated[Flow | None, Field(validate_default=True)] = None
     maximum: Flow | None = None
 
-    @check("design", "maximum")
+    _ordered = check("design", "maximum")(_in_order)
+
+    @check("dry_solids")
     @classmethod
-    def _in_order(cls, value: FlowValue | None, info: ValidationInfo) -> FlowValue | None:
-        key = "minimum" if info.field_name == "design" else "design"
-        lower: FlowValue | None = info.data.get(key)
-        if lower is None or value is None:
-            return value
-        if lower.is_mass != value.is_mass:
-            raise at_odds(f"'{key}' is given otherwise; all mass flows or all volume flows are needed")
-        if lower.value > value.value:
-            raise at_odds(f"less than '{key}'; minimum <= design <= maximum is needed")
+    def _of_solids_known(cls, value: Any, info: ValidationInfo) -> Any:
+        fluid = _fluid(info)
+        if value is not None and fluid is not None and fluid.solids is None:
+            raise said("dry solids are a flow of slurry only where 'fluid.solids' gives their fraction")
+        return value
+
+    @check(*_FLOWS)
+    @classmethod
+    def _given_one_way(cls, value: FlowValue | None, info: ValidationInfo) -> FlowValue | None:
+        is_dry = info.data.get("dry_solids", FAILED) is not None
+        if value is None and info.field_name == "design" and not is_dry:
+            raise lacks()
+        told = any(info.data.get(key, FAILED) for key in _FLOWS[: _FLOWS.index(str(info.field_name))])
+        if value is not None and is_dry and not told:
+            raise at_odds("'dry_solids' is given too; the flow of the solids or that of the slurry is needed")
         return value
 
 
@@ -204,7 +125,7 @@ FlowOrPart = Annotated[
 ]
 
 
-class VesselPart(Part):
+class VesselPart(InputPart):
     """One end of the line."""
 
     pressure: Pressure = 0.0
@@ -218,116 +139,38 @@ class VesselPart(Part):
         return value
 
 
-def _new(name: str, info: ValidationInfo) -> str:
-    """Refuse a name given before among its like; the context of a validation remembers the names."""
-    context: dict[str, set[str]] = info.context or {}
-    names = context["pump" if info.field_name == "name" else "element"]
-    if name in names:
-        raise at_odds(f"the name {echo(name)} is taken above; names must be unique")
-    names.add(name)
-    return name
+class DestinationPart(VesselPart):
+    """The end the line flows to."""
+
+    discharge: Annotated[str, choice("discharge", lambda: DISCHARGES)] = "submerged"
 
 
-NewName = Annotated[Name, AfterValidator(_new)]
+class SitePart(InputPart):
+    """Where the line stands."""
 
+    altitude: Rise | None = None
+    atmospheric_pressure: Annotated[AbsolutePressure | None, Field(validate_default=True)] = None
 
-def _fitting(key: str) -> str:
-    if key not in fitting_keys():
-        raise wrong_choice(key, "fitting", fitting_keys())
-    return key
+    @check("altitude")
+    @classmethod
+    def _on_earth(cls, value: float | None) -> float | None:
+        if value is not None and not ALTITUDES[0] <= value <= ALTITUDES[1]:
+            where = f"must be from {ALTITUDES[0]:g} m to {ALTITUDES[1]:g} m"
+            raise at_odds(f"{where}; elsewhere give 'atmospheric_pressure'")
+        return value
 
-
-class PipePart(Part):
-    """A length of pipe of one bore."""
-
-    pipe: NewName
-    size: Size | None = None
-    diameter: Annotated[Length | None, Field(validate_default=True)] = None
-    length: Length
-    rise: Rise = 0.0
-    material: Annotated[str, choice("material", lambda: tuple(MATERIALS))] | None = None
-    roughness: Annotated[Roughness | None, Field(validate_default=True)] = None
-    fittings: dict[Annotated[str, AfterValidator(_fitting)], Count] = Field(default_factory=dict)
-
-    @check("diameter")
+    @check("atmospheric_pressure")
     @classmethod
     def _one_of_two(cls, value: float | None, info: ValidationInfo) -> float | None:
-        has_size = info.data.get("size", _FAILED) is not None
-        if has_size and value is not None:
-            raise at_odds("'size' is given too; one of the two is needed")
-        if not has_size and value is None:
-            raise needs("size", "diameter", message="missing; give 'size' (NPS 8 Sch 40) or 'diameter' (inside)")
+        has_altitude = info.data.get("altitude", FAILED) is not None
+        if value is not None and not ATMOSPHERES[0] <= value <= ATMOSPHERES[1]:
+            raise at_odds("no place on earth has it; an absolute pressure is needed, as 81 kPa")
+        if has_altitude and value is not None:
+            raise at_odds("'altitude' is given too; one of the two is needed")
+        if not has_altitude and value is None:
+            message = "missing; give 'altitude' (1850 m) or 'atmospheric_pressure' (81 kPa)"
+            raise needs("altitude", "atmospheric_pressure", message=message)
         return value
-
-    @check("rise")
-    @classmethod
-    def _no_longer_than_the_pipe(cls, value: float, info: ValidationInfo) -> float:
-        length = info.data.get("length")
-        if length is not None and abs(value) > length * (1 + 1e-9):
-            raise at_odds(f"rises more than the pipe is long ({length:.6g} m)")
-        return value
-
-    @check("material")
-    @classmethod
-    def _of_the_series(cls, value: str | None, info: ValidationInfo) -> str | None:
-        size: PipeSize | None = info.data.get("size")
-        if size is not None and value is not None and value != size.material:
-            raise at_odds(f"but {size.name} is {size.material}; leave 'material' out")
-        return value
-
-    @check("roughness")
-    @classmethod
-    def _smaller_than_the_bore(cls, value: float | None, info: ValidationInfo) -> float | None:
-        size: PipeSize | None = info.data.get("size")
-        diameter = size.inside_diameter if size else info.data.get("diameter")
-        default = MATERIALS[info.data.get("material") or (size.material if size else "steel")]
-        roughness = default.roughness if value is None else value
-        if diameter is not None and roughness > RELATIVE_ROUGHNESS_MAX * diameter:
-            most = f"at most a tenth of the bore, {RELATIVE_ROUGHNESS_MAX * diameter * 1e3:.3g} mm"
-            if value is None:
-                raise needs("roughness", message=f"missing; {default.name}'s is too rough here: {most}")
-            raise at_odds(f"too rough: {most}")
-        return value
-
-    @property
-    def bore(self) -> float:
-        """Inside diameter, m."""
-        return self.size.inside_diameter if self.size else self.diameter or 0.0
-
-
-class EquipmentPart(Part):
-    """A loss stated by its maker."""
-
-    equipment: NewName
-    pressure_loss: PressureLoss
-    at_flow: Flow | None = None
-    exponent: Annotated[Number, Field(ge=0, le=4)] | None = None
-
-    @check("at_flow")
-    @classmethod
-    def _not_at_rest(cls, value: FlowValue | None) -> FlowValue | None:
-        if value is not None and value.value == 0:
-            raise at_odds("must be above 0: the loss is stated at a flow")
-        return value
-
-    @check("exponent")
-    @classmethod
-    def _with_a_flow(cls, value: float | None, info: ValidationInfo) -> float | None:
-        if value is not None and info.data.get("at_flow", _FAILED) is None:
-            raise needs("at_flow", message="an exponent needs 'at_flow', the flow of the stated loss")
-        return value
-
-
-def _element_tag(value: object) -> str | None:
-    if not isinstance(value, dict):
-        return None
-    return next((f"<{key}>" for key in value if key in ("pipe", "equipment")), None)
-
-
-ElementPart = Annotated[
-    Annotated[PipePart, Tag("<pipe>")] | Annotated[EquipmentPart, Tag("<equipment>")],
-    Discriminator(_element_tag),
-]
 
 
 class VelocityPart(Part):
@@ -360,6 +203,29 @@ class MethodsPart(Part):
     critical: Annotated[str, choice("method", lambda: METHOD_KEYS["critical"])] | None = None
     fittings: Annotated[str, choice("method", lambda: METHOD_KEYS["fittings"])] | None = None
 
+    @check("turbulent", "critical")
+    @classmethod
+    def _made_for_the_fluid(cls, value: str | None, info: ValidationInfo) -> str | None:
+        fluid = _fluid(info)
+        if value is None or fluid is None:
+            return value
+        known = TURBULENT if info.field_name == "turbulent" else CRITERIA
+        model = fluid.rheology.model
+        if model not in known[value].models:
+            fitting = ", ".join(key for key, method in known.items() if model in method.models)
+            raise at_odds(f"not made for {model} fluids; those that are: {fitting}")
+        return value
+
+    @check("turbulent")
+    @classmethod
+    def _with_what_it_needs(cls, value: str | None, info: ValidationInfo) -> str | None:
+        fluid = _fluid(info)
+        if value is None or fluid is None or not TURBULENT[value].needs_particle_size:
+            return value
+        if fluid.solids is None or fluid.solids.d85 is None:
+            raise at_odds("needs the size of the solids, 'fluid.solids.d85'")
+        return value
+
 
 class PumpPart(Part):
     """A candidate pump."""
@@ -379,10 +245,18 @@ class CasePart(Part):
     notes: Text | None = None
     fluid: FluidPart
     flow: FlowOrPart
+    site: SitePart | None = None
     source: VesselPart | None = None
-    destination: VesselPart | None = None
+    destination: DestinationPart | None = None
     route: Annotated[list[ElementPart], Field(min_length=1, max_length=MAX_ELEMENTS)]
     limits: LimitsPart = LimitsPart()
     methods: MethodsPart = MethodsPart()
     pumps: Annotated[list[PumpPart], Field(max_length=MAX_PUMPS)] = Field(default_factory=list)
     scenarios: Any = None
+
+    @check("fluid")
+    @classmethod
+    def _known_to_what_follows(cls, value: FluidPart, info: ValidationInfo) -> FluidPart:
+        if info.context is not None:
+            info.context["fluid"] = value
+        return value

@@ -11,8 +11,8 @@ from typing import Any
 from pydantic_core import ErrorDetails
 
 from pipeflow.case.nodes import Finding, Mapping, Node, Scalar, Sequence, join, kind, label
-from pipeflow.case.places import EXAMPLES, PARTS_AT, REASONS
-from pipeflow.case.schema import RHEOLOGY_PARTS
+from pipeflow.case.places import EXAMPLES, PARTS_AT, REASONS, at_place
+from pipeflow.case.rheology_part import BESIDE_PARAMETERS, RHEOLOGY_PARTS
 from pipeflow.units import ECHO_LENGTH, echo
 
 MAX_SUGGESTIONS = 100
@@ -85,7 +85,7 @@ def _in_file_order(finding: Finding) -> tuple[int, int]:
 
 def _walk(tree: Node, error: ErrorDetails) -> Fault:
     fault = Fault(error["type"], dict(error.get("ctx", {})), tree, tree, tree, tree, faulty=tree.faulty)
-    for part in error["loc"]:
+    for part in (*error["loc"], *fault.details.get("below", ())):
         fault.step(part)
     return fault
 
@@ -96,7 +96,7 @@ def _keys(node: Node | None) -> dict[str, Scalar]:
 
 def _accepted(parts: tuple[str, ...]) -> tuple[str, ...]:
     part = PARTS_AT.get(parts)
-    return tuple(part.model_fields) if part else ()
+    return tuple(sorted(part.model_fields, key=lambda key: key == "status")) if part else ()
 
 
 def _suggest(faults: list[Fault]) -> None:
@@ -190,7 +190,7 @@ def _missing(fault: Fault) -> str:
     keys = [name for name, field in _fields(fault.parts) if field.is_required()]
     if keys:
         return f"missing; a map is needed with {', '.join(keys)}"
-    example = EXAMPLES.get(fault.key)
+    example = at_place(EXAMPLES, fault.parts)
     return f"missing; for instance {fault.key}: {example}" if example else "missing"
 
 
@@ -212,7 +212,7 @@ def _did_you_mean(fault: Fault) -> str:
 def _foreign(fault: Fault) -> str:
     foreign = ", ".join(fault.details["foreign"])
     model = fault.parts[-2].strip("<>")
-    given = set(_keys(fault.home)) & (_PARAMETERS - {"model", "tested"})
+    given = set(_keys(fault.home)) & (_PARAMETERS - BESIDE_PARAMETERS)
     fitting = [name for name, part in RHEOLOGY_PARTS.items() if given == set(_own_parameters(part))]
     meant = f"did you mean model: {fitting[0]}? " if fitting else ""
     takes = ", ".join(_own_parameters(RHEOLOGY_PARTS[model]))
@@ -220,7 +220,7 @@ def _foreign(fault: Fault) -> str:
 
 
 def _own_parameters(part: Any) -> list[str]:
-    return [key for key in part.model_fields if key not in ("model", "tested")]
+    return [key for key in part.model_fields if key not in BESIDE_PARAMETERS]
 
 
 def _choice(fault: Fault) -> str:
@@ -246,8 +246,9 @@ def _element(fault: Fault) -> str:
 
 
 def _too_much(fault: Fault) -> str:
-    reason = f" ({REASONS[fault.key]})" if fault.key in REASONS else ""
-    return f"{_found(fault)}; must be {fault.details['le']:g} or less{reason}"
+    reason = at_place(REASONS, fault.parts)
+    bound = f"below {fault.details['lt']:g}" if "lt" in fault.details else f"{fault.details['le']:g} or less"
+    return f"{_found(fault)}; must be {bound}{f' ({reason})' if reason else ''}"
 
 
 _WORDS: dict[str, Callable[[Fault], str]] = {
@@ -265,4 +266,5 @@ _WORDS: dict[str, Callable[[Fault], str]] = {
     "greater_than": lambda fault: f"{_found(fault)}; must be above {fault.details['gt']:g}",
     "greater_than_equal": lambda fault: f"{_found(fault)}; must be {fault.details['ge']:g} or more",
     "less_than_equal": _too_much,
+    "less_than": _too_much,
 }

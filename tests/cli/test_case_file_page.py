@@ -16,7 +16,8 @@ from pipeflow.case.fields import fitting_keys
 from pipeflow.case.loading import MAX_BYTES, load_text
 from pipeflow.case.nodes import MAX_DEPTH
 from pipeflow.case.places import PARTS_AT
-from pipeflow.case.schema import MAX_ELEMENTS, MAX_SCENARIOS, METHOD_KEYS, RHEOLOGY_PARTS
+from pipeflow.case.rheology_part import BESIDE_PARAMETERS, RHEOLOGY_PARTS
+from pipeflow.case.schema import MAX_ELEMENTS, MAX_SCENARIOS, METHOD_KEYS
 from pipeflow.line.catalogue import MATERIALS, size_names, table
 from pipeflow.units import UNITS
 
@@ -93,7 +94,7 @@ def test_every_choice_is_on_the_page() -> None:
     rheology = page.split("### Rheology")[1].split("###")[0]
     for model, part in RHEOLOGY_PARTS.items():
         row = next(line for line in rheology.splitlines() if line.startswith(f"| `{model}`"))
-        parameters = [key for key in part.model_fields if key not in ("model", "tested")]
+        parameters = [key for key in part.model_fields if key not in BESIDE_PARAMETERS]
         assert re.findall(r"`(\w+)`", row.split("|")[2]) == parameters
     for material in MATERIALS.values():
         assert f"{material.name} {material.roughness * 1e3:g} mm" in page
@@ -112,6 +113,16 @@ def test_the_example_is_a_case() -> None:
     assert example is not None
     case = load_text(example.group(1))
     assert list(case.scenarios) == ["thick", "rough"]
+
+
+def test_the_pieces_shown_are_parts_of_cases() -> None:
+    first, *pieces = re.findall(r"```yaml\n(.*?)```", text(), re.DOTALL)
+    assert len(pieces) == 2
+    for piece in pieces:
+        given = re.findall(r"(?m)^(\w+):", piece)
+        rest = [block for block in re.split(r"(?m)^(?=\w)", first) if block.split(":")[0] not in [*given, "scenarios"]]
+        case = load_text(piece + "".join(rest))
+        assert case.title == "Thickener underflow to filter feed tank"
 
 
 def test_the_change_of_size_shown_is_one() -> None:

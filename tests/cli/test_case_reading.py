@@ -9,10 +9,22 @@ from pathlib import Path
 import pytest
 
 from pipeflow.case.loading import load_case, load_text
-from pipeflow.case.model import Case, FlowRange
+from pipeflow.case.model import Case, FlowRange, Liquid, Site
 from pipeflow.errors import InputError
 from pipeflow.line.elements import Equipment, Pipe, Vessel
-from pipeflow.rheology import Bingham, Casson, HerschelBulkley, Newtonian, PowerLaw, Rheology
+from pipeflow.rheology import (
+    Bingham,
+    Carreau,
+    Casson,
+    Cross,
+    Ellis,
+    HerschelBulkley,
+    Newtonian,
+    PowerLaw,
+    Rheology,
+    RobertsonStiff,
+    Sisko,
+)
 
 GOOD = (Path(__file__).parent / "good.yaml").read_text(encoding="utf-8")
 SMALL = """
@@ -24,6 +36,10 @@ flow: 36 m3/h
 route:
   - {pipe: p, diameter: 100 mm, length: 10 m}
 """
+VISCOSITIES = "zero_shear_viscosity: 12 Pa.s, infinite_shear_viscosity: 20 mPa.s"
+MIXED = SMALL.replace(
+    "density: 1 kg/L", "solids: {density: 2650 kg/m3, mass_fraction: 0.5}\n  liquid: {density: 1 kg/L}"
+)
 
 
 def pipe(case: Case, place: int = 0) -> Pipe:
@@ -76,6 +92,21 @@ def test_the_defaults() -> None:
         ("model: power-law, consistency: 620 mPa.s^n, flow_index: 0.5", PowerLaw(0.62, 0.5)),
         ("model: bingham, yield_stress: 0 Pa, plastic_viscosity: 21 cP", Bingham(0.0, 0.021)),
         ("model: casson, yield_stress: 4 Pa, casson_viscosity: 2 P", Casson(4.0, 0.2)),
+        (f"model: cross, {VISCOSITIES}, time_constant: 3 s, exponent: 0.7", Cross(12.0, 0.02, 3.0, 0.7)),
+        (f"model: carreau, {VISCOSITIES}, time_constant: 3 s, flow_index: 0.3", Carreau(12.0, 0.02, 3.0, 0.3)),
+        (
+            f"model: carreau, {VISCOSITIES}, time_constant: 3 s, flow_index: 0.3, transition_exponent: 1.2",
+            Carreau(12.0, 0.02, 3.0, 0.3, 1.2),
+        ),
+        (
+            "model: sisko, infinite_shear_viscosity: 20 mPa.s, consistency: 2 Pa.s^n, flow_index: 0.4",
+            Sisko(0.02, 2.0, 0.4),
+        ),
+        ("model: ellis, zero_shear_viscosity: 12 Pa.s, half_stress: 8 Pa, exponent: 2.4", Ellis(12.0, 8.0, 2.4)),
+        (
+            "model: robertson-stiff, consistency: 2 Pa.s^n, flow_index: 0.4, rate_offset: 4 1/s",
+            RobertsonStiff(2.0, 0.4, 4.0),
+        ),
     ],
 )
 def test_every_model(written: str, law: Rheology) -> None:
@@ -113,6 +144,117 @@ def test_a_line_at_rest_is_a_case() -> None:
 
 def test_a_default_roughness_too_large_for_the_bore_is_asked_for() -> None:
     assert refusal(SMALL.replace("100 mm", "0.4 mm")) == ["8:5 route[p]"]
+
+
+def test_a_density_is_mixed_of_solids_and_liquid() -> None:
+    case = load_text(MIXED)
+    assert case.fluid.density == pytest.approx(1452.05, abs=5e-3)
+    assert case.density_is_mixed
+    assert case.solids is not None
+    assert (case.solids.mass_fraction, case.solids.density) == (0.5, 2650.0)
+    assert case.solids.volume_fraction == pytest.approx(0.27397, abs=5e-6)
+    by_volume = load_text(MIXED.replace("mass_fraction: 0.5", f"volume_fraction: {case.solids.volume_fraction!r}"))
+    assert by_volume.fluid.density == pytest.approx(case.fluid.density, rel=1e-14)
+    assert by_volume.solids is not None
+    assert by_volume.solids.mass_fraction == pytest.approx(0.5, rel=1e-14)
+
+
+@pytest.mark.parametrize(("density", "is_near"), [(1437.6, True), (1437.5, False), (1466.5, True), (1466.7, False)])
+def test_a_stated_density_may_be_1_percent_off_the_mixed_one(density: float, is_near: bool) -> None:
+    text = MIXED.replace("  solids", f"  density: {density} kg/m3\n  solids")
+    if is_near:
+        case = load_text(text)
+        assert (case.fluid.density, case.density_is_mixed) == (density, False)
+        assert case.solids is not None
+        assert case.solids.volume_fraction == pytest.approx(0.27397, abs=5e-6)
+    else:
+        with pytest.raises(InputError, match=rf"make 1452.1 kg/m3, this is {density} kg/m3"):
+            load_text(text)
+
+
+def test_a_liquid_without_a_density_has_the_one_the_solids_leave() -> None:
+    text = MIXED.replace(
+        "liquid: {density: 1 kg/L}", "liquid: {vapour_pressure: 3.2 kPa}\n  density: 1452.0547945 kg/m3"
+    )
+    liquid = load_text(text).liquid
+    assert liquid is not None
+    assert (liquid.density, liquid.vapour_pressure) == (pytest.approx(1000.0, rel=1e-9), 3200.0)
+    alone = load_text(SMALL.replace("  rheology", "  liquid: {vapour_pressure: 0.5 psia, viscosity: 1 cP}\n  rheology"))
+    assert alone.liquid == Liquid(None, 1e-3, pytest.approx(3447.4, abs=0.1))
+
+
+@pytest.mark.parametrize(
+    ("written", "flows"),
+    [
+        ("{dry_solids: 55 t/h}", (55.0, 55.0, 55.0)),
+        ("{dry_solids: {design: 55 t/h, maximum: 61 t/h}}", (55.0, 55.0, 61.0)),
+        ("{dry_solids: {minimum: 0 t/h, design: 55 t/h, maximum: 61000 kg/h}}", (0.0, 55.0, 61.0)),
+    ],
+)
+def test_dry_solids_make_the_flow_of_the_slurry(written: str, flows: tuple[float, ...]) -> None:
+    flow = load_text(MIXED.replace("36 m3/h", written)).flow
+    # half the mass is solids, at 5300/3.65 kg/m3
+    expected = [dry / 3.6 / 0.5 / (5300 / 3.65) for dry in flows]
+    assert [flow.minimum, flow.design, flow.maximum] == pytest.approx(expected, rel=1e-14)
+
+
+def test_dry_solids_keep_their_mass_at_a_stated_density() -> None:
+    text = MIXED.replace("  solids", "  density: 1460 kg/m3\n  solids").replace("36 m3/h", "{dry_solids: 36 t/h}")
+    assert load_text(text).flow.design == pytest.approx(10 / 0.5 / 1460, rel=1e-14)
+
+
+def test_site_temperature_and_the_lesser_keys() -> None:
+    more = "site: {altitude: 1850 m}\ndestination: {level: -1 m, discharge: free}\n"
+    text = SMALL.replace("length", "loss_coefficient: 3.5, length").replace(
+        "  rheology", "  temperature: 24 °C\n  rheology"
+    )
+    case = load_text(text + more)
+    assert case.site == Site(altitude=1850.0)
+    assert case.temperature == pytest.approx(297.15)
+    assert case.destination == Vessel(0.0, -1.0, "free")
+    assert pipe(case).loss_coefficient == 3.5
+    assert load_text(SMALL + "site: {atmospheric_pressure: 81 kPa}").site == Site(atmospheric_pressure=81e3)
+    plain = load_text(SMALL + "destination: {}")
+    assert (plain.site, plain.temperature, pipe(plain).loss_coefficient) == (None, None, 0.0)
+    assert plain.destination == Vessel(0.0, 0.0, "submerged")
+
+
+def test_assumed_inputs_are_kept_by_key_path() -> None:
+    text = (
+        MIXED.replace("viscosity: 1 cP", "viscosity: 1 cP, status: assumed")
+        .replace("mass_fraction: 0.5", "mass_fraction: 0.5, status: measured")
+        .replace("{density: 1 kg/L}", "{density: 1 kg/L, status: assumed}")
+        .replace("length: 10 m", "length: 10 m, status: assumed")
+    )
+    more = "  - {equipment: e, pressure_loss: 1 bar, status: vendor}\nsource: {level: 2 m, status: assumed}\n"
+    case = load_text(f"{text}{more}scenarios: {{s: {{fluid.rheology.status: measured}}}}\n")
+    assert case.assumed == ("fluid.liquid", "fluid.rheology", "source", "route[p]")
+    assert case.scenarios["s"].assumed == ("fluid.liquid", "source", "route[p]")
+
+
+@pytest.mark.parametrize(
+    ("changes", "density"),
+    [
+        ("fluid.solids.mass_fraction: 0.6", 1 / (0.6 / 2650 + 0.4 / 1000)),
+        ("fluid.liquid.density: 1100 kg/m3", 1 / (0.5 / 2650 + 0.5 / 1100)),
+        ("fluid.solids.mass_fraction: null, fluid.solids.volume_fraction: 0.2", 1330.0),
+        ("fluid.density: 1450 kg/m3", 1450.0),
+        ("fluid.solids: null, fluid.density: 1300 kg/m3", 1300.0),
+    ],
+)
+def test_a_scenario_mixes_anew(changes: str, density: float) -> None:
+    changed = scenario(changes, MIXED)
+    assert changed.fluid.density == pytest.approx(density, rel=1e-14)
+
+
+def test_a_scenario_of_thicker_slurry_carries_the_same_dry_solids_in_less_of_it() -> None:
+    changed = scenario("fluid.solids.mass_fraction: 0.6", MIXED.replace("36 m3/h", "{dry_solids: 36 t/h}"))
+    assert changed.flow.design == pytest.approx(10 * (1 / 2650 + 0.4 / 0.6 / 1000), rel=1e-14)
+
+
+def test_a_scenario_may_turn_to_a_method_for_its_own_rheology() -> None:
+    changes = "fluid.rheology: {model: power-law, consistency: 2 Pa.s^n, flow_index: 0.8}, methods.turbulent: irvine"
+    assert scenario(changes).methods.turbulent == "irvine"
 
 
 @pytest.mark.parametrize("written", ["1.0", '"1.0"', "B", "2024-05-01", "no", "012"])
@@ -182,6 +324,14 @@ def test_what_a_scenario_can_do(changes: str, read: object) -> None:
         ("'route[p]': null", ["10:7 scenarios.s.route"]),
         ("'pumps[p].speed': 3 rpm", ["10:7 scenarios.s.pumps[p].speed"]),
         ("limits.head_loss: null", ["10:7 scenarios.s.limits.head_loss"]),
+        (
+            "methods.turbulent: clapp, fluid.rheology: {model: casson, yield_stress: 1 Pa, casson_viscosity: 1 cP}",
+            ["10:26 scenarios.s.methods.turbulent"],
+        ),
+        ("fluid.solids: {density: 3 t/m3, mass_fraction: 0.9}", ["10:7 scenarios.s.fluid.density"]),
+        ("fluid.density: null", ["10:7 scenarios.s.fluid.density"]),
+        ("site.altitude: 12 km", ["10:22 scenarios.s.site.altitude"]),
+        ("flow.dry_solids: 3 t/h", ["10:7 scenarios.s.flow.dry_solids"]),
     ],
 )
 def test_a_fault_of_a_scenario_is_told_at_its_own_line(changes: str, places: list[str]) -> None:

@@ -27,11 +27,13 @@ KEYS = (
     "title", "fluid", "density", "rheology", "model", "flow", "design", "minimum", "route", "pipe",
     "equipment", "size", "diameter", "length", "fittings", "scenarios", "limits", "velocity", "methods",
     "pumps", "<<", "", "fluid.density", "route[suction line].length", "route[", "route[]", "pumps[x].name",
-    "scenarios.thick", "[key]", "<pipe>", "<map>",
+    "scenarios.thick", "[key]", "<pipe>", "<map>", "solids", "liquid", "mass_fraction", "volume_fraction", "d85",
+    "site", "altitude", "status", "dry_solids", "temperature", "exponent", "time_constant", "discharge",
+    "loss_coefficient",
 )  # fmt: skip
 VALUES = (
     "140 m3/h", "12 m", "0.5", "-1", "1e999", "nan", "~", "null", "", "herschel-bulkley", "NPS 8 Sch 40",
-    "*a",
+    "cross", "0.5 s", "assumed", "55 t/h", "free", "24 °C", "slatter", "*a",
     "&a 1", "!!str x", "0x1F", "12:30", "true", "1420 kg/m3", "21 mPa.s", "9.5 Pa", "\x1b", "\ud800",
     "é" * 50, "1 .. 2 1/s",
 )  # fmt: skip
