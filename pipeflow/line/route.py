@@ -108,7 +108,7 @@ def solve(
     equipment = [element for element in route if isinstance(element, Equipment)]
     diameter = side_by_side([pipe.diameter for pipe in pipes])
     velocity = _last_axis(flow) / (np.pi / 4.0 * diameter**2)
-    density, rheology = _last_axis(fluid.density), _with_pipe_axis(fluid.rheology)
+    density, rheology = _last_axis(fluid.density), with_pipe_axis(fluid.rheology)
     roughness = side_by_side([pipe.roughness for pipe in pipes])
     given: dict[str, Any] = {"roughness": roughness, "particle_size": _last_axis(particle_size), "critical": critical}
     solved = solve_pipes(velocity, diameter, density, rheology, method=turbulent, with_edges=True, **given)
@@ -154,7 +154,8 @@ def _last_axis(values: FloatOrArray) -> Array:
     return np.asarray(values, dtype=np.float64)[..., None]
 
 
-def _with_pipe_axis(rheology: Rheology) -> Rheology:
+def with_pipe_axis(rheology: Rheology) -> Rheology:
+    """Give the parameters of a rheology the last axis that pipes have."""
     parameters: dict[str, Any] = {f.name: _last_axis(getattr(rheology, f.name)) for f in fields(rheology)}  # type: ignore[arg-type]
     return replace(rheology, **parameters)  # type: ignore[type-var]
 
