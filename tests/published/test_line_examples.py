@@ -5,10 +5,13 @@ from pathlib import Path
 import numpy as np
 import pytest
 import yaml
-from examples import example
+from examples import GRAVITY, example
 
+from pipeflow.line.elements import Fluid, Pipe
 from pipeflow.line.fittings import resistance
 from pipeflow.line.kinetics import generalized_power_law_factors
+from pipeflow.line.route import solve
+from pipeflow.rheology import Newtonian
 
 KINETIC = yaml.safe_load((Path(__file__).parent / "benchmarks.yaml").read_text(encoding="utf-8"))["kinetic_energy"]
 
@@ -52,3 +55,10 @@ def test_two_and_three_constant_methods():
         ours = resistance({"elbow_90_long_radius": 1}, 4.026 * 0.0254, 4.0, method)
         assert ours[0] == laminar
         assert float(ours[1]) == pytest.approx(turbulent, rel=1e-12)
+
+
+def test_sudden_enlargement():
+    """FI-CR1-3.6. Coulson & Richardson vol. 1, 1999, Example 3.6, p. 88; read in a public reworking (water assumed)."""
+    water = Fluid(1000.0, Newtonian(1e-3))
+    line = solve(7.2 / 3600, water, [Pipe("narrow", 0.040, 1.0), Pipe("wide", 0.050, 1.0)])
+    assert example("FI-CR1-3.6").agrees(h=line.reducer_loss[1] / (1000 * GRAVITY) * 1000)
