@@ -43,6 +43,8 @@ def document(result: Result) -> dict[str, Any]:
         "title": case.title,
         "revision": case.revision,
         "file": case.file,
+        "density_kg_m3": float(case.fluid.density),
+        "assumed_inputs": list(case.assumed),
         "flow_m3_s": case.flow.design,
         "flow_minimum_m3_s": case.flow.minimum,
         "flow_maximum_m3_s": case.flow.maximum,

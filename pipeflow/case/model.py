@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass, field
 
 from pipeflow.line.elements import Element, Fluid, Vessel
@@ -127,3 +128,8 @@ class Case:
     density_is_mixed: bool = False
     assumed: tuple[str, ...] = ()
     scenarios: dict[str, Case] = field(default_factory=dict)
+
+    @property
+    def particle_size(self) -> float:
+        """The d85 of the solids, m; nan where it is not known."""
+        return math.nan if self.solids is None or self.solids.d85 is None else self.solids.d85

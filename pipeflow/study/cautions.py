@@ -32,6 +32,8 @@ def cautions(case: Case, line: LineFlow, elements: tuple[ElementResult, ...]) ->
 
 
 def _about_input(case: Case) -> Iterator[str]:
+    if case.assumed:
+        yield f"assumed, not measured: {', '.join(case.assumed)}"
     for material in dict.fromkeys(case.default_roughness.values()):
         names = [pipe for pipe, of in case.default_roughness.items() if of == material]
         roughness = MATERIALS[material].roughness * 1e3
@@ -95,5 +97,6 @@ def _flat_band(case: Case, pipe: Pipe, flow: PipeFlow) -> Iterator[str]:
         roughness=pipe.roughness,
         method=case.methods.turbulent,
         critical=case.methods.critical,
+        particle_size=case.particle_size,
     ).wall_shear_stress
     yield from flat_band_caution(edges, stresses)

@@ -49,6 +49,7 @@ def solve(case: Case) -> Result:
         turbulent=case.methods.turbulent,
         critical=case.methods.critical,
         fittings=case.methods.fittings,
+        particle_size=case.particle_size,
     )
     elements = tuple(_elements(case, line))
     return Result(

@@ -12,6 +12,7 @@ from pipeflow.case.loading import load_case, load_text
 from pipeflow.case.model import Case, FlowRange, Liquid, Site
 from pipeflow.errors import InputError
 from pipeflow.line.elements import Equipment, Pipe, Vessel
+from pipeflow.record import document
 from pipeflow.rheology import (
     Bingham,
     Carreau,
@@ -25,6 +26,7 @@ from pipeflow.rheology import (
     RobertsonStiff,
     Sisko,
 )
+from pipeflow.study import solve
 
 GOOD = (Path(__file__).parent / "good.yaml").read_text(encoding="utf-8")
 SMALL = """
@@ -250,6 +252,42 @@ def test_a_scenario_mixes_anew(changes: str, density: float) -> None:
 def test_a_scenario_of_thicker_slurry_carries_the_same_dry_solids_in_less_of_it() -> None:
     changed = scenario("fluid.solids.mass_fraction: 0.6", MIXED.replace("36 m3/h", "{dry_solids: 36 t/h}"))
     assert changed.flow.design == pytest.approx(10 * (1 / 2650 + 0.4 / 0.6 / 1000), rel=1e-14)
+
+
+SLURRY = """
+title: Slurry line
+fluid:
+  solids: {density: 2650 kg/m3, mass_fraction: 0.5, d85: 80 um}
+  liquid: {density: 1 kg/L}
+  rheology: {model: bingham, yield_stress: 6 Pa, plastic_viscosity: 12 mPa.s, status: assumed}
+flow: {dry_solids: 200 t/h}
+route:
+  - {pipe: p, diameter: 200 mm, length: 100 m, status: assumed}
+methods: {turbulent: slatter}
+scenarios:
+  coarse: {fluid.solids.d85: 400 um}
+  settled: {fluid.rheology.status: measured, "route[p].status": vendor}
+"""
+
+
+def test_the_size_of_the_solids_reaches_the_friction() -> None:
+    result = solve(load_text(SLURRY))
+    pipe_result, coarse = result.elements[0], result.scenarios["coarse"].elements[0]
+    assert (pipe_result.regime, pipe_result.method) == ("turbulent", "slatter")
+    assert coarse.friction_loss > 1.05 * pipe_result.friction_loss > 0
+    assert "it needs the d85 of the solids" not in result.spread.left_out.values()
+
+
+def test_assumed_inputs_are_listed_in_the_result_and_said_once() -> None:
+    result = solve(load_text(SLURRY))
+    laid_out = document(result)
+    assert laid_out["assumed_inputs"] == ["fluid.rheology", "route[p]"]
+    assert laid_out["density_kg_m3"] == pytest.approx(5300 / 3.65)
+    said = [caution for caution in result.cautions if "assumed, not measured" in caution]
+    assert said == ["assumed, not measured: fluid.rheology, route[p]"]
+    settled = document(result.scenarios["settled"])
+    assert settled["assumed_inputs"] == []
+    assert not any("not measured" in caution for caution in settled["cautions"])
 
 
 def test_a_scenario_may_turn_to_a_method_for_its_own_rheology() -> None:
