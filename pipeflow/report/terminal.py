@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
+import sys
 from collections.abc import Container, Iterable, Iterator, Mapping, Sequence
 from dataclasses import fields
-
-from rich.console import Console
-from rich.text import Text
+from shutil import get_terminal_size
 
 from pipeflow.case.model import Case
 from pipeflow.line.elements import Pipe
@@ -28,11 +27,9 @@ PARAMETERS = {
 }
 
 
-def print_result(result: Result, console: Console | None = None) -> None:
+def print_result(result: Result) -> None:
     """Print the page of a result and of its scenarios."""
-    console = console or Console(highlight=False)
-    console.width = min(console.width, WIDTH)
-    page = _Page(console.width)
+    page = _Page(min(get_terminal_size((WIDTH, 24)).columns, WIDTH))
     page.case(result)
     page.flow(result)
     page.methods(result)
@@ -45,7 +42,7 @@ def print_result(result: Result, console: Console | None = None) -> None:
         page.flow(scenario)
     page.heading("Before relying on this")
     page.text(SAFETY_NOTICE)
-    console.print(page.written, end="", soft_wrap=True)
+    page.print()
 
 
 class _Page:
@@ -53,10 +50,20 @@ class _Page:
 
     def __init__(self, width: int) -> None:
         self.width = width
-        self.written = Text()
+        self.written: list[tuple[str, str]] = []
+
+    def print(self) -> None:
+        """Print the page, with its styles where a person reads it; rich is not loaded for a pipe."""
+        if not sys.stdout.isatty():
+            sys.stdout.write("".join(text for text, _ in self.written))
+            return
+        from rich.console import Console
+        from rich.text import Text
+
+        Console(highlight=False).print(Text.assemble(*self.written), end="", soft_wrap=True)
 
     def line(self, text: str = "", style: str = "") -> None:
-        self.written.append(f"{text}\n", style=style)
+        self.written.append((f"{text}\n", style))
 
     def banner(self, text: str) -> None:
         self.line()
@@ -130,7 +137,7 @@ class _Page:
         for check in result.checks:
             said = f"{check.name.replace('_', ' ')} {_against(check)}; {check.basis}"
             mark = f"{MARK[check.status]:<8}"
-            self.written.append(mark, style=STYLE[check.status])
+            self.written.append((mark, STYLE[check.status]))
             self.line(paragraph(said, self.width, mark)[len(mark) :])
 
     def methods(self, result: Result) -> None:
