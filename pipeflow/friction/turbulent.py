@@ -150,9 +150,12 @@ WILSON_THOMAS = TurbulentMethod(
         key="wilson-thomas",
         title="Turbulent flow with a thickened sublayer; Newtonian part by Colebrook & White",
         citation="Wilson & Thomas, Can. J. Chem. Eng. 63, 539 (1985); Thomas & Wilson, 65, 335 (1987)",
-        ranges=(Range("Re_MR", 2100, 1e5),),
+        ranges=(Range("Re_MR", 2100, 1e5), Range("eps/D", 0, 1e-3)),
         confidence="high",
-        note="the lowest of its family near transition: judge limits on the upper figure",
+        note=(
+            "made for smooth pipe, and the lowest of its family near transition: judge limits on the upper figure; "
+            "roughness enters its Newtonian part alone, which reads some per cent low from eps/D of 0.0003 on"
+        ),
     ),
     wilson_thomas,
     ALL_MODELS,
