@@ -22,7 +22,7 @@ def _double_exponential(step: float = 0.09, lower: float = -4.0, upper: float = 
 NODES, WEIGHTS = _double_exponential()
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class ByPartsTube:
     """``G = 4/3 rate_w - 4/(3 tau_w³) ∫ tau³ d rate`` from rest to the wall: needs ``tau(rate)`` alone.
 
@@ -64,7 +64,7 @@ class ByPartsTube:
         return (self.yield_stress + self.rheology.excess(rates)) / stress
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class EllisTube:
     """``G = (tau_w/eta_0) [1 + 4/(alpha+3) (tau_w/tau_half)^(alpha-1)]``."""
 

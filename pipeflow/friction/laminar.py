@@ -41,7 +41,7 @@ METZNER_REED = Source(
 )
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Wall:
     """The fluid at the pipe wall, for a wall shear stress ``tau_w``; arrays of one shape.
 
@@ -111,7 +111,7 @@ class TubeLaw(Protocol):
         ...
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class GeneralizedPowerLawTube:
     """``tau = tau_y + K rate**n``: Buckingham–Reiner (n = 1) and its extension to Herschel–Bulkley fluids.
 
@@ -155,7 +155,7 @@ class GeneralizedPowerLawTube:
         return self.index
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class CassonTube:
     """Casson's law, with ``s = sqrt(tau_y/tau_w)`` and the factor ``(1 - s)**3`` of its section integral taken out.
 

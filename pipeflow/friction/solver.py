@@ -42,7 +42,7 @@ class Status(IntEnum):
     INVALID = 3
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class PipeFlow:
     """Flow in each pipe; arrays of one shape, SI units, nan where ``status`` says that there is no answer.
 
@@ -81,7 +81,7 @@ class PipeFlow:
     reynolds_critical: Array
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Methods:
     """The published methods that one curve is made of."""
 
@@ -163,9 +163,7 @@ def solve_pipes(
     return _joined(pieces, shape)
 
 
-def critical_velocities(
-    diameter: FloatOrArray, density: FloatOrArray, rheology: Rheology
-) -> dict[str, Array]:
+def critical_velocities(diameter: FloatOrArray, density: FloatOrArray, rheology: Rheology) -> dict[str, Array]:
     """End of laminar flow, m/s, by every criterion that knows the rheology; arguments as for the solver."""
     shape, flatten = _flattener(diameter, density, rheology)
     law, bore = tube_law(rheology, flatten), Bore(flatten(diameter), flatten(density), flatten(0.0), flatten(np.nan))

@@ -16,7 +16,7 @@ from pipeflow.friction.turbulent import TurbulentMethod
 from pipeflow.rheology import Rheology
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Spread:
     """Wall shear stress by every method of the family.
 
@@ -108,4 +108,3 @@ def _pick_rheology(rheology: Rheology, shape: tuple[int, ...], index: NDArray[np
         for f in fields(rheology)  # type: ignore[arg-type]
     }
     return replace(rheology, **parameters)  # type: ignore[type-var]
-

@@ -31,7 +31,7 @@ TRANSITION_LINE = Source(
 )
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Edges:
     """Where laminar flow ends and turbulent flow may begin; logarithms, of SI values; nan where there is no transition.
 
@@ -81,7 +81,7 @@ def _reynolds_slope(wall: Wall) -> Array:
     return 2.0 * wall.slope - wall.sheared
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class TurbulentBranch:
     """Step 3: the part of a turbulent law that continues the laminar curve.
 

@@ -7,12 +7,15 @@ from textwrap import fill, wrap
 
 WIDTH = 80
 GAP = "  "
+DEEPEST_HANG = 24
 NARROWEST = 12
 """First column of a table is not made narrower than this."""
 
 
 def paragraph(text: str, width: int = WIDTH, mark: str = "") -> str:
-    """Fill a paragraph, ``mark`` hanging before it."""
+    """Fill a paragraph, ``mark`` hanging before it if it is short."""
+    if len(mark) > DEEPEST_HANG:
+        return fill(mark.strip() + " " + text, width, initial_indent="  ", subsequent_indent=" " * 4)
     return fill(text, width, initial_indent=mark, subsequent_indent=" " * len(mark), break_on_hyphens=False)
 
 
