@@ -21,7 +21,7 @@ from pipeflow.sources import Range, Source
 EXPANSION = Source(
     key="expansion-momentum",
     title="Sudden expansion by the momentum balance, with the velocity profile of laminar flow",
-    citation="Borda (1766); Carnot (1803); with alpha and beta of the profiles, derived in docs/theory.md",
+    citation="Borda (1766); Carnot (1803); with alpha and beta of the profiles, derived in docs/catalogue.md",
     ranges=(Range("Re_MR", 100, None),),
     confidence="exact",
     note="in turbulent flow (1-s)²; a gradual expansion loses less; below the range the friction of the mixing "

@@ -10,7 +10,7 @@ from __future__ import annotations
 import mpmath as mp
 import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from pipeflow.friction import Regime, solve_pipes
@@ -144,6 +144,7 @@ def test_mishra_tripathi_is_a_constant_of_alpha():
     assert 4200 / generalized_power_law_factors(0.0, n).energy == pytest.approx(printed, rel=1e-13)
 
 
+@settings(deadline=None)
 @given(
     plug=st.floats(0, 0.9999),
     n=st.floats(0.15, 1.8),
@@ -159,6 +160,7 @@ def test_integration_for_laws_without_a_closed_form(plug, n, tube):
         assert getattr(numeric, name) == pytest.approx(getattr(closed, name), rel=1e-9)
 
 
+@settings(deadline=None)
 @given(plug=st.floats(0, 1), n=st.floats(0.05, 2))
 def test_order_of_the_factors(plug, n):
     for factors in (generalized_power_law_factors(plug, n), casson_factors(plug)):

@@ -152,6 +152,7 @@ def test_unknown_fitting_or_method():
 KEYS = st.sampled_from(sorted(set(fittings()) - {"exit"}))
 
 
+@settings(max_examples=60, deadline=None)
 @given(KEYS, st.sampled_from(sorted(METHODS)), st.floats(0.01, 0.9), st.floats(0.0, 60.0))
 def test_loss_of_a_fitting_rises_and_its_coefficient_falls_with_flow(key, method, diameter, yield_stress):
     velocity = np.geomspace(1e-3, 20.0, 400)
