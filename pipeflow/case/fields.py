@@ -53,9 +53,9 @@ def at_odds(message: str, *below: str) -> PydanticCustomError:
     return PydanticCustomError("at_odds", "{message}", {"message": message, "below": below})
 
 
-def lacks() -> PydanticCustomError:
-    """Make the error of a required key for one that is required only here."""
-    return PydanticCustomError("missing", "missing")
+def lacks(*instead: str) -> PydanticCustomError:
+    """Make the error of a required key for one that is required only without the keys that may stand instead."""
+    return PydanticCustomError("missing", "missing", {"keys": instead})
 
 
 def needs(*keys: str, message: str) -> PydanticCustomError:

@@ -129,7 +129,7 @@ class FluidPart(InputPart):
 
 def _refuse_unless_mixed(solids: SolidsPart | None, liquid: LiquidPart | None) -> None:
     if solids is None and liquid is None:
-        raise lacks()
+        raise lacks("solids", "liquid")
     if solids is None:
         raise needs("density", "solids", message="density is missing; give it, or 'solids' to work it out from")
     if liquid is None or liquid.density is None:

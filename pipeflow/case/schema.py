@@ -112,7 +112,7 @@ class FlowPart(InputPart):
     def _given_one_way(cls, value: FlowValue | None, info: ValidationInfo) -> FlowValue | None:
         is_dry = info.data.get("dry_solids", FAILED) is not None
         if value is None and info.field_name == "design" and not is_dry:
-            raise lacks()
+            raise lacks("dry_solids")
         told = any(info.data.get(key, FAILED) for key in _FLOWS[: _FLOWS.index(str(info.field_name))])
         if value is not None and is_dry and not told:
             raise at_odds("'dry_solids' is given too; the flow of the solids or that of the slurry is needed")

@@ -68,7 +68,8 @@ class Fault:
     @property
     def keys_missing(self) -> tuple[str, ...]:
         """The keys one of which would have prevented the error."""
-        return (self.key,) if self.kind == "missing" else self.details.get("keys", ())
+        own = (self.key,) if self.kind == "missing" else ()
+        return (*own, *self.details.get("keys", ()))
 
 
 def findings(tree: Node, errors: list[ErrorDetails]) -> list[Finding]:
@@ -154,7 +155,8 @@ def _without_consequences(faults: list[Fault]) -> list[Fault]:
     strange, lacks = _only_one(unknown), _only_one([fault for fault in left if fault.keys_missing])
     for home, fault in strange.items():
         if home in lacks and not fault.suggestion:
-            fault.lacking = lacks[home].keys_missing
+            lack = lacks[home]
+            fault.lacking = (lack.key,) if lack.kind == "missing" else lack.keys_missing
             left.remove(lacks[home])
     return left
 
