@@ -16,7 +16,7 @@ from pipeflow.arrays import Array
 from pipeflow.friction.criteria import Criterion, log_reynolds_mr
 from pipeflow.friction.laminar import TubeLaw, Wall
 from pipeflow.friction.turbulent import Bore, TurbulentMethod
-from pipeflow.rootfind import find_root
+from pipeflow.rootfind import find_root, take
 from pipeflow.sources import Source
 
 LOG_BAND = float(np.log(4000.0 / 2100.0))
@@ -106,7 +106,7 @@ class TurbulentBranch:
     def after(cls, edges: Edges, method: TurbulentMethod, law: TubeLaw, bore: Bore) -> TurbulentBranch:
         """Find where the branch begins: the law's root, the laminar stress at the candidate, or its turning point."""
         lowest = edges.band_log_excess
-        if not method.rising and np.any(law.yield_stress > 0):
+        if not method.rising:
             lowest = np.maximum(lowest, last_turning_point(method, law, bore))
         at_lowest = _log_velocity(lowest, method, law, bore)
         by_law = ~(at_lowest >= edges.band_log_velocity)
@@ -140,15 +140,26 @@ def last_turning_point(method: TurbulentMethod, law: TubeLaw, bore: Bore) -> Arr
     """``ln(tau_w - tau_y)`` above which the velocity of a turbulent law only rises; -inf where it always does.
 
     With n' taken at the turbulent wall stress, n' -> 0 at the plug bends the curve back: roots below are false. Looked
-    for on a ladder of stresses, and on finer ones between the rungs about it.
+    for on a ladder of stresses, and on finer ones between the rungs about it. Without a yield stress it always rises.
     """
+    turning = np.full(law.yield_stress.shape, -np.inf)
+    yielding = np.flatnonzero(law.yield_stress > 0)
+    if yielding.size:
+        turning[yielding] = _turning_point(method, take(law, yielding), take(bore, yielding))
+    return turning
+
+
+def _turning_point(method: TurbulentMethod, law: TubeLaw, bore: Bore) -> Array:
     low, high = np.log(law.yield_stress) - 5.0, np.log(law.yield_stress) + 9.0
     found = np.zeros(low.shape, dtype=bool)
+    column = np.arange(low.size)
     for rungs in TURNING_LADDERS:
         ladder = low + np.linspace(0.0, 1.0, rungs)[:, None] * (high - low)
-        falling = ~(np.diff(method.velocity(law.wall(ladder), law, bore), axis=0) > 0)
+        each = np.tile(column, rungs)
+        law_at_rungs = take(law, each)
+        velocity = method.velocity(law_at_rungs.wall(ladder.ravel()), law_at_rungs, take(bore, each))
+        falling = ~(np.diff(velocity.reshape(ladder.shape), axis=0) > 0)
         found |= falling.any(axis=0)
         last = rungs - 2 - np.argmax(falling[::-1], axis=0)
-        column = np.arange(low.size)
         low, high = ladder[last, column], ladder[np.minimum(last + 2, rungs - 1), column]
     return np.where(found, high, -np.inf)
