@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, Annotated
 import typer
 
 from pipeflow.errors import PipeflowError
+from pipeflow.fit_command import fit
 
 if TYPE_CHECKING:
     from pipeflow.study import Result
@@ -87,6 +88,9 @@ def methods() -> None:
     from pipeflow.report.methods_page import methods_page
 
     typer.echo(methods_page())
+
+
+app.command()(fit)
 
 
 def main() -> None:

@@ -1,0 +1,75 @@
+"""The profile of a case at design flow: pressure and head along the route, slack flow behind a high point."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+import numpy as np
+
+from pipeflow.case.model import Case
+from pipeflow.line.profile import GradeLine, Profile, profile
+from pipeflow.line.route import LineFlow
+from pipeflow.line.site import standard_atmosphere
+from pipeflow.study.flows import DESIGN
+from pipeflow.study.result import ProfilePoint, ProfileResult, SlackResult
+
+
+def atmospheric_pressure(case: Case) -> float | None:
+    """Absolute pressure of the air at the site, Pa; None where the case does not say."""
+    if case.site is None:
+        return None
+    if case.site.atmospheric_pressure is not None:
+        return case.site.atmospheric_pressure
+    return float(standard_atmosphere(case.site.altitude or 0.0))
+
+
+def profile_of(case: Case, line: LineFlow) -> ProfileResult:
+    """Read the solved line at its nodes, the pump at the start of the route."""
+    atmosphere, vapour = atmospheric_pressure(case), case.liquid.vapour_pressure if case.liquid else None
+    found = profile(
+        line,
+        case.fluid,
+        case.route,
+        case.source,
+        case.destination,
+        atmospheric_pressure=atmosphere,
+        vapour_pressure=vapour,
+    )
+    missing = {"site": atmosphere, "fluid.liquid.vapour_pressure": vapour}
+    return ProfileResult(
+        points=tuple(_points(found)),
+        highest_point=str(found.nodes[int(found.highest_point[DESIGN])]),
+        lowest_point=str(found.nodes[int(found.lowest_point[DESIGN])]),
+        lowest_pressure_at=str(found.nodes[int(found.central.lowest_pressure[DESIGN])]),
+        highest_pressure_at=str(found.nodes[int(found.upper.highest_pressure[DESIGN])]),
+        slack=_slack(found, found.central),
+        slack_upper=_slack(found, found.upper),
+        needed_for_slack=tuple(key for key, value in missing.items() if value is None),
+        falls=bool(np.any(np.diff(found.elevation[DESIGN, 1:-1]) < 0)),
+    )
+
+
+def _points(found: Profile) -> Iterator[ProfilePoint]:
+    for index, node in enumerate(found.nodes):
+        yield ProfilePoint(
+            node.element,
+            node.place,
+            distance=float(found.distance[DESIGN, index]),
+            elevation=float(found.elevation[DESIGN, index]),
+            head=float(found.central.total_head[DESIGN, index]),
+            head_upper=float(found.upper.total_head[DESIGN, index]),
+            pressure=float(found.central.pressure[DESIGN, index]),
+            pressure_upper=float(found.upper.pressure[DESIGN, index]),
+        )
+
+
+def _slack(found: Profile, grade: GradeLine) -> SlackResult | None:
+    if grade.slack is None:
+        return None
+    share = grade.slack.share[DESIGN]
+    return SlackResult(
+        head_required=float(grade.slack.head_required[DESIGN]),
+        head_without=float(grade.slack.head_without[DESIGN]),
+        governed_by=str(found.nodes[int(grade.slack.governing[DESIGN])]),
+        share={name: float(part) for name, part in zip(found.elements, share, strict=True) if part > 0},
+    )
