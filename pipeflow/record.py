@@ -7,7 +7,16 @@ from dataclasses import fields
 from typing import Any
 
 from pipeflow.sources import Source
-from pipeflow.study.result import SAFETY_NOTICE, ElementResult, MethodUse, Result, Totals
+from pipeflow.study.result import (
+    SAFETY_NOTICE,
+    ElementResult,
+    MethodUse,
+    ProfilePoint,
+    ProfileResult,
+    Result,
+    SlackResult,
+    Totals,
+)
 from pipeflow.verdict import Check
 
 _UNITS = {
@@ -25,6 +34,7 @@ _UNITS = {
     "friction_loss": "Pa",
     "friction_loss_upper": "Pa",
     "fitting_loss": "Pa",
+    "reducer_loss": "Pa",
     "equipment_loss": "Pa",
     "head_loss": "m",
     "head_loss_upper": "m",
@@ -33,6 +43,14 @@ _UNITS = {
     "total_head_upper": "m",
     "pressure_required": "Pa",
     "pressure_required_upper": "Pa",
+    "distance": "m",
+    "elevation": "m",
+    "head": "m",
+    "head_upper": "m",
+    "pressure": "Pa",
+    "pressure_upper": "Pa",
+    "head_required": "m",
+    "head_without": "m",
 }
 
 
@@ -51,7 +69,8 @@ def document(result: Result) -> dict[str, Any]:
         "elements": [_fields(element) for element in result.elements],
         "totals": _fields(result.totals),
         "method_spread": {"head_loss_m": result.spread.head_loss, "left_out": result.spread.left_out},
-        "checks": [_check(check) for check in result.checks],
+        "profile": _profile(result.profile),
+        "checks": [_fields(check) for check in result.checks],
         "cautions": list(result.cautions),
         "methods": [_method(use) for use in result.methods],
         "safety_notice": SAFETY_NOTICE,
@@ -61,7 +80,7 @@ def document(result: Result) -> dict[str, Any]:
     return laid_out
 
 
-def _fields(item: ElementResult | Totals) -> dict[str, Any]:
+def _fields(item: ElementResult | Totals | ProfileResult | ProfilePoint | SlackResult | Check) -> dict[str, Any]:
     return {_key(field.name): _finite(getattr(item, field.name)) for field in fields(item)}
 
 
@@ -73,8 +92,13 @@ def _finite(value: Any) -> Any:
     return None if isinstance(value, float) and not math.isfinite(value) else value
 
 
-def _check(check: Check) -> dict[str, Any]:
-    return {field.name: _finite(getattr(check, field.name)) for field in fields(check)}
+def _profile(profile: ProfileResult) -> dict[str, Any]:
+    return {
+        **_fields(profile),
+        "points": [_fields(point) for point in profile.points],
+        "slack": profile.slack and _fields(profile.slack),
+        "slack_upper": profile.slack_upper and _fields(profile.slack_upper),
+    }
 
 
 def _method(use: MethodUse) -> dict[str, Any]:

@@ -3,28 +3,36 @@
 from __future__ import annotations
 
 import sys
-from collections.abc import Container, Iterable, Iterator, Mapping, Sequence
+from collections.abc import Container, Iterable, Iterator, Sequence
 from dataclasses import fields
 from shutil import get_terminal_size
 
-from pipeflow.case.model import Case
+from pipeflow.case.model import Case, Liquid, Solids
 from pipeflow.line.elements import Pipe
 from pipeflow.report.text import WIDTH, paragraph, table
 from pipeflow.rheology import Rheology
-from pipeflow.study.result import SAFETY_NOTICE, ElementResult, Result
+from pipeflow.study.flows import dry_solids_flow
+from pipeflow.study.profile import atmospheric_pressure
+from pipeflow.study.result import SAFETY_NOTICE, ElementResult, ProfileResult, Result
 from pipeflow.units import format_value, significant, to_display
 from pipeflow.verdict import Check
 
 MARK = {"ok": "ok", "not checked": "not checked", "caution": "CAUTION", "fail": "FAIL"}
 """The word for each status, the gravest last."""
 STYLE = {"ok": "green", "caution": "yellow", "fail": "bold red", "not checked": "dim"}
-PARAMETERS = {
+UNITS = {
     "viscosity": "viscosity",
     "plastic_viscosity": "viscosity",
     "casson_viscosity": "viscosity",
+    "zero_shear_viscosity": "viscosity",
+    "infinite_shear_viscosity": "viscosity",
     "consistency": "consistency",
     "yield_stress": "stress",
+    "half_stress": "stress",
+    "time_constant": "s",
+    "rate_offset": "1/s",
 }
+"""Dimension or unit of each rheological parameter; those not named have none."""
 
 
 def print_result(result: Result) -> None:
@@ -97,8 +105,8 @@ class _Page:
         columns = ("element", "size", "bore\nmm", "length\nm", "rise\nm", "roughness\nmm")
         self.rows(columns, _route(result), words=(0, 1))
         for pipe in case.route:
-            if isinstance(pipe, Pipe) and pipe.fittings:
-                self.text(", ".join(_counted(pipe.fittings)), mark=f"  {pipe.name}: ")
+            if isinstance(pipe, Pipe) and (pipe.fittings or pipe.loss_coefficient):
+                self.text(", ".join(_counted(pipe)), mark=f"  {pipe.name}: ")
 
     def flow(self, result: Result) -> None:
         self.heading(f"Flow at design, {format_value(result.case.flow.design, 'volume flow')}")
@@ -116,6 +124,7 @@ class _Page:
         self.heading("Totals")
         self.rows(("", "central", "upper", ""), _totals(result), words=(0, 3))
         self.spread(result)
+        self.profile(result)
         self.checks(result)
         if result.cautions:
             self.heading("Cautions")
@@ -129,6 +138,15 @@ class _Page:
         if result.spread.left_out:
             reasons = "; ".join(f"{key}, {why}" for key, why in result.spread.left_out.items())
             self.text(f"Not in the upper figure: {reasons}.", mark="  ")
+
+    def profile(self, result: Result) -> None:
+        profile = result.profile
+        self.heading("Profile at design flow, pump at the start of the route")
+        columns = ("end of", "distance\nm", "elevation\nm", "head\nm", "pressure\nkPa gauge", "upper\nkPa gauge")
+        self.rows(columns, _profile(profile))
+        self.text(f"Highest at {profile.highest_point}; lowest at {profile.lowest_point}.", mark="  ")
+        if profile.slack:
+            self.text(f"The head of the pump is governed by {profile.slack.governed_by}.", mark="  ")
 
     def checks(self, result: Result) -> None:
         self.heading("Checks")
@@ -147,8 +165,27 @@ class _Page:
             self.text(f"{use.source.key}: {use.used_for}. {use.source.citation}.{note}", mark="- ")
 
 
-def _counted(fittings: Mapping[str, float]) -> list[str]:
-    return [f"{count:g} x {key.replace('_', ' ')}" for key, count in fittings.items()]
+def _counted(pipe: Pipe) -> list[str]:
+    counts = [f"{count:g} x {key.replace('_', ' ')}" for key, count in pipe.fittings.items()]
+    return counts + ([f"further K {pipe.loss_coefficient:g}"] if pipe.loss_coefficient else [])
+
+
+def _profile(profile: ProfileResult) -> list[tuple[str, ...]]:
+    """Before and after the pump, and the end of every element."""
+    before, after, *others = profile.points[1:-1]
+    named = [("before the pump", before), ("after the pump", after)]
+    named += [(point.element, point) for point in others if point.place == "end"]
+    return [
+        (
+            name,
+            _number(point.distance, "m"),
+            _number(point.elevation, "m"),
+            _number(point.head, "m"),
+            _number(point.pressure, "kPa"),
+            _number(point.pressure_upper, "kPa"),
+        )
+        for name, point in named
+    ]
 
 
 def _side_by_side(result: Result) -> Iterator[tuple[str, ...]]:
@@ -181,7 +218,14 @@ def _against(check: Check) -> str:
 
 
 def _basis(case: Case) -> Iterator[tuple[str, str]]:
-    yield "density", format_value(float(case.fluid.density), "kg/m3")
+    mixed = ", mixed of solids and liquid" if case.density_is_mixed else ""
+    yield "density", format_value(float(case.fluid.density), "kg/m3") + mixed
+    if case.temperature is not None:
+        yield "temperature", format_value(case.temperature, "°C")
+    if case.solids:
+        yield from _solids(case, case.solids)
+    if case.liquid:
+        yield from _liquid(case.liquid)
     yield "rheology", case.fluid.rheology.key
     yield from _parameters(case.fluid.rheology)
     if case.tested_shear_rate:
@@ -197,13 +241,36 @@ def _basis(case: Case) -> Iterator[tuple[str, str]]:
     for name, vessel in (("source", case.source), ("destination", case.destination)):
         if vessel:
             pressure, level = format_value(float(vessel.pressure), "kPa"), format_value(float(vessel.level), "m")
-            yield name, f"{pressure} gauge, level {level}"
+            free = ", free discharge" if vessel.discharge == "free" else ""
+            yield name, f"{pressure} gauge, level {level}{free}"
+    if case.site:
+        atmosphere = atmospheric_pressure(case)
+        yield "atmosphere", format_value(atmosphere or 0.0, "kPa") + " absolute"
+
+
+def _solids(case: Case, solids: Solids) -> Iterator[tuple[str, str]]:
+    yield "solids", format_value(solids.density, "kg/m3")
+    yield "  by mass, by volume", f"{100 * solids.mass_fraction:.4g} %, {100 * solids.volume_fraction:.4g} %"
+    yield "  dry, at design flow", format_value(dry_solids_flow(case) or 0.0, "t/h")
+    for name, size in (("d50", solids.d50), ("d85", solids.d85)):
+        if size is not None:
+            yield f"  {name}", format_value(size, "µm")
+
+
+def _liquid(liquid: Liquid) -> Iterator[tuple[str, str]]:
+    for name, value, unit in (
+        ("liquid", liquid.density, "kg/m3"),
+        ("  its viscosity", liquid.viscosity, "mPa.s"),
+        ("  its vapour pressure", liquid.vapour_pressure, "kPa"),
+    ):
+        if value is not None:
+            yield name, format_value(value, unit)
 
 
 def _parameters(rheology: Rheology) -> Iterator[tuple[str, str]]:
     for field in fields(rheology):  # type: ignore[arg-type]
         value = getattr(rheology, field.name)
-        dimension = PARAMETERS.get(field.name)
+        dimension = UNITS.get(field.name)
         shown = format_value(value, dimension) if dimension else significant(value)
         yield f"  {field.name.replace('_', ' ')}", shown
 
@@ -251,6 +318,9 @@ def _totals(result: Result) -> Iterator[tuple[str, ...]]:
     yield "head loss", _number(totals.head_loss), _number(totals.head_loss_upper), "m of slurry"
     yield "static head", _number(totals.static_head), "", "m of slurry"
     yield "total head", _number(totals.total_head), _number(totals.total_head_upper), "m of slurry"
+    slack, upper = result.profile.slack, result.profile.slack_upper
+    if slack and upper and upper.share:
+        yield "pump head, slack flow", _number(slack.head_required), _number(upper.head_required), "m of slurry"
     required = (_number(figure, "kPa") for figure in (totals.pressure_required, totals.pressure_required_upper))
     yield "pressure required", *required, "kPa"
 

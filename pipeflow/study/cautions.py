@@ -3,25 +3,29 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from dataclasses import replace
 
 import numpy as np
 
 from pipeflow.case.model import Case
 from pipeflow.friction import PipeFlow, Regime, Status, solve_pipes
-from pipeflow.friction.methods import turbulent_method
+from pipeflow.friction.methods import critical_criterion, turbulent_method
 from pipeflow.line.catalogue import MATERIALS
 from pipeflow.line.elements import Pipe
-from pipeflow.line.fittings import ENDS
+from pipeflow.line.fittings import DEFAULT_METHOD, ENDS, METHODS, fittings, notes
 from pipeflow.line.route import LineFlow
 from pipeflow.operability.transition import criteria_caution, flat_band_caution, transition_cautions
 from pipeflow.operability.validity import range_cautions, tested_rate_cautions
+from pipeflow.rheology.models import GeneralizedPowerLaw
+from pipeflow.sources import Source
 from pipeflow.study.flows import distinct_flows, one_pipe, pipes_of
-from pipeflow.study.result import ElementResult
+from pipeflow.study.result import ElementResult, ProfileResult
 
 
-def cautions(case: Case, line: LineFlow, elements: tuple[ElementResult, ...]) -> Iterator[str]:
+def cautions(case: Case, line: LineFlow, elements: tuple[ElementResult, ...], profile: ProfileResult) -> Iterator[str]:
     """Every caution of a solved case, those about its input first."""
     yield from _about_input(case)
+    yield from _about_profile(profile)
     names_by_text: dict[str, list[str]] = {}
     for name, text in _about_pipes(case, line, elements):
         names = names_by_text.setdefault(text, [])
@@ -43,8 +47,25 @@ def _about_input(case: Case) -> Iterator[str]:
         yield "the line joins two vessels, but no entrance or exit loss is among its fittings"
     if case.flow.design == 0:
         yield "at rest: the losses shown are those that must be overcome before anything moves"
+    yield from notes(sorted(named), case.methods.fittings or DEFAULT_METHOD)
     if case.pumps:
         yield "the pumps of the case are read, but not yet set against the system curve"
+
+
+def _about_profile(profile: ProfileResult) -> Iterator[str]:
+    slack = profile.slack_upper
+    if slack and slack.share:
+        yield (
+            f"slack flow: {', '.join(slack.share)} partly filled behind {slack.governed_by}, where the pressure would "
+            f"fall below the vapour's; the pump must give {slack.head_required:.4g} m, not {slack.head_without:.4g} "
+            "m, and nothing is recovered downstream"
+        )
+    lowest = min(point.pressure for point in profile.points[1:-1])
+    if slack is None and lowest < 0:
+        yield (
+            f"the pressure falls to {lowest / 1e3:.3g} kPa gauge at {profile.lowest_pressure_at}; slack flow and "
+            f"boiling are not checked: give {' and '.join(profile.needed_for_slack)}"
+        )
 
 
 def _about_pipes(case: Case, line: LineFlow, elements: tuple[ElementResult, ...]) -> Iterator[tuple[str, str]]:
@@ -69,22 +90,40 @@ def _about_pipe(case: Case, pipe: Pipe, at: dict[str, tuple[float, PipeFlow]], r
     )
     if any(flow.regime == Regime.TRANSITIONAL for flow in flows):
         yield from _flat_band(case, pipe, flows[0])
-    source = turbulent_method(case.fluid.rheology, case.methods.turbulent).source
-    for flow in flows:
-        if flow.regime == Regime.TURBULENT:
-            yield from range_cautions(source, _variables(pipe, flow))
+    for source, regimes in _sources_with_ranges(case, pipe):
+        for flow in flows:
+            if flow.regime in regimes:
+                yield from range_cautions(source, _variables(case, pipe, flow))
     if case.tested_shear_rate:
         rates = [float(flow.wall_shear_rate) for flow in flows]
         yield from tested_rate_cautions(min(rates), max(rates), case.tested_shear_rate)
 
 
-def _variables(pipe: Pipe, flow: PipeFlow) -> dict[str, float]:
+def _sources_with_ranges(case: Case, pipe: Pipe) -> Iterator[tuple[Source, tuple[Regime, ...]]]:
+    """Methods in use in a pipe, and the regimes in which their ranges matter."""
+    moving = (Regime.LAMINAR, Regime.TRANSITIONAL, Regime.TURBULENT)
+    yield turbulent_method(case.fluid.rheology, case.methods.turbulent).source, (Regime.TURBULENT,)
+    yield critical_criterion(case.fluid.rheology, case.methods.critical).source, moving
+    preferred = case.methods.fittings or DEFAULT_METHOD
+    for key in pipe.fittings:
+        bounds = tuple(fittings()[key].ranges(preferred))
+        if bounds:
+            yield replace(METHODS[preferred], key=f"{preferred} for {key}", ranges=bounds), moving
+
+
+def _variables(case: Case, pipe: Pipe, flow: PipeFlow) -> dict[str, float]:
     """The variables that ranges of methods are given in."""
-    return {
+    variables = {
         "Re_MR": float(flow.reynolds_mr),
         "n'": float(flow.local_flow_index),
         "eps/D": float(pipe.roughness / pipe.diameter),
     }
+    law = case.fluid.rheology
+    if isinstance(law, GeneralizedPowerLaw) and law.yield_stress > 0:
+        full = law.as_herschel_bulkley()
+        strain = (full.yield_stress / full.consistency) ** (2.0 / full.flow_index)
+        variables["He"] = float(case.fluid.density * pipe.diameter**2 / full.yield_stress * strain)
+    return variables
 
 
 def _flat_band(case: Case, pipe: Pipe, flow: PipeFlow) -> Iterator[str]:

@@ -8,6 +8,7 @@ from pipeflow.case.model import Case
 from pipeflow.friction import PipeFlow
 from pipeflow.line.elements import Pipe
 from pipeflow.line.route import LineFlow
+from pipeflow.rheology import mixture
 
 DESIGN, MINIMUM, MAXIMUM = 0, 1, 2
 FLOW_NAMES = ("design flow", "minimum flow", "maximum flow")
@@ -26,3 +27,10 @@ def pipes_of(case: Case) -> list[Pipe]:
 def one_pipe(line: LineFlow, flow: int, pipe: int) -> PipeFlow:
     """Pick one pipe at one of the flows."""
     return PipeFlow(*(getattr(line.pipes, field.name)[flow, pipe] for field in fields(PipeFlow)))
+
+
+def dry_solids_flow(case: Case) -> float | None:
+    """Dry solids at design flow, kg/s; None where the case names no solids."""
+    if case.solids is None:
+        return None
+    return float(mixture.dry_solids_flow(case.flow.design, case.solids.mass_fraction, case.fluid.density))

@@ -10,6 +10,9 @@ from pipeflow.friction.methods import FAMILY, TURBULENT
 from pipeflow.friction.transition import TRANSITION_LINE
 from pipeflow.friction.turbulent import ALL_MODELS
 from pipeflow.line.fittings import METHODS as FITTINGS
+from pipeflow.line.kinetics import KINETIC_FACTORS
+from pipeflow.line.losses import CONTRACTION, EXPANSION
+from pipeflow.line.site import STANDARD_ATMOSPHERE
 from pipeflow.sources import Source
 
 
@@ -48,6 +51,8 @@ def method_sections() -> tuple[Section, ...]:
         ),
         Section("Transition", "", (Choice(TRANSITION_LINE),)),
         Section("Fittings", "methods.fittings", tuple(Choice(source) for source in FITTINGS.values())),
+        Section("Changes of bore and exits", "", tuple(Choice(s) for s in (EXPANSION, CONTRACTION, KINETIC_FACTORS))),
+        Section("Site", "", (Choice(STANDARD_ATMOSPHERE),)),
     )
 
 

@@ -20,6 +20,7 @@ SAFETY_NOTICE = (
 class ElementResult:
     """One element at design flow; None where a figure has no meaning for the element or the flow.
 
+    ``reducer_loss`` is the part of ``fitting_loss`` due to the change of bore from the pipe before.
     ``critical_velocity`` is the end of laminar flow by the method chosen, ``critical_velocity_lowest`` and ``_highest``
     by all criteria that know the rheology.
     """
@@ -30,6 +31,7 @@ class ElementResult:
     friction_loss: float = 0.0
     friction_loss_upper: float = 0.0
     fitting_loss: float = 0.0
+    reducer_loss: float = 0.0
     equipment_loss: float = 0.0
     size: str | None = None
     diameter: float | None = None
@@ -84,6 +86,49 @@ class MethodSpread:
 
 
 @dataclass(frozen=True)
+class ProfilePoint:
+    """One place of the line at design flow: heads in m of the slurry above the route's start, gauge pressures in Pa."""
+
+    element: str
+    place: str
+    distance: float
+    elevation: float
+    head: float
+    head_upper: float
+    pressure: float
+    pressure_upper: float
+
+
+@dataclass(frozen=True)
+class SlackResult:
+    """Head that the high points ask for, m, which place governs, and the share of each element that runs slack."""
+
+    head_required: float
+    head_without: float
+    governed_by: str
+    share: dict[str, float]
+
+
+@dataclass(frozen=True)
+class ProfileResult:
+    """The line along its route, with its high and low points.
+
+    ``slack`` is None where it could not be checked; ``needed_for_slack`` then names the keys it needs. ``falls`` tells
+    whether the route goes downhill anywhere.
+    """
+
+    points: tuple[ProfilePoint, ...]
+    highest_point: str
+    lowest_point: str
+    lowest_pressure_at: str
+    highest_pressure_at: str
+    slack: SlackResult | None
+    slack_upper: SlackResult | None
+    needed_for_slack: tuple[str, ...]
+    falls: bool
+
+
+@dataclass(frozen=True)
 class Result:
     """What is known of one case; the scenarios are results of their own."""
 
@@ -91,6 +136,7 @@ class Result:
     elements: tuple[ElementResult, ...]
     totals: Totals
     spread: MethodSpread
+    profile: ProfileResult
     checks: tuple[Check, ...]
     cautions: tuple[str, ...]
     methods: tuple[MethodUse, ...]

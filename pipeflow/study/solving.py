@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import fields
+from itertools import pairwise
 
 import numpy as np
 
@@ -16,13 +17,16 @@ from pipeflow.friction.solver import critical_velocities
 from pipeflow.friction.transition import TRANSITION_LINE
 from pipeflow.line import route
 from pipeflow.line.elements import Equipment, Pipe
-from pipeflow.line.fittings import DEFAULT_METHOD, METHODS, fittings
+from pipeflow.line.fittings import DEFAULT_METHOD, EXIT, METHODS, fittings
+from pipeflow.line.kinetics import KINETIC_FACTORS
+from pipeflow.line.losses import CONTRACTION, EXPANSION
 from pipeflow.line.route import LineFlow
 from pipeflow.operability.limits import at_least, at_most
 from pipeflow.rheology import Rheology
 from pipeflow.sources import Source
 from pipeflow.study.cautions import cautions
 from pipeflow.study.flows import DESIGN, MAXIMUM, MINIMUM, one_pipe, pipes_of
+from pipeflow.study.profile import profile_of
 from pipeflow.study.result import ElementResult, MethodSpread, MethodUse, Result, Totals
 from pipeflow.verdict import Check
 
@@ -52,13 +56,15 @@ def solve(case: Case) -> Result:
         particle_size=case.particle_size,
     )
     elements = tuple(_elements(case, line))
+    profile = profile_of(case, line)
     return Result(
         case=case,
         elements=elements,
         totals=_totals(line),
         spread=_spread(line, elements),
+        profile=profile,
         checks=tuple(_checks(case, line)),
-        cautions=tuple(cautions(case, line, elements)),
+        cautions=tuple(cautions(case, line, elements, profile)),
         methods=tuple(_methods(case, elements)),
         scenarios={name: solve(scenario) for name, scenario in case.scenarios.items()},
     )
@@ -98,6 +104,7 @@ def _pipe(case: Case, pipe: Pipe, line: LineFlow, index: int, band: Array) -> El
         friction_loss=float(line.friction_loss[DESIGN, index]),
         friction_loss_upper=float(line.friction_loss_upper[DESIGN, index]),
         fitting_loss=float(line.fitting_loss[DESIGN, index]),
+        reducer_loss=float(line.reducer_loss[DESIGN, index]),
         size=case.sizes.get(pipe.name),
         diameter=float(pipe.diameter),
         length=float(pipe.length),
@@ -187,9 +194,24 @@ def _methods(case: Case, elements: tuple[ElementResult, ...]) -> Iterator[Method
         names = [pipe.name for pipe in pipes if pipe.regime in regimes]
         if names:
             yield MethodUse(source, f"{used_for} in {', '.join(names)}")
+    yield from _losses_by_bore(case)
     preferred = case.methods.fittings or DEFAULT_METHOD
     used = {key for pipe in pipes_of(case) for key in pipe.fittings}
     for method in METHODS.values():
         keys = sorted(key for key in used if fittings()[key].method(preferred) is method)
         if keys:
             yield MethodUse(method, ", ".join(keys))
+
+
+def _losses_by_bore(case: Case) -> Iterator[MethodUse]:
+    """Methods of the losses where the bore changes, and where the line ends in a vessel."""
+    pipes = pipes_of(case)
+    changes = list(pairwise(pipes))
+    wider = [after.name for before, after in changes if after.diameter > before.diameter]
+    narrower = [after.name for before, after in changes if after.diameter < before.diameter]
+    if wider:
+        yield MethodUse(EXPANSION, f"change of bore before {', '.join(wider)}")
+    if narrower:
+        yield MethodUse(CONTRACTION, f"change of bore before {', '.join(narrower)}")
+    if wider or any(EXIT in pipe.fittings for pipe in pipes):
+        yield MethodUse(KINETIC_FACTORS, "kinetic head lost at exits and expansions")
