@@ -1,0 +1,9 @@
+"""Importing this registers every example."""
+
+import laminar_examples
+import line_examples
+import measured_friction
+import transition_examples
+import turbulent_examples
+
+__all__ = ["laminar_examples", "line_examples", "measured_friction", "transition_examples", "turbulent_examples"]
