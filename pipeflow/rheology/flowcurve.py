@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from typing import Any, Final
 
 import numpy as np
 from numpy.typing import NDArray
@@ -13,6 +14,8 @@ from pipeflow.rheology.quality import cylinder_flags, hysteresis, tube_flags
 from pipeflow.rheology.readings import CurveReadings, CylinderReadings, IntArray, Readings, Sample, TubeReadings
 from pipeflow.rheology.tube_viscometer import BAGLEY, MOONEY_SLIP, TubeCurve, tube_curve
 from pipeflow.sources import Source
+
+ALL_SLIP: Final = "its flow is slip at the wall almost alone"
 
 
 @dataclass(frozen=True)
@@ -84,16 +87,20 @@ def flow_curve(readings: Readings, use: tuple[float, float] | None = None) -> Fl
 def _merged(all_rows: FlowCurve, inner: FlowCurve, within: NDArray[np.bool_], use: tuple[float, float]) -> FlowCurve:
     """Rows within as worked out on their own, the others as first seen."""
     columns = ("shear_rate", "shear_stress", "plain_rate")
-    merged = {name: getattr(all_rows, name).copy() for name in columns}
+    merged: dict[str, Any] = {name: getattr(all_rows, name).copy() for name in columns}
     for name in columns:
         merged[name][within] = getattr(inner, name)
+    before = np.array(all_rows.left_out, dtype=object)
+    before[within] = inner.left_out
+    merged["left_out"] = tuple(before)
     kept = replace(inner, resolution=all_rows.resolution, lines=all_rows.lines, **merged)
     return _leave_out(kept, within, use)
 
 
 def _leave_out(curve: FlowCurve, within: NDArray[np.bool_], use: tuple[float, float]) -> FlowCurve:
     reason = f"outside the shear rates to be used, {use[0]:g} .. {use[1]:g} 1/s"
-    return replace(curve, left_out=tuple("" if row else reason for row in within))
+    reasons = (before or ("" if row else reason) for before, row in zip(curve.left_out, within, strict=True))
+    return replace(curve, left_out=tuple(reasons))
 
 
 def _worked_out(readings: Readings) -> FlowCurve:
@@ -125,17 +132,21 @@ def _curve(
 
 def _of_tubes(readings: TubeReadings) -> FlowCurve:
     curve = tube_curve(readings)
-    rate = curve.corrected.rate
+    rate, telling = curve.rate, curve.telling
     flags = tube_flags(readings, rate, curve.stress)
-    cautions = (*flags, *hysteresis(rate, curve.stress, readings.ramps), *_beyond(curve.corrected.follows_law))
+    ramps = hysteresis(rate[telling], curve.stress[telling], readings.ramps[telling])
+    cautions = (*flags, *ramps, *_beyond(curve.corrected.follows_law))
     sources = (RABINOWITSCH, *[BAGLEY] * bool(curve.correction.end_length))
     sources += (MOONEY_SLIP,) * (curve.correction.slip_velocity is not None)
-    return _curve(readings, rate, curve.stress, readings.bulk_rate, tuple(_off_tubes(curve)), cautions, sources)
+    made = _curve(readings, rate, curve.stress, readings.bulk_rate, tuple(_off_tubes(curve)), cautions, sources)
+    return replace(made, left_out=tuple("" if tells else ALL_SLIP for tells in telling))
 
 
 def _off_tubes(curve: TubeCurve) -> list[str]:
     found = curve.correction
-    done = [_size("shear rate at the wall over 8V/D (Rabinowitsch-Mooney)", curve.corrected.rate / curve.bulk_rate)]
+    done = [
+        _size("shear rate at the wall over 8V/D (Rabinowitsch-Mooney)", (curve.rate / curve.bulk_rate)[curve.telling])
+    ]
     index, log_consistency = np.polyfit(np.log(curve.bulk_rate), np.log(curve.stress), 1)
     done.append(f"straight line of ln tau_w on ln 8V/D: n' = {index:.4f}, K' = {np.exp(log_consistency):.4g} Pa.s^n'")
     if found.end_length is not None:

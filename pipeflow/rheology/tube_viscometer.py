@@ -8,12 +8,14 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from itertools import product
 
 import numpy as np
+from numpy.typing import NDArray
 
 from pipeflow.arrays import Array
 from pipeflow.rheology.fitting import FINEST_RESOLUTION, aicc
-from pipeflow.rheology.forms import Problem
+from pipeflow.rheology.forms import Form, Problem
 from pipeflow.rheology.instruments import BASES, Corrected, Tube, rates_of_law, settle, wall_rates
 from pipeflow.rheology.least_squares import descend
 from pipeflow.rheology.readings import TubeReadings
@@ -32,7 +34,8 @@ MOONEY_SLIP = Source(
 )
 
 _CLEARLY = 2.0
-_LEAST_FLOW = 0.02
+_LEAST_FLOW = 1e-4
+_TELLING_FLOW = 0.05
 """Share of the flow that must be shear for a reading to tell a shear rate."""
 
 
@@ -59,10 +62,15 @@ class TubeCorrection:
 
 @dataclass(frozen=True)
 class TubeCurve:
-    """Wall stress [Pa], ``8V/D`` as read [1/s], the rates at the wall, and what was taken off."""
+    """Wall stress [Pa], ``8V/D`` as read [1/s], the rates at the wall [1/s], and what was taken off.
+
+    ``telling`` is false where the flow is slip almost alone; the rate is nan there.
+    """
 
     stress: Array
     bulk_rate: Array
+    rate: Array
+    telling: NDArray[np.bool_]
     corrected: Corrected
     correction: TubeCorrection
 
@@ -92,7 +100,10 @@ def tube_curve(readings: TubeReadings) -> TubeCurve:
     """Turn the runs of one or several tubes into wall stresses and shear rates."""
     trial, notes = _best_trial(readings)
     stress, sheared = trial.stress(readings), trial.sheared_rate(readings)
-    corrected = wall_rates(sheared, stress, Tube(), readings.resolution)
+    telling = sheared > _TELLING_FLOW * readings.bulk_rate
+    corrected = wall_rates(sheared[telling], stress[telling], Tube(), readings.resolution[telling])
+    rate = np.full(stress.shape, np.nan)
+    rate[telling] = corrected.rate
     slip = trial.slip_velocity(stress) if trial.slip > 0 else None
     correction = TubeCorrection(
         end_length=trial.end_length if _lengths_differ(readings) else None,
@@ -100,7 +111,7 @@ def tube_curve(readings: TubeReadings) -> TubeCurve:
         slip_exponent=trial.exponent if trial.slip > 0 else None,
         notes=tuple(notes),
     )
-    return TubeCurve(stress, readings.bulk_rate, corrected, correction)
+    return TubeCurve(stress, readings.bulk_rate, rate, telling, corrected, correction)
 
 
 def _lengths_differ(readings: TubeReadings) -> bool:
@@ -173,7 +184,9 @@ class _AllTubes:
         law = self.scales.law(theta[: self.scales.lower.size])
         share = trial.sheared_rate(self.readings) / self.readings.bulk_rate
         # below the least flow a trial still answers, ever worse, so that the search finds its way back
-        share = np.where(share > _LEAST_FLOW, share, _LEAST_FLOW * np.exp(share / _LEAST_FLOW - 1.0))
+        share = np.where(
+            share > _LEAST_FLOW, share, _LEAST_FLOW * np.exp(np.clip(share / _LEAST_FLOW - 1.0, -300.0, 0.0))
+        )
         rate = rates_of_law(law, share * self.readings.bulk_rate, Tube())
         return np.log(law.shear_stress(rate) / trial.stress(self.readings))
 
@@ -187,10 +200,13 @@ class _AllTubes:
 def _search(readings: TubeReadings, end: bool, slip: bool) -> tuple[_Trial, float]:
     """Least scatter over the law, end length and slip, from several starts; infinite where all flow would be slip."""
     best, lowest = _Trial(), np.inf
-    for start in _starts(readings, slip):
-        found, misfit = _descend(readings, end, slip, start)
+    nothing = 1.01 * _floored(np.zeros(readings.lines.shape), readings)
+    for start, form in product(_starts(readings, slip), BASES):
+        found, misfit = _descend(readings, end, slip, start, form)
         if misfit < lowest:
             best, lowest = found, misfit
+        if lowest <= nothing:
+            break
     return best, lowest
 
 
@@ -202,19 +218,15 @@ def _starts(readings: TubeReadings, slip: bool) -> list[_Trial]:
     return [_Trial(0.0, velocity, exponent), _Trial(0.0, 0.1 * typical, 1.0), _Trial(0.0, 0.02 * typical, 2.0)]
 
 
-def _descend(readings: TubeReadings, end: bool, slip: bool, start: _Trial) -> tuple[_Trial, float]:
-    best, lowest = start, np.inf
+def _descend(readings: TubeReadings, end: bool, slip: bool, start: _Trial, form: Form) -> tuple[_Trial, float]:
     sheared = np.maximum(start.sheared_rate(readings), 0.2 * readings.bulk_rate)
-    for form in BASES:
-        law = settle(form, sheared, start.stress(readings), Tube())
-        scales = Problem.of(form, law.rate, start.stress(readings))
-        tubes = _AllTubes(readings, scales, end, slip)
-        unknowns = descend(tubes, tubes.unknowns(law.theta, start), np.ones_like(sheared), 1e-9)
-        misfit = _floored(tubes.residuals(unknowns), readings)
-        share = tubes.trial(unknowns).sheared_rate(readings) / readings.bulk_rate
-        if misfit < lowest and share.min() > _LEAST_FLOW:
-            best, lowest = tubes.trial(unknowns), misfit
-    return best, lowest
+    law = settle(form, sheared, start.stress(readings), Tube())
+    tubes = _AllTubes(readings, Problem.of(form, law.rate, start.stress(readings)), end, slip)
+    unknowns = descend(tubes, tubes.unknowns(law.theta, start), np.ones_like(sheared), 1e-9)
+    trial = tubes.trial(unknowns)
+    telling = trial.sheared_rate(readings) > _TELLING_FLOW * readings.bulk_rate
+    enough = np.unique(readings.diameter[telling]).size == np.unique(readings.diameter).size
+    return trial, _floored(tubes.residuals(unknowns), readings) if enough else np.inf
 
 
 def _floored(residuals: Array, readings: TubeReadings) -> float:

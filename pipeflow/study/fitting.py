@@ -78,7 +78,7 @@ def fit(readings: Readings, file: str, options: FitOptions | None = None) -> Fit
     if kept.sum() < LEAST_READINGS or np.unique(curve.shear_rate[kept]).size < 2:
         raise InputError([Problem(file, None, None, "", _too_few(curve))])
     if np.polyfit(np.log(curve.shear_rate[kept]), np.log(curve.shear_stress[kept]), 1)[0] <= 0:
-        why = "the stress does not rise with the shear rate, as slip, settling or a change of the sample give; no law fits"
+        why = "the stress does not rise with the shear rate, as slip, settling or a changing sample give; no law fits"
         raise InputError([Problem(file, None, None, "", why)])
     found = fit_curve(
         curve.shear_rate[kept],
