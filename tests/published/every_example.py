@@ -1,9 +1,17 @@
 """Importing this registers every example."""
 
+import flow_curve_examples
 import laminar_examples
 import line_examples
 import measured_friction
 import transition_examples
 import turbulent_examples
 
-__all__ = ["laminar_examples", "line_examples", "measured_friction", "transition_examples", "turbulent_examples"]
+__all__ = [
+    "flow_curve_examples",
+    "laminar_examples",
+    "line_examples",
+    "measured_friction",
+    "transition_examples",
+    "turbulent_examples",
+]
