@@ -42,6 +42,7 @@ TOPICS = {
     "03_turbulent_non_newtonian": "Turbulent flow of non-Newtonian fluids",
     "04_transition": "End of laminar flow",
     "05_newtonian": "Newtonian liquids",
+    "06_flow_curve_fitting": "Fitting of flow curves",
     "07_fittings": "Fittings, changes of bore, velocity profiles",
     "07_fittings_more": "Draining of a tank, laminar fittings",
     "10_pipe_dimensions": "Pipe dimensions",
@@ -63,9 +64,9 @@ def _tally() -> Iterator[str]:
 
 
 def _published() -> Iterator[str]:
-    for topic, title in TOPICS.items():
+    for topic in dict.fromkeys(record.example.topic for record in records()):
         rows = [record for record in records() if record.example.topic == topic]
-        yield from ("", f"## {title}", "")
+        yield from ("", f"## {TOPICS[topic]}", "")
         yield _row(["id", "source", "obtained", "quantity", "printed", "ours", "%", "precisions", "verdict"])
         yield "|---" * 9 + "|"
         said = ""

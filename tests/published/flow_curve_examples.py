@@ -36,6 +36,8 @@ def abulencia_theodore_5_3() -> Quantities:
     rate = float(rates_of_law(Newtonian(1.0), np.array([2 * speed]), Cylinders(1 + gap / bob))[0])
     return {
         "tau": stress / (POUND_FORCE / FOOT**2),
-        "shear_rate": departs(rate, "printed for a plane gap; at the bob of a round one it is higher by 1.5 gap/radius"),
+        "shear_rate": departs(
+            rate, "printed for a plane gap; at the bob of a round one it is higher by 1.5 gap/radius"
+        ),
         "mu": stress / rate / (POUND / FOOT),
     }
