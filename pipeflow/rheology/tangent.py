@@ -5,7 +5,7 @@ A law that thins stays above its tangent nowhere, so that the tangent is the hig
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Any, Final
 
 import numpy as np
@@ -22,7 +22,7 @@ FAR: Final = 1.5
 class TangentPowerLaw(GeneralRheology):
     """``tau_y + K rate**n`` up to ``last_rate`` [1/s], a straight line of the same slope from there."""
 
-    yield_stress: FloatOrArray
+    yield_stress: FloatOrArray = field()
     consistency: FloatOrArray
     flow_index: FloatOrArray
     last_rate: FloatOrArray
@@ -41,7 +41,7 @@ class TangentPowerLaw(GeneralRheology):
 class TangentCasson(GeneralRheology):
     """Casson's law up to ``last_rate`` [1/s], a straight line of the same slope from there."""
 
-    yield_stress: FloatOrArray
+    yield_stress: FloatOrArray = field()
     casson_viscosity: FloatOrArray
     last_rate: FloatOrArray
 
