@@ -10,10 +10,10 @@ from typing import TYPE_CHECKING, Annotated
 import typer
 
 from pipeflow.errors import PipeflowError
-from pipeflow.fit_command import fit
 
 if TYPE_CHECKING:
     from pipeflow.study import Result
+    from pipeflow.study.fitting import FitResult
 
 FAILS, UNUSABLE, BUG = 1, 2, 3
 
@@ -83,14 +83,51 @@ def _print(result: Result, as_json: bool) -> None:
 
 
 @app.command()
+def fit(
+    curve: Annotated[Path, typer.Argument(metavar="CURVE.csv", help="Viscometer readings, docs/flow-curves.md.")],
+    as_json: Annotated[bool, typer.Option("--json", help="Print one JSON document, SI units.")] = False,
+    use: Annotated[str, typer.Option(metavar="RANGE", help="Shear rates to use, as '30 .. 300 1/s'.")] = "",
+    model: Annotated[str, typer.Option(metavar="NAME", help="Take this model, whatever the readings support.")] = "",
+    error: Annotated[str, typer.Option(metavar="KIND", help="Scatter: relative (default) or absolute.")] = "",
+    robust: Annotated[bool, typer.Option("--robust", help="Weigh outlying readings down.")] = False,
+) -> None:
+    """Fit the rheological models to viscometer readings and compare them.
+
+    Exit status: 0 a model is selected; 1 none can be; 2 the readings can't be used.
+    """
+    from pipeflow.case.viscometer import load_readings
+    from pipeflow.study.fitting import fit as fit_readings
+    from pipeflow.study.fitting import options_from
+
+    try:
+        options = options_from(use, model, error, robust)
+        result = fit_readings(load_readings(curve), str(curve), options)
+    except PipeflowError as refused:
+        typer.echo(str(refused), err=True)
+        raise typer.Exit(refused.exit_code) from None
+    _print_fit(str(curve), result, as_json)
+    raise typer.Exit(0 if result.selected else FAILS)
+
+
+def _print_fit(file: str, result: FitResult, as_json: bool) -> None:
+    if as_json:
+        import json
+
+        from pipeflow.report.fit_document import fit_document
+
+        typer.echo(json.dumps(fit_document(file, result), ensure_ascii=False, allow_nan=False))
+    else:
+        from pipeflow.report.fit_page import fit_page
+
+        typer.echo(fit_page(file, result), nl=False)
+
+
+@app.command()
 def methods() -> None:
     """List the methods a case may choose from: key, source, range, and how sure the transcription is."""
     from pipeflow.report.methods_page import methods_page
 
     typer.echo(methods_page())
-
-
-app.command()(fit)
 
 
 def main() -> None:

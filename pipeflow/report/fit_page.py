@@ -10,7 +10,7 @@ import numpy as np
 from pipeflow.arrays import Array
 from pipeflow.rheology.fitting import ModelFit
 from pipeflow.rheology.readings import Sample
-from pipeflow.study.fitting import FitResult
+from pipeflow.rheology.sheet import FitResult
 from pipeflow.units import format_value, significant
 
 WIDTH = 80
@@ -28,15 +28,15 @@ UNITS = {
 _MOST_POINTS = 60
 
 
-def fit_page(result: FitResult) -> str:
+def fit_page(file: str, result: FitResult) -> str:
     """Write the page of a fitted sheet."""
-    return "\n".join(_page(result)) + "\n"
+    return "\n".join(_page(file, result)) + "\n"
 
 
-def _page(result: FitResult) -> Iterator[str]:
+def _page(file: str, result: FitResult) -> Iterator[str]:
     sample = result.curve.sample
     yield fill(sample.name or "Flow curve", WIDTH)
-    yield result.file
+    yield file
     yield from _table(list(_about(sample)), right=())
     for note in sample.notes:
         if not note.startswith("the column "):

@@ -9,8 +9,8 @@ from typing import Any, Final
 
 from pipeflow.rheology.fitting import ModelFit
 from pipeflow.rheology.readings import Sample
+from pipeflow.rheology.sheet import FitResult
 from pipeflow.sources import Source
-from pipeflow.study.fitting import FitResult
 
 UNITS: Final = {
     "viscosity": "Pa_s",
@@ -32,11 +32,11 @@ _SAMPLE_UNITS: Final = {
 }
 
 
-def fit_document(result: FitResult) -> dict[str, Any]:
+def fit_document(file: str, result: FitResult) -> dict[str, Any]:
     """Lay a fitted sheet out as the document that ``pipeflow fit --json`` prints."""
     found = result.fit
     return {
-        "file": result.file,
+        "file": file,
         "sample": _sample(result.curve.sample),
         "models": [_model(fit) for fit in found.models],
         "selected": found.selected,
