@@ -112,9 +112,9 @@ def _gauss_legendre() -> tuple[Array, Array]:
 
 
 def hanks(wall: Wall, law: GeneralizedPowerLawTube, bore: Bore) -> Array:
-    """Mixing length in smooth pipe, damped from the critical state (Hanks & Dadia 1971, Hanks & Ricks 1975, Hanks 1978).
+    """Mixing length in smooth pipe, damped from the critical state (Hanks & Dadia 1971; Hanks & Ricks 1975).
 
-    Solves ``tau_y + K g^n + rho l² g² = tau_w xi`` over the section, ``xi = r/R``, and integrates ``V = R ∫ g xi² dxi``;
+    Solves ``tau_y + K g^n + rho l² g² = tau_w xi`` over the section, ``xi = r/R``, then ``V = R ∫ g xi² dxi``;
     ``l = 0.36 R (1-xi) {1 - exp[-a (1-xi)]}``, ``a = (R_h - R_h,c)/(2 sqrt(2) B)``,
     ``R_h² = 2 rho D² tau_w^(2/n-1)/K^(2/n)``.
     """
@@ -139,7 +139,7 @@ def hanks(wall: Wall, law: GeneralizedPowerLawTube, bore: Bore) -> Array:
 
 
 def _log_sublayer(wall: Wall, law: GeneralizedPowerLawTube, bore: Bore, damping: Array) -> Array:
-    """Logarithm of the share of the radius within which viscous stress rules, by the mixing length close to the wall."""
+    """Logarithm of the share of the radius where viscous stress rules, by the mixing length close to the wall."""
     log_length = np.log(0.18 * bore.diameter * damping)  # l = this times the depth squared
     viscous = law.log_consistency + (law.index - 2.0) * wall.log_rate
     return 0.25 * (viscous - np.log(bore.density) - 2.0 * log_length)
@@ -273,9 +273,12 @@ HANKS = TurbulentMethod(
     Source(
         key="hanks",
         title="Turbulent flow by a damped mixing length, smooth pipe",
-        citation="Hanks & Dadia, AIChE J. 17, 554 (1971); Hanks & Ricks, J. Hydronautics 9, 39 (1975); Hanks, AIChE J. 24 (1978)",
+        citation=(
+            "Hanks & Dadia, AIChE J. 17, 554 (1971); Hanks & Ricks, J. Hydronautics 9, 39 (1975); "
+            "Hanks, AIChE J. 24 (1978)"
+        ),
         confidence="medium",
-        note="its damping fit lowers the friction by 20 to 34 % at Hedstrom numbers of 1e3 to 1e4; roughness is not covered",
+        note="its damping fit reads 20 to 34 % low at Hedstrom numbers of 1e3 to 1e4; roughness is not covered",
     ),
     hanks,
     POWER_LAW_PAST_YIELD,

@@ -1,4 +1,4 @@
-"""Laminar tube flow of laws that have no closed form: the Rabinowitsch–Mooney integral by parts; and Ellis' own form."""
+"""Laminar tube flow of laws without a closed form, by the Rabinowitsch–Mooney integral by parts; and Ellis' own."""
 
 from __future__ import annotations
 
@@ -56,8 +56,9 @@ class ByPartsTube:
         return 2.0 * (WEIGHTS @ self._relative_stress(wall.log_rate, wall.stress))
 
     def flow_index(self, wall: Wall) -> Array:
-        """The local n' of Metzner & Reed."""
-        return 1.0 / wall.inverse_local_index
+        """Slope of the law past its yield stress, at the wall; without one the local n' of Metzner & Reed."""
+        past_yield = self.rheology.log_slope(np.exp(wall.log_rate))
+        return np.where(self.yield_stress > 0, past_yield, 1.0 / wall.inverse_local_index)
 
     def _relative_stress(self, log_rate: Array, stress: Array) -> Array:
         rates = NODES[:, None] * np.exp(log_rate)

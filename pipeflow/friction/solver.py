@@ -58,8 +58,8 @@ class PipeFlow:
         Wall stress that laminar flow would have at the same velocity, Pa.
     wall_shear_rate : Array
         Shear rate of the fluid at tau_w, 1/s.
-    local_flow_index : Array
-        n' of Metzner & Reed at the laminar wall stress.
+    local_flow_index, wall_flow_index : Array
+        n' of Metzner & Reed at the laminar wall stress, and at tau_w.
     reynolds_mr : Array
         ``8 rho V²/tau_w,laminar``.
     regime, status : array of int
@@ -73,6 +73,7 @@ class PipeFlow:
     laminar_wall_shear_stress: Array
     wall_shear_rate: Array
     local_flow_index: Array
+    wall_flow_index: Array
     reynolds_mr: Array
     regime: NDArray[np.int8]
     status: NDArray[np.int8]
@@ -262,6 +263,7 @@ def _answer(
         laminar_wall_shear_stress=np.where(rest, law.yield_stress, laminar.stress),
         wall_shear_rate=np.exp(wall.log_rate),
         local_flow_index=1.0 / laminar.inverse_local_index,
+        wall_flow_index=1.0 / wall.inverse_local_index,
         reynolds_mr=np.where(rest, 0.0, 8.0 * bore.density * velocity**2 / laminar.stress),
         regime=np.where((status == Status.CONVERGED) & ~lost, regime, Regime.NO_FLOW).astype(np.int8),
         status=np.where(lost, Status.NO_ROOT, status).astype(np.int8),

@@ -11,11 +11,13 @@ from pipeflow.case.model import Case
 from pipeflow.friction import PipeFlow, Regime, Status, solve_pipes
 from pipeflow.friction.methods import critical_criterion, turbulent_method
 from pipeflow.line.catalogue import MATERIALS
-from pipeflow.line.elements import Pipe
+from pipeflow.line.elements import Fluid, Pipe
 from pipeflow.line.fittings import DEFAULT_METHOD, ENDS, METHODS, fittings, notes
+from pipeflow.line.losses import EXPANSION
 from pipeflow.line.route import LineFlow
 from pipeflow.operability.transition import criteria_caution, flat_band_caution, transition_cautions
 from pipeflow.operability.validity import range_cautions, tested_rate_cautions
+from pipeflow.rheology import Casson, HerschelBulkley
 from pipeflow.rheology.models import GeneralizedPowerLaw
 from pipeflow.sources import Source
 from pipeflow.study.flows import distinct_flows, one_pipe, pipes_of
@@ -104,6 +106,10 @@ def _sources_with_ranges(case: Case, pipe: Pipe) -> Iterator[tuple[Source, tuple
     moving = (Regime.LAMINAR, Regime.TRANSITIONAL, Regime.TURBULENT)
     yield turbulent_method(case.fluid.rheology, case.methods.turbulent).source, (Regime.TURBULENT,)
     yield critical_criterion(case.fluid.rheology, case.methods.critical).source, moving
+    pipes = pipes_of(case)
+    after = pipes.index(pipe) + 1
+    if after < len(pipes) and pipes[after].diameter > pipe.diameter:
+        yield EXPANSION, moving
     preferred = case.methods.fittings or DEFAULT_METHOD
     for key in pipe.fittings:
         bounds = tuple(fittings()[key].ranges(preferred))
@@ -112,18 +118,26 @@ def _sources_with_ranges(case: Case, pipe: Pipe) -> Iterator[tuple[Source, tuple
 
 
 def _variables(case: Case, pipe: Pipe, flow: PipeFlow) -> dict[str, float]:
-    """The variables that ranges of methods are given in."""
+    """The variables that ranges of methods are given in; n' where the flow is, at the wall stress it has."""
     variables = {
         "Re_MR": float(flow.reynolds_mr),
-        "n'": float(flow.local_flow_index),
+        "n'": float(flow.wall_flow_index),
         "eps/D": float(pipe.roughness / pipe.diameter),
     }
-    law = case.fluid.rheology
-    if isinstance(law, GeneralizedPowerLaw) and law.yield_stress > 0:
-        full = law.as_herschel_bulkley()
-        strain = (full.yield_stress / full.consistency) ** (2.0 / full.flow_index)
-        variables["He"] = float(case.fluid.density * pipe.diameter**2 / full.yield_stress * strain)
-    return variables
+    number = hedstrom_number(case.fluid, pipe)
+    return variables if number is None else {**variables, "He": number}
+
+
+def hedstrom_number(fluid: Fluid, pipe: Pipe) -> float | None:
+    """``(rho D²/tau_y)(tau_y/K)^(2/n)``, with n = 1 for a Casson fluid; None for a law that has no such number."""
+    law = fluid.rheology
+    if isinstance(law, Casson):
+        law = HerschelBulkley(law.yield_stress, law.casson_viscosity, 1.0)
+    if not isinstance(law, GeneralizedPowerLaw) or not law.yield_stress:
+        return None
+    full = law.as_herschel_bulkley()
+    strain = (full.yield_stress / full.consistency) ** (2.0 / full.flow_index)
+    return float(fluid.density * pipe.diameter**2 / full.yield_stress * strain)
 
 
 def _flat_band(case: Case, pipe: Pipe, flow: PipeFlow) -> Iterator[str]:

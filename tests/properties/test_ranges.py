@@ -160,7 +160,6 @@ def test_minimum_and_maximum_flow_are_looked_at_too(key):
     assert told(source, bound, cautions(fast, Methods(turbulent=key), slowest=1e-5)[1])
 
 
-@pytest.mark.xfail(strict=True, reason="n' of a yield fluid is held to the range at the laminar wall stress")
 def test_index_of_a_yield_fluid_is_that_of_the_turbulent_wall_stress():
     """Dodge & Metzner's n' is taken at the turbulent wall stress, 0.81 here; that of laminar flow is 0.346."""
     source = TURBULENT["dodge-metzner"].source
@@ -169,7 +168,6 @@ def test_index_of_a_yield_fluid_is_that_of_the_turbulent_wall_stress():
     assert not told(source, bound, said)
 
 
-@pytest.mark.xfail(strict=True, reason="no Hedstrom number is worked out for a Casson fluid")
 def test_hedstrom_number_of_a_casson_fluid():
     """He = 4800 with the Casson viscosity, below the 1e5 from which the intersection holds."""
     source = CRITERIA["intersection"].source
@@ -177,7 +175,6 @@ def test_hedstrom_number_of_a_casson_fluid():
     assert told(source, source.ranges[0], said)
 
 
-@pytest.mark.xfail(strict=True, reason="the range of the loss of a sudden expansion is not looked at")
 def test_sudden_expansion():
     """At Re_MR 0.6 the momentum balance of an expansion, published from 100 on, leaves its range."""
     pipes_of_two_bores = tuple(Pipe(f"pipe {bore}", bore, 10.0) for bore in (0.1, 0.15))
