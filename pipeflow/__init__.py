@@ -1,6 +1,6 @@
 """Pressure drop, sizing and pump duty of pipelines for non-Newtonian slurries and food pastes.
 
-``load_case`` and ``solve`` are loaded on first use, so that ``from pipeflow.friction import ...`` brings in no reader of
+``load_case`` and ``solve`` are loaded on first use, so that ``from pipeflow.friction import ...`` brings in no reader
 case files.
 """
 

@@ -33,7 +33,7 @@ class Rheology(ABC):
         """Shear rate [1/s] at a shear stress [Pa]; zero up to the yield stress."""
 
     def apparent_viscosity(self, shear_rate: FloatOrArray) -> Array:
-        """Shear stress over shear rate [Pa.s] at a shear rate [1/s]; at zero rate the limit from above, which may be inf."""
+        """Shear stress over shear rate [Pa.s] at a shear rate [1/s]; at zero rate its limit, inf for some."""
         rate = not_negative(shear_rate)
         with np.errstate(divide="ignore", invalid="ignore"):
             quotient = self.shear_stress(rate) / rate
@@ -138,7 +138,7 @@ class HerschelBulkley(GeneralizedPowerLaw):
 
 @dataclass(frozen=True)
 class Casson(Rheology):
-    """``sqrt(tau) = sqrt(tau_y) + sqrt(mu_c rate)`` (Casson 1959); parameters in Pa and Pa.s, not their square roots."""
+    """``sqrt(tau) = sqrt(tau_y) + sqrt(mu_c rate)`` (Casson 1959); parameters in Pa and Pa.s, not their roots."""
 
     yield_stress: FloatOrArray
     casson_viscosity: FloatOrArray
