@@ -79,6 +79,8 @@ _FACTORS: Final[dict[str, dict[str, float]]] = {
     "shear rate": {"1/s": 1.0, "s^-1": 1.0, "s-1": 1.0, "/s": 1.0},
     "rotational speed": {"rpm": _TURN / 60, "rad/s": 1.0, "r/min": _TURN / 60, "rev/min": _TURN / 60},
     "temperature": {"K": 1.0},
+    "temperature difference": {"K": 1.0},
+    "specific heat": {"kJ/(kg.K)": 1e3, "J/(kg.K)": 1.0},
     "time": {"s": 1.0, "min": 60.0, "h": _HOUR, "d": _DAY},
     "power": {"kW": 1e3, "W": 1.0, "MW": 1e6},
     "torque": {
@@ -109,6 +111,8 @@ _DISPLAY: Final = {
     "shear rate": "1/s",
     "rotational speed": "rpm",
     "temperature": "°C",
+    "temperature difference": "K",
+    "specific heat": "kJ/(kg.K)",
     "time": "s",
     "power": "kW",
     "torque": "mN.m",

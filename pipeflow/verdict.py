@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 Status = Literal["ok", "caution", "fail", "not checked"]
+Sense = Literal["at most", "at least"]
 
 
 @dataclass(frozen=True)
@@ -13,7 +14,9 @@ class Check:
     """One limit held against one computed value.
 
     ``value`` and ``limit`` are in ``unit`` (None where the check could not be made); ``basis`` says in words what was
-    compared, at which flow, and on whose authority. ``value_upper`` is the figure a limit is judged on where it differs.
+    compared, at which flow, and on whose authority. ``value_upper`` is the figure a limit is judged on where it
+    differs. ``sense`` tells which side of the limit is allowed, ``source`` the key of the published method behind the
+    figure, and ``needs`` the case keys without which the check could not be made.
     """
 
     name: str
@@ -23,3 +26,6 @@ class Check:
     unit: str
     basis: str
     value_upper: float | None = None
+    sense: Sense = "at most"
+    source: str = ""
+    needs: tuple[str, ...] = ()

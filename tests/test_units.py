@@ -54,6 +54,8 @@ BASE_UNITS = {
     "shear rate": "1/s",
     "rotational speed": "rad/s",
     "temperature": "K",
+    "temperature difference": "K",
+    "specific heat": "J/(kg*K)",
     "time": "s",
     "power": "W",
     "torque": "N*m",

@@ -8,10 +8,25 @@ from typing import Any
 
 from pipeflow.case.fields import FlowValue
 from pipeflow.case.fluid_part import FluidPart
-from pipeflow.case.model import Case, FlowRange, Limits, Liquid, Methods, Pump, Site, Solids
+from pipeflow.case.limits_part import LimitsPart
+from pipeflow.case.model import (
+    Case,
+    Cost,
+    FlowRange,
+    Limits,
+    Liquid,
+    Methods,
+    PipeWall,
+    Pump,
+    Restart,
+    Site,
+    Sizing,
+    Solids,
+)
 from pipeflow.case.part import ASSUMED, InputPart
 from pipeflow.case.route_part import EquipmentPart, PipePart
-from pipeflow.case.schema import CasePart, FlowPart, LimitsPart, VesselPart
+from pipeflow.case.schema import CasePart, FlowPart, VesselPart
+from pipeflow.case.sizing_part import CostPart, SizingPart
 from pipeflow.line.catalogue import INCH, MATERIALS
 from pipeflow.line.elements import Element, Equipment, Fluid, Pipe, Vessel
 from pipeflow.rheology import mixture
@@ -33,6 +48,9 @@ def build_case(part: CasePart, file: str) -> Case:
         destination=_vessel(part.destination),
         route=tuple(_element(element, density) for element in part.route),
         limits=_limits(part.limits),
+        restart=Restart(**_inputs(part.restart)) if part.restart else Restart(),
+        pipe_wall=PipeWall(**_inputs(part.pipe_wall)) if part.pipe_wall else None,
+        sizing=_sizing(part.sizing) if part.sizing else Sizing(),
         methods=Methods(**part.methods.model_dump()),
         sizes={pipe.pipe: pipe.size.name for pipe in pipes if pipe.size},
         default_roughness={pipe.pipe: _material(pipe) for pipe in pipes if pipe.roughness is None},
@@ -42,6 +60,8 @@ def build_case(part: CasePart, file: str) -> Case:
         liquid=_liquid(part.fluid, solids),
         site=Site(**_inputs(part.site)) if part.site else None,
         temperature=part.fluid.temperature,
+        specific_heat=part.fluid.specific_heat,
+        hold_times={pipe.pipe: pipe.hold_time for pipe in pipes if pipe.hold_time},
         density_is_mixed=part.fluid.density is None,
         assumed=tuple(path for path, inputs in _inputs_by_path(part) if inputs.status == ASSUMED),
     )
@@ -63,6 +83,9 @@ def _inputs_by_path(part: CasePart) -> Iterator[tuple[str, InputPart]]:
         "site": part.site,
         "source": part.source,
         "destination": part.destination,
+        "restart": part.restart,
+        "pipe_wall": part.pipe_wall,
+        "sizing.cost": part.sizing and part.sizing.cost,
         **{f"route[{element.name}]": element for element in part.route},
     }
     yield from ((path, inputs) for path, inputs in named.items() if isinstance(inputs, InputPart))
@@ -126,4 +149,21 @@ def _material(part: PipePart) -> str:
 
 
 def _limits(part: LimitsPart) -> Limits:
-    return Limits(part.head_loss, part.pressure_loss, part.velocity.minimum, part.velocity.maximum)
+    beside = part.model_dump(exclude={"velocity"})
+    return Limits(velocity_minimum=part.velocity.minimum, velocity_maximum=part.velocity.maximum, **beside)
+
+
+def _sizing(part: SizingPart) -> Sizing:
+    return Sizing(
+        series=part.series,
+        smallest=part.smallest.name if part.smallest else None,
+        largest=part.largest.name if part.largest else None,
+        bores=(part.bores.minimum, part.bores.maximum) if part.bores else None,
+        pipes=tuple(part.pipes or ()),
+        cost=_cost(part.cost) if part.cost else None,
+    )
+
+
+def _cost(part: CostPart) -> Cost:
+    prices = {price.size.name: price.per_metre for price in part.prices}
+    return Cost(prices=prices, **part.model_dump(exclude={"status", "prices"}))

@@ -12,6 +12,7 @@ from pipeflow.case.fields import (
     Density,
     Fraction,
     Length,
+    SpecificHeat,
     Temperature,
     Viscosity,
     at_odds,
@@ -92,6 +93,7 @@ class FluidPart(InputPart):
     liquid: LiquidPart | None = None
     density: Annotated[Density | None, Field(validate_default=True)] = None
     temperature: Temperature | None = None
+    specific_heat: SpecificHeat | None = None
     rheology: RheologyPart
 
     @check("density")

@@ -192,6 +192,8 @@ class Writer:
             r"^pumps\[.+\]$": [{"$ref": "#/$defs/pump"}],
         }
         for place, part in PARTS_AT.items():
+            if place == ("sizing", "cost", "prices"):
+                continue
             below = "properties" if part is CasePart else f"$defs/{_name(part)}/properties"
             for key in part.model_fields:
                 path, is_pattern = _path((*place, key))

@@ -25,6 +25,68 @@ class Limits:
     pressure_loss: float | None = None
     velocity_minimum: float | None = None
     velocity_maximum: float | None = None
+    wall_shear_rate: float | None = None
+    wall_shear_stress: float | None = None
+    temperature_rise: float | None = None
+    restart_pressure: float | None = None
+
+
+@dataclass(frozen=True)
+class Restart:
+    """The line after a stop: static yield stress in Pa, factor on it, element before the pump; None if not given."""
+
+    static_yield_stress: float | None = None
+    factor: float | None = None
+    pump_after: str | None = None
+
+
+@dataclass(frozen=True)
+class PipeWall:
+    """What holds the pressure, SI; None where the case does not say (``pipeflow.case.limits_part``)."""
+
+    code: str | None = None
+    allowable_stress: float | None = None
+    yield_strength: float | None = None
+    design_factor: float | None = None
+    joint_factor: float | None = None
+    weld_factor: float | None = None
+    coefficient_y: float | None = None
+    mill_tolerance: float = 0.0
+    corrosion_allowance: float = 0.0
+    wear_allowance: float = 0.0
+    pressure_rating: float | None = None
+    temperature_derating: float | None = None
+    shut_in_pressure: float | None = None
+    closure_time: float | None = None
+    bulk_modulus: float | None = None
+    elastic_modulus: float | None = None
+
+
+@dataclass(frozen=True)
+class Cost:
+    """What pipe and energy cost: prices a metre by size, that of 100 mm bore and its power of the bore, of a kWh."""
+
+    prices: dict[str, float]
+    price_at_100_mm: float | None
+    price_exponent: float
+    energy_price_per_kwh: float
+    hours_per_year: float
+    interest_rate: float
+    years: float
+    pump_efficiency: float
+    maintenance: float
+
+
+@dataclass(frozen=True)
+class Sizing:
+    """Which pipes vary over which sizes: a series and its ends by name, or bores in m between which one is free."""
+
+    series: str | None = None
+    smallest: str | None = None
+    largest: str | None = None
+    bores: tuple[float, float] | None = None
+    pipes: tuple[str, ...] = ()
+    cost: Cost | None = None
 
 
 @dataclass(frozen=True)
@@ -34,6 +96,7 @@ class Methods:
     turbulent: str | None = None
     critical: str | None = None
     fittings: str | None = None
+    deposition: str | None = None
 
 
 @dataclass(frozen=True)
@@ -98,6 +161,10 @@ class Case:
         Lowest and highest shear rate over which the rheology was measured, 1/s.
     temperature : float, optional
         Temperature of the fluid, K.
+    specific_heat : float, optional
+        Of the fluid, J/(kg K).
+    hold_times : dict of str to float
+        Least residence time of the fastest particle, s, by the name of the pipe that is a hold tube.
     density_is_mixed : bool
         The density of the fluid is worked out from solids and liquid.
     assumed : tuple of str
@@ -116,6 +183,9 @@ class Case:
     destination: Vessel | None
     route: tuple[Element, ...]
     limits: Limits = Limits()
+    restart: Restart = Restart()
+    pipe_wall: PipeWall | None = None
+    sizing: Sizing = Sizing()
     methods: Methods = Methods()
     sizes: dict[str, str] = field(default_factory=dict)
     default_roughness: dict[str, str] = field(default_factory=dict)
@@ -125,6 +195,8 @@ class Case:
     liquid: Liquid | None = None
     site: Site | None = None
     temperature: float | None = None
+    specific_heat: float | None = None
+    hold_times: dict[str, float] = field(default_factory=dict)
     density_is_mixed: bool = False
     assumed: tuple[str, ...] = ()
     scenarios: dict[str, Case] = field(default_factory=dict)

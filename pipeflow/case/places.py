@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import Final
 
 from pipeflow.case.fluid_part import FluidPart, LiquidPart, SolidsPart
+from pipeflow.case.limits_part import LimitsPart, PipeWallPart, RestartPart, VelocityPart
 from pipeflow.case.part import Part
 from pipeflow.case.rheology_part import RHEOLOGY_PARTS
 from pipeflow.case.route_part import EquipmentPart, PipePart
@@ -13,18 +14,18 @@ from pipeflow.case.schema import (
     DestinationPart,
     DrySolidsPart,
     FlowPart,
-    LimitsPart,
     MethodsPart,
     PumpPart,
     SitePart,
-    VelocityPart,
     VesselPart,
 )
+from pipeflow.case.sizing_part import BoresPart, CostPart, PricePart, SizingPart
 
 PARTS_AT: Final[dict[tuple[str, ...], type[Part]]] = {
     (): CasePart,
     ("fluid",): FluidPart,
     **{("fluid", "rheology", f"<{model}>"): part for model, part in RHEOLOGY_PARTS.items()},
+    ("fluid", "rheology", "<flow_curve>", "use"): UsePart,
     ("fluid", "solids"): SolidsPart,
     ("fluid", "liquid"): LiquidPart,
     ("flow", "<map>"): FlowPart,
@@ -36,6 +37,12 @@ PARTS_AT: Final[dict[tuple[str, ...], type[Part]]] = {
     ("route", "<equipment>"): EquipmentPart,
     ("limits",): LimitsPart,
     ("limits", "velocity"): VelocityPart,
+    ("restart",): RestartPart,
+    ("pipe_wall",): PipeWallPart,
+    ("sizing",): SizingPart,
+    ("sizing", "bores"): BoresPart,
+    ("sizing", "cost"): CostPart,
+    ("sizing", "cost", "prices"): PricePart,
     ("methods",): MethodsPart,
     ("pumps",): PumpPart,
 }
@@ -47,6 +54,17 @@ REASONS: Final[dict[str, str]] = {
     "mass_fraction": "a fraction, not a percentage",
     "volume_fraction": "a fraction, not a percentage",
     "fraction_below_45um": "a fraction, not a percentage",
+    "interest_rate": "a fraction, not a percentage",
+    "pump_efficiency": "a fraction, not a percentage",
+    "maintenance": "a fraction of the price a year",
+    "joint_factor": "a factor, not a percentage",
+    "weld_factor": "a factor, not a percentage",
+    "design_factor": "a factor, not a percentage",
+    "temperature_derating": "a factor, not a percentage",
+    "mill_tolerance": "a fraction of the wall",
+    "coefficient_y": "it is 0.4 for ductile metals",
+    "hours_per_year": "a year has no more",
+    "restart.factor": "1.2 to 1.5 are usual",
 }
 """Why a number has its upper bound, by key or by the place of one."""
 
@@ -79,6 +97,15 @@ EXAMPLES: Final[dict[str, str]] = {
     "name": "candidate A",
     "kind": "centrifugal",
     "curve": "candidate-a.csv",
+    "sizing.bores.minimum": "50 mm",
+    "sizing.bores.maximum": "400 mm",
+    "sizing.cost.prices.size": "NPS 6 Sch 40",
+    "per_metre": "95",
+    "energy_price_per_kwh": "0.14",
+    "hours_per_year": "7600",
+    "interest_rate": "0.08",
+    "years": "15",
+    "pump_efficiency": "0.62",
 }
 """A value for each required key, shown where it is missing; by key or by the place of one."""
 

@@ -18,6 +18,7 @@ from pipeflow.case.fields import (
     Rise,
     Roughness,
     Size,
+    Time,
     at_odds,
     choice,
     fitting_keys,
@@ -61,6 +62,7 @@ class PipePart(InputPart):
     roughness: Annotated[Roughness | None, Field(validate_default=True)] = None
     fittings: dict[Annotated[str, AfterValidator(_fitting)], Count] = Field(default_factory=dict)
     loss_coefficient: Annotated[Number, Field(ge=0, le=1e6)] = 0.0
+    hold_time: Time | None = None
 
     @check("diameter")
     @classmethod

@@ -11,15 +11,12 @@ from pipeflow.case.fields import (
     AbsolutePressure,
     Flow,
     FlowValue,
-    Length,
     MassFlow,
     Name,
     Pressure,
-    PressureLoss,
     Rise,
     Speed,
     Text,
-    Velocity,
     at_odds,
     choice,
     lacks,
@@ -27,16 +24,21 @@ from pipeflow.case.fields import (
     said,
 )
 from pipeflow.case.fluid_part import FluidPart
+from pipeflow.case.limits_part import LimitsPart, PipeWallPart, RestartPart
 from pipeflow.case.part import FAILED, InputPart, Part
-from pipeflow.case.route_part import ElementPart, NewName
+from pipeflow.case.route_part import ElementPart, EquipmentPart, NewName
+from pipeflow.case.sizing_part import SizingPart
 from pipeflow.friction.criteria import CRITERIA
 from pipeflow.friction.methods import TURBULENT
 from pipeflow.line.fittings import METHODS as FITTING_METHODS
+from pipeflow.units import echo
 
+DEPOSITION: Final = ("durand", "wasp", "oroskar-turian", "thomas-sublayer")
 METHOD_KEYS: Final[dict[str, tuple[str, ...]]] = {
     "turbulent": tuple(TURBULENT),
     "critical": tuple(CRITERIA),
     "fittings": tuple(FITTING_METHODS),
+    "deposition": DEPOSITION,
 }
 """The methods a case may ask for, by the key it asks with."""
 
@@ -173,35 +175,13 @@ class SitePart(InputPart):
         return value
 
 
-class VelocityPart(Part):
-    """Bulk velocities the line must keep between."""
-
-    minimum: Velocity | None = None
-    maximum: Velocity | None = None
-
-    @check("maximum")
-    @classmethod
-    def _above_the_minimum(cls, value: float | None, info: ValidationInfo) -> float | None:
-        minimum = info.data.get("minimum")
-        if value is not None and minimum is not None and value <= minimum:
-            raise at_odds("must be more than 'minimum'")
-        return value
-
-
-class LimitsPart(Part):
-    """What the line must keep to."""
-
-    head_loss: Length | None = None
-    pressure_loss: Annotated[PressureLoss, Field(gt=0)] | None = None
-    velocity: VelocityPart = VelocityPart()
-
-
 class MethodsPart(Part):
     """Methods asked for by key."""
 
     turbulent: Annotated[str, choice("method", lambda: METHOD_KEYS["turbulent"])] | None = None
     critical: Annotated[str, choice("method", lambda: METHOD_KEYS["critical"])] | None = None
     fittings: Annotated[str, choice("method", lambda: METHOD_KEYS["fittings"])] | None = None
+    deposition: Annotated[str, choice("method", lambda: METHOD_KEYS["deposition"])] | None = None
 
     @check("turbulent", "critical")
     @classmethod
@@ -250,6 +230,9 @@ class CasePart(Part):
     destination: DestinationPart | None = None
     route: Annotated[list[ElementPart], Field(min_length=1, max_length=MAX_ELEMENTS)]
     limits: LimitsPart = LimitsPart()
+    restart: RestartPart | None = None
+    pipe_wall: PipeWallPart | None = None
+    sizing: SizingPart | None = None
     methods: MethodsPart = MethodsPart()
     pumps: Annotated[list[PumpPart], Field(max_length=MAX_PUMPS)] = Field(default_factory=list)
     scenarios: Any = None
@@ -259,4 +242,22 @@ class CasePart(Part):
     def _known_to_what_follows(cls, value: FluidPart, info: ValidationInfo) -> FluidPart:
         if info.context is not None:
             info.context["fluid"] = value
+        return value
+
+    @check("restart")
+    @classmethod
+    def _pump_on_the_route(cls, value: RestartPart | None, info: ValidationInfo) -> RestartPart | None:
+        names = [element.name for element in info.data.get("route", ())]
+        if value is not None and value.pump_after is not None and names and value.pump_after not in names:
+            raise at_odds(f"no element of the route is named {echo(value.pump_after)}", "pump_after")
+        return value
+
+    @check("sizing")
+    @classmethod
+    def _pipes_of_the_route(cls, value: SizingPart | None, info: ValidationInfo) -> SizingPart | None:
+        elements = info.data.get("route", ())
+        names = [element.name for element in elements if not isinstance(element, EquipmentPart)]
+        unknown = [name for name in (value and value.pipes) or () if name not in names]
+        if unknown and elements:
+            raise at_odds(f"no pipe of the route is named {echo(unknown[0])}", "pipes")
         return value

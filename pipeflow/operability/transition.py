@@ -8,6 +8,9 @@ import numpy as np
 
 from pipeflow.arrays import Array
 from pipeflow.friction import PipeFlow, Regime
+from pipeflow.operability.limits import at_least
+from pipeflow.operability.state import LineState
+from pipeflow.verdict import Check
 
 MARGIN = 0.2
 """Share of the velocity at an edge of the transition within which a pipe is near it (common practice)."""
@@ -56,3 +59,25 @@ def flat_band_caution(velocities: Array, stresses: Array) -> Iterator[str]:
     slope = np.log(stresses[1] / stresses[0]) / np.log(velocities[1] / velocities[0])
     if slope <= FLAT_SLOPE:
         yield "its transition band is nearly flat: a small error in head is a large one in flow"
+
+
+def margins(velocity: Array, pipes: PipeFlow) -> Array:
+    """Velocity at the end of laminar flow over the velocity, or that over the start of turbulent flow; < 1 between."""
+    return np.fmax(pipes.critical_velocity / velocity, velocity / pipes.turbulent_velocity)
+
+
+def margin_check(state: LineState) -> Check | None:
+    """Hold the minimum flow away from the transition; closer than the margin is a caution."""
+    with np.errstate(divide="ignore", invalid="ignore"):
+        each = margins(state.line.velocity, state.line.pipes)[state.minimum]
+    if np.all(np.isnan(each)):
+        return None
+    worst = int(np.nanargmin(each))
+    regime = Regime(int(state.regimes(state.minimum)[worst])).name.lower()
+    pipe, velocity = state.line.pipes, float(state.line.velocity[state.minimum, worst])
+    basis = (
+        f"{state.named(worst, 'minimum')}, {regime} at {velocity:.3g} m/s; laminar to "
+        f"{pipe.critical_velocity[state.minimum, worst]:.3g} m/s, turbulent from "
+        f"{pipe.turbulent_velocity[state.minimum, worst]:.3g} m/s; a factor of 1.2 from either is common practice"
+    )
+    return at_least("transition_margin", float(each[worst]), 1.0 + MARGIN, "", basis, below="caution")

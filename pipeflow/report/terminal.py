@@ -154,7 +154,7 @@ class _Page:
             self.text("The case states no limit, so none was checked.")
         for check in result.checks:
             said = f"{check.name.replace('_', ' ')} {_against(check)}; {check.basis}"
-            mark = f"{MARK[check.status]:<8}"
+            mark = f"{MARK[check.status]:<7} "
             self.written.append((mark, STYLE[check.status]))
             self.line(paragraph(said, self.width, mark)[len(mark) :])
 
@@ -194,7 +194,7 @@ def _side_by_side(result: Result) -> Iterator[tuple[str, ...]]:
         regimes = dict.fromkeys(element.regime for element in one.elements if element.regime)
         statuses = {check.status for check in one.checks}
         worst = next(
-            (MARK[status] for status in ("fail", "caution", "not checked", "ok") if status in statuses), "none"
+            (MARK[status] for status in ("fail", "caution", "ok", "not checked") if status in statuses), "none"
         )
         yield (
             name,
@@ -209,12 +209,19 @@ def _side_by_side(result: Result) -> Iterator[tuple[str, ...]]:
 
 def _against(check: Check) -> str:
     unit = "kPa" if check.unit == "Pa" else check.unit
-    if check.value is None or check.limit is None:
+    if check.value is None:
         return "no figure"
-    value, limit = (format_value(figure, unit) for figure in (check.value, check.limit))
-    kind = "at least" if check.name.endswith("_minimum") else "at most"
-    upper = f" (upper {format_value(check.value_upper, unit)})" if check.value_upper is not None else ""
-    return f"{value}{upper}, {kind} {limit}"
+    if check.limit is None:
+        return _figure(check.value, unit)
+    value, limit = (_figure(figure, unit) for figure in (check.value, check.limit))
+    upper = f" (upper {_figure(check.value_upper, unit)})" if check.value_upper is not None else ""
+    return f"{value}{upper}, {check.sense} {limit}"
+
+
+def _figure(value: float, unit: str) -> str:
+    if unit == "Pa/m":
+        return f"{significant(value / 1e3)} kPa/m"
+    return format_value(value, unit) if unit else significant(value)
 
 
 def _basis(case: Case) -> Iterator[tuple[str, str]]:

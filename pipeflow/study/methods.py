@@ -13,7 +13,27 @@ from pipeflow.line.fittings import METHODS as FITTINGS
 from pipeflow.line.kinetics import KINETIC_FACTORS
 from pipeflow.line.losses import CONTRACTION, EXPANSION
 from pipeflow.line.site import STANDARD_ATMOSPHERE
+from pipeflow.operability.deposition import FORMULAS
+from pipeflow.operability.entrance import LANGHAAR, POOLE_RIDLEY, TURBULENT_ENTRANCE
+from pipeflow.operability.pipe_wall import B31_3, B31_4, JOUKOWSKY, RATED
+from pipeflow.operability.product import HEATING
+from pipeflow.operability.residence import FASTEST_PARTICLE
+from pipeflow.operability.restart import RESTART
+from pipeflow.operability.settling import (
+    LAMINAR_TRANSPORT,
+    RICHARDSON_ZAKI,
+    SCHILLER_NAUMANN,
+    STATIC_SUSPENSION,
+    STEINOUR,
+    STOKES,
+)
 from pipeflow.sources import Source
+
+SLURRIES = "turbulent flow of settling solids in a Newtonian liquid"
+OPERABILITY = (
+    LAMINAR_TRANSPORT, STATIC_SUSPENSION, STOKES, SCHILLER_NAUMANN, RICHARDSON_ZAKI, STEINOUR, LANGHAAR, POOLE_RIDLEY,
+    TURBULENT_ENTRANCE, HEATING, RESTART, B31_3, B31_4, RATED, JOUKOWSKY, FASTEST_PARTICLE,
+)  # fmt: skip
 
 
 @dataclass(frozen=True)
@@ -53,6 +73,10 @@ def method_sections() -> tuple[Section, ...]:
         Section("Fittings", "methods.fittings", tuple(Choice(source) for source in FITTINGS.values())),
         Section("Changes of bore and exits", "", tuple(Choice(s) for s in (EXPANSION, CONTRACTION, KINETIC_FACTORS))),
         Section("Site", "", (Choice(STANDARD_ATMOSPHERE),)),
+        Section(
+            "Deposition of solids", "methods.deposition", tuple(Choice(f.source, SLURRIES) for f in FORMULAS.values())
+        ),
+        Section("Other checks", "", tuple(Choice(source) for source in OPERABILITY)),
     )
 
 

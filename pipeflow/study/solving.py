@@ -10,7 +10,7 @@ import numpy as np
 
 from pipeflow.arrays import Array
 from pipeflow.case.model import Case
-from pipeflow.friction import Regime, Status
+from pipeflow.friction import Regime
 from pipeflow.friction.laminar import BUCKINGHAM_REINER, HAGEN_POISEUILLE, METZNER_REED, RABINOWITSCH_MOONEY
 from pipeflow.friction.methods import critical_criterion, turbulent_method
 from pipeflow.friction.solver import critical_velocities
@@ -21,14 +21,13 @@ from pipeflow.line.fittings import DEFAULT_METHOD, EXIT, METHODS, fittings
 from pipeflow.line.kinetics import KINETIC_FACTORS
 from pipeflow.line.losses import CONTRACTION, EXPANSION
 from pipeflow.line.route import LineFlow
-from pipeflow.operability.limits import at_least, at_most
 from pipeflow.rheology import Rheology
 from pipeflow.sources import Source
 from pipeflow.study.cautions import cautions
-from pipeflow.study.flows import DESIGN, MAXIMUM, MINIMUM, one_pipe, pipes_of
+from pipeflow.study.checks import checks
+from pipeflow.study.flows import DESIGN, one_pipe, pipes_of
 from pipeflow.study.profile import profile_of
 from pipeflow.study.result import ElementResult, MethodSpread, MethodUse, Result, Totals
-from pipeflow.verdict import Check
 
 
 def solve(case: Case) -> Result:
@@ -63,7 +62,7 @@ def solve(case: Case) -> Result:
         totals=_totals(line),
         spread=_spread(line, elements),
         profile=profile,
-        checks=tuple(_checks(case, line)),
+        checks=tuple(checks(case, line)),
         cautions=tuple(cautions(case, line, elements, profile)),
         methods=tuple(_methods(case, elements)),
         scenarios={name: solve(scenario) for name, scenario in case.scenarios.items()},
@@ -151,32 +150,6 @@ def _spread(line: LineFlow, elements: tuple[ElementResult, ...]) -> MethodSpread
         return MethodSpread({}, {})
     found = {key: float(loss[DESIGN]) for key, loss in line.head_loss_by_method.items() if np.isfinite(loss[DESIGN])}
     return MethodSpread(found, line.left_out)
-
-
-def _checks(case: Case, line: LineFlow) -> Iterator[Check]:
-    limits = case.limits
-    if np.any(line.pipes.status == Status.NO_ROOT):
-        yield Check("solution", "fail", None, None, "", "no wall shear stress was found for some pipe and flow")
-    for name, unit, limit, central, upper in (
-        ("head_loss", "m", limits.head_loss, line.head_loss, line.head_loss_upper),
-        ("pressure_loss", "Pa", limits.pressure_loss, line.pressure_loss, line.pressure_loss_upper),
-    ):
-        if limit is not None:
-            yield at_most(name, float(central[MAXIMUM]), float(upper[MAXIMUM]), limit, unit, "at maximum flow")
-    if line.velocity.shape[-1]:
-        yield from _velocity_checks(case, line.velocity)
-
-
-def _velocity_checks(case: Case, velocity: Array) -> Iterator[Check]:
-    names, limits = [pipe.name for pipe in pipes_of(case)], case.limits
-    if limits.velocity_minimum is not None:
-        slowest = int(velocity[MINIMUM].argmin())
-        basis = f"at minimum flow, in {names[slowest]}"
-        yield at_least("velocity_minimum", float(velocity[MINIMUM, slowest]), limits.velocity_minimum, "m/s", basis)
-    if limits.velocity_maximum is not None:
-        fastest = int(velocity[MAXIMUM].argmax())
-        value, basis = float(velocity[MAXIMUM, fastest]), f"at maximum flow, in {names[fastest]}"
-        yield at_most("velocity_maximum", value, value, limits.velocity_maximum, "m/s", basis)
 
 
 def _methods(case: Case, elements: tuple[ElementResult, ...]) -> Iterator[MethodUse]:
