@@ -25,7 +25,6 @@ PARTS_AT: Final[dict[tuple[str, ...], type[Part]]] = {
     (): CasePart,
     ("fluid",): FluidPart,
     **{("fluid", "rheology", f"<{model}>"): part for model, part in RHEOLOGY_PARTS.items()},
-    ("fluid", "rheology", "<flow_curve>", "use"): UsePart,
     ("fluid", "solids"): SolidsPart,
     ("fluid", "liquid"): LiquidPart,
     ("flow", "<map>"): FlowPart,
