@@ -46,7 +46,7 @@ def _common(
 
 @app.command()
 def solve(
-    cases: Annotated[list[Path], typer.Argument(metavar="CASE...", help="Case files (YAML), docs/case-file.md.")],
+    cases: Annotated[list[str], typer.Argument(metavar="CASE...", help="Case files (YAML), docs/case-file.md.")],
     as_json: Annotated[bool, typer.Option("--json", help="Print one JSON document a line, SI units.")] = False,
 ) -> None:
     """Pressure drop, head, regime, checks and cautions of each case.
@@ -56,7 +56,7 @@ def solve(
     raise typer.Exit(max(_solve_one(case, as_json) for case in cases))
 
 
-def _solve_one(path: Path, as_json: bool) -> int:
+def _solve_one(path: str, as_json: bool) -> int:
     from pipeflow.case.loading import load_case
     from pipeflow.study import solve as solve_case
 

@@ -16,7 +16,7 @@ import pipeflow
 PACKAGE = Path(pipeflow.__file__).parent
 MODULES = sorted(path for path in PACKAGE.rglob("*.py"))
 
-GROUND = ("errors", "constants", "sources", "verdict", "arrays", "rootfind")
+GROUND = ("errors", "constants", "sources", "verdict", "arrays", "rootfind", "quadrature")
 INPUTS = ("line.elements", "line.catalogue", "line.fittings", "rheology", "friction.methods", "friction.criteria")
 """The input dataclasses of the rooms below ``study``, and the keys and records of methods."""
 MAY_IMPORT: dict[str, tuple[str, ...]] = {

@@ -6,8 +6,6 @@ power law past its yield stress, ``R`` the radius of the pipe.
 
 from __future__ import annotations
 
-from functools import cache
-
 import numpy as np
 
 from pipeflow.arrays import Array
@@ -19,6 +17,7 @@ from pipeflow.friction.turbulent import (
     log10,
     log_turbulence_group,
 )
+from pipeflow.quadrature import gauss_legendre
 from pipeflow.rootfind import find_root
 from pipeflow.sources import Range, Source
 
@@ -104,13 +103,6 @@ HANKS_NODES = 48
 MIXING_STEPS = 5
 
 
-@cache
-def _gauss_legendre() -> tuple[Array, Array]:
-    """Nodes and weights on (0, 1), as columns."""
-    nodes, weights = np.polynomial.legendre.leggauss(HANKS_NODES)
-    return (nodes[:, None] + 1.0) / 2.0, weights[:, None] / 2.0
-
-
 def hanks(wall: Wall, law: GeneralizedPowerLawTube, bore: Bore) -> Array:
     """Mixing length in smooth pipe, damped from the critical state (Hanks & Dadia 1971; Hanks & Ricks 1975).
 
@@ -147,7 +139,7 @@ def _log_sublayer(wall: Wall, law: GeneralizedPowerLawTube, bore: Bore, damping:
 
 def _depths(log_sublayer: Array) -> tuple[Array, Array]:
     """Depths below the wall over (0, 1) and their weights, evenly spread in the logarithm down to the sublayer."""
-    position, weight = _gauss_legendre()
+    position, weight = (part[:, None] for part in gauss_legendre(HANKS_NODES))
     stretch = np.clip(6.0 - log_sublayer, 8.0, 300.0)
     grown, full = np.exp(stretch * position), np.expm1(stretch)
     return (grown - 1.0) / full, weight * stretch * grown / full

@@ -122,9 +122,7 @@ def _by_name() -> dict[str, PipeSize]:
 @cache
 def _by_series() -> dict[str, tuple[PipeSize, ...]]:
     ascending = sorted(_by_name().values(), key=lambda size: size.inside_diameter)
-    return {
-        _normal(name): tuple(size for size in ascending if size.series == name) for name in series_names()
-    }
+    return {_normal(name): tuple(size for size in ascending if size.series == name) for name in series_names()}
 
 
 def _steel() -> Iterator[PipeSize]:

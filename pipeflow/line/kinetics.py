@@ -16,6 +16,7 @@ from pipeflow.arrays import Array, FloatOrArray
 from pipeflow.friction import PipeFlow, Regime
 from pipeflow.friction.laminar import CassonTube, GeneralizedPowerLawTube, TubeLaw, Wall
 from pipeflow.friction.tube import tube_law
+from pipeflow.quadrature import gauss_legendre
 from pipeflow.rheology import Rheology
 from pipeflow.sources import Source
 
@@ -38,7 +39,7 @@ ALMOST_AT_REST = -60.0
 """Logarithm of a stress so small that every law without a yield stress is at its limit of no flow."""
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class KineticFactors:
     """Dimensionless factors of a velocity profile, arrays of one shape.
 
@@ -124,9 +125,6 @@ def _beta_product(m: Array, power: float, k: int) -> Array:
     return value
 
 
-_NODES_8, _WEIGHTS_8 = np.polynomial.legendre.leggauss(8)
-
-
 def casson_factors(plug: FloatOrArray) -> KineticFactors:
     """Kinetic factors of Casson's fluid.
 
@@ -140,7 +138,7 @@ def casson_factors(plug: FloatOrArray) -> KineticFactors:
         ``phi = tau_y/tau_w``, from 0 to 1.
     """
     s = np.sqrt(np.asarray(plug, dtype=np.float64))[..., None]
-    z, weight = 0.5 * (_NODES_8 + 1.0), 0.5 * _WEIGHTS_8
+    z, weight = gauss_legendre(8)
     y = s + (1.0 - s) * z
     w = (4.0 * s * (1.0 - z**3) + 3.0 * (1.0 - s) * (1.0 - z**4)) / (3.0 + s)
 
@@ -151,7 +149,6 @@ def casson_factors(plug: FloatOrArray) -> KineticFactors:
 
 
 POINTS = 40
-_NODES, _WEIGHTS = np.polynomial.legendre.leggauss(POINTS)
 
 
 def integrated_factors(law: TubeLaw, wall: Wall) -> KineticFactors:
@@ -160,16 +157,16 @@ def integrated_factors(law: TubeLaw, wall: Wall) -> KineticFactors:
     The velocity at a point is the integral of the shear rate from there to the wall. Both integrals run over
     ``x = t²`` from the plug to the wall, at the Gauss–Legendre points of t and the polynomial through them.
     """
-    t = 0.5 * (_NODES + 1.0)
+    t, weight = gauss_legendre(POINTS)
     rate = np.stack([np.exp(law.wall(wall.log_excess + 2.0 * np.log(one)).log_rate - wall.log_rate) for one in t])
     velocity = np.tensordot(_integrals_to_the_wall(t), (rate.T * 2.0 * t).T, axes=1)
-    greatest = np.tensordot(0.5 * _WEIGHTS, (rate.T * 2.0 * t).T, axes=1)
+    greatest = np.tensordot(weight, (rate.T * 2.0 * t).T, axes=1)
     w = velocity / greatest
     spread = (slice(None),) + (None,) * wall.plug.ndim
     area = 2.0 * wall.sheared * (wall.plug + wall.sheared * t[spread] ** 2) * 2.0 * t[spread]
 
     def moment(k: int) -> Array:
-        sheared = np.tensordot(0.5 * _WEIGHTS, area * w**k, axes=1)
+        sheared = np.tensordot(weight, area * w**k, axes=1)
         return np.asarray(wall.plug**2 + np.where(wall.sheared == 0.0, 0.0, sheared))
 
     return _from_moments(moment(1), moment(2), moment(3))

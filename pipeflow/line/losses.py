@@ -38,7 +38,7 @@ ENTRANCE_LAMINAR = 160.0
 ENTRANCE_TURBULENT = 0.5
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class MinorLosses:
     """Losses that each pipe is charged with, Pa; the last axis is that of the pipes.
 

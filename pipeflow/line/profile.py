@@ -25,7 +25,7 @@ Place = Literal["surface", "start", "end"]
 _BOTH_ENDS: tuple[Place, Place] = ("start", "end")
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Node:
     """A place where the line is read: an element's name (or ``source``, ``route``, ``destination``) and which end."""
 
@@ -37,7 +37,7 @@ class Node:
         return f"{self.element}, {self.place}"
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class SlackFlow:
     """What the high points of a line ask for; the last axis, where there is one, is that of the elements.
 
@@ -59,7 +59,7 @@ class SlackFlow:
     share: Array
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class GradeLine:
     """One hydraulic grade line; the last axis is that of the nodes.
 
@@ -91,7 +91,7 @@ class GradeLine:
         return self.pressure[..., 1:-1].argmax(axis=-1) + 1
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Profile:
     """The line at its nodes.
 

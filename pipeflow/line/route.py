@@ -18,7 +18,7 @@ from pipeflow.line.losses import equipment_loss, minor_losses, side_by_side
 from pipeflow.rheology import Rheology
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class LineFlow:
     """Losses of a line; SI units.
 
