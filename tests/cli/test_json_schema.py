@@ -130,7 +130,7 @@ def test_every_spelling_of_a_quantity_fits_and_no_other(name: str, unit: str) ->
     for wrong in (f"1 {unit}x", "1", f"1,5 {unit}", f"1 2 {unit}", f"nan {unit}"):
         assert not pattern.search(wrong)
     assert bool(pattern.search(f"-1 {unit}")) == (not name.endswith(("_above_0", "_or_more")))
-    zeros = [f"0 {unit}", f"+0.0{unit}", f".0e5 {unit}"]
+    zeros = [f"0 {unit}", f"+0.0 {unit}", f".0e5 {unit}"]  # '+0.01/s' would be no zero
     assert [bool(pattern.search(zero)) for zero in zeros] == [not name.endswith("_above_0")] * 3
 
 
