@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from pathlib import Path
 from typing import Any
 
 from pydantic import ValidationError
@@ -11,12 +12,17 @@ from pipeflow.case.schema import CasePart
 from pipeflow.case.wording import findings
 
 
-def examine(tree: Node) -> tuple[CasePart | None, list[Finding]]:
-    """Give what the tree says, or everything wrong with it in file order."""
+def examine(tree: Node, folder: Path = Path()) -> tuple[CasePart | None, list[Finding]]:
+    """Give what the tree says, or everything wrong with it in file order; paths in it start from ``folder``."""
     try:
-        return CasePart.model_validate(_plain(tree), context={"element": set(), "pump": set(), "fluid": None}), []
+        return CasePart.model_validate(_plain(tree), context=_context(folder)), []
     except ValidationError as error:
         return None, findings(tree, error.errors(include_url=False, include_input=False))
+
+
+def _context(folder: Path) -> dict[str, Any]:
+    """What validators share: names taken, the fluid once it is known, and where paths start from."""
+    return {"element": set(), "pump": set(), "fluid": None, "folder": folder}
 
 
 def _plain(node: Node) -> Any:

@@ -31,7 +31,7 @@ from pipeflow.case.fields import (
 from pipeflow.case.fluid_part import FluidPart, SolidsPart
 from pipeflow.case.part import Part
 from pipeflow.case.places import EXAMPLES, PARTS_AT, at_place
-from pipeflow.case.rheology_part import RHEOLOGY_PARTS, FlowCurvePart, UnknownModelPart
+from pipeflow.case.rheology_part import RHEOLOGY_PARTS, UnknownModelPart
 from pipeflow.case.route_part import EquipmentPart, PipePart
 from pipeflow.case.schema import MAX_SCENARIOS, CasePart, FlowPart, SitePart
 from pipeflow.line.catalogue import size_names
@@ -40,7 +40,7 @@ from pipeflow.line.fittings import fittings
 Schema = dict[str, Any]
 
 PLACES: Final = {part: place for place, part in PARTS_AT.items()} | {PARTS_AT[("pumps",)]: ("pumps",)}
-UNWRITTEN: Final = (UnknownModelPart, FlowCurvePart)
+UNWRITTEN: Final = (UnknownModelPart,)
 """Parts that stand for what cannot be read."""
 
 

@@ -49,8 +49,9 @@ def load_text(text: str, file: str = "case.yaml") -> Case:
         tree, notation = read_tree(text)
     except UnreadableError as error:
         raise _input_error(file, [error.finding]) from None
-    part, faults = examine(tree)
-    scenarios, scenario_faults = read_scenarios(tree, [*notation, *faults])
+    folder = Path(file).parent
+    part, faults = examine(tree, folder)
+    scenarios, scenario_faults = read_scenarios(tree, [*notation, *faults], folder)
     found = [*notation, *faults, *scenario_faults]
     if found or part is None:
         raise _input_error(file, found)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import Final
 
+from pipeflow.case.flow_curve_part import FlowCurvePart, UsePart
 from pipeflow.case.fluid_part import FluidPart, LiquidPart, SolidsPart
 from pipeflow.case.limits_part import LimitsPart, PipeWallPart, RestartPart, VelocityPart
 from pipeflow.case.part import Part
@@ -25,6 +26,8 @@ PARTS_AT: Final[dict[tuple[str, ...], type[Part]]] = {
     (): CasePart,
     ("fluid",): FluidPart,
     **{("fluid", "rheology", f"<{model}>"): part for model, part in RHEOLOGY_PARTS.items()},
+    ("fluid", "rheology", "<flow_curve>"): FlowCurvePart,
+    ("fluid", "rheology", "<flow_curve>", "use"): UsePart,
     ("fluid", "solids"): SolidsPart,
     ("fluid", "liquid"): LiquidPart,
     ("flow", "<map>"): FlowPart,
@@ -74,6 +77,7 @@ EXAMPLES: Final[dict[str, str]] = {
     "rheology": "{model: newtonian, viscosity: 21 mPa.s}",
     "model": "herschel-bulkley",
     "flow_curve": "readings.csv",
+    "shear_rate": "30 .. 300 1/s",
     "route": "[{pipe: suction line, diameter: 200 mm, length: 12 m}]",
     "viscosity": "21 mPa.s",
     "plastic_viscosity": "21 mPa.s",

@@ -22,8 +22,8 @@ from pipeflow.case.fields import (
     at_odds,
     choice,
     read_number,
-    said,
 )
+from pipeflow.case.flow_curve_part import FlowCurvePart
 from pipeflow.case.nodes import Scalar
 from pipeflow.case.part import InputPart
 from pipeflow.rheology import (
@@ -195,19 +195,6 @@ class UnknownModelPart(ModelPart):
     model_config = ConfigDict(extra="ignore")
 
     model: Annotated[str, choice("model", lambda: tuple(RHEOLOGY_PARTS))]
-
-
-def _no_flow_curve(value: object) -> str:
-    raise said("fitting a flow curve is not part of this version; give 'model' and its parameters")
-
-
-class FlowCurvePart(ModelPart):
-    """A rheology given by readings, which waits for fitting."""
-
-    model_config = ConfigDict(extra="ignore")
-
-    model: Name = ""
-    flow_curve: Annotated[str, BeforeValidator(_no_flow_curve)]
 
 
 def _tag(value: object) -> str:

@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from dataclasses import dataclass, replace
 from difflib import get_close_matches
+from pathlib import Path
 
 from pipeflow.case.checking import examine
 from pipeflow.case.nodes import Finding, Mapping, Node, Scalar, Sequence, join, kind, shown
@@ -36,7 +37,9 @@ class _UnsureError(Exception):
     """A path that may be right once the case itself is; the case has its own fault there."""
 
 
-def read_scenarios(tree: Node, known: list[Finding]) -> tuple[dict[str, CasePart], list[Finding]]:
+def read_scenarios(
+    tree: Node, known: list[Finding], folder: Path = Path()
+) -> tuple[dict[str, CasePart], list[Finding]]:
     """Read the case once for each scenario.
 
     Parameters
@@ -45,6 +48,8 @@ def read_scenarios(tree: Node, known: list[Finding]) -> tuple[dict[str, CasePart
         The whole case.
     known : list of Finding
         What is wrong with the case itself and is not to be said again.
+    folder : Path
+        Where the case file lies.
 
     Returns
     -------
@@ -63,7 +68,7 @@ def read_scenarios(tree: Node, known: list[Finding]) -> tuple[dict[str, CasePart
         return {}, []
     parts, found = {}, []
     for name in node.values:
-        part, wrong = _read_one(tree, node, name, set(known))
+        part, wrong = _read_one(tree, node, name, set(known), folder)
         found += wrong
         if part is not None:
             parts[name] = part
@@ -75,7 +80,9 @@ def _map_needed(node: Node, what: str) -> str:
     return f"{found}; a map of {what} is needed"
 
 
-def _read_one(tree: Node, scenarios: Mapping, name: str, known: set[Finding]) -> tuple[CasePart | None, list[Finding]]:
+def _read_one(
+    tree: Node, scenarios: Mapping, name: str, known: set[Finding], folder: Path
+) -> tuple[CasePart | None, list[Finding]]:
     node, home = scenarios.values[name], join("scenarios", name)
     if node.faulty:
         return None, []
@@ -86,7 +93,7 @@ def _read_one(tree: Node, scenarios: Mapping, name: str, known: set[Finding]) ->
         return None, [Finding(node.line, node.column, home, message)]
     changes = [_Change(path, node.keys[path], value) for path, value in node.values.items()]
     changed, wrong = _all_made(tree, changes)
-    part, faults = examine(changed)
+    part, faults = examine(changed, folder)
     caused = _caused([fault for fault in faults if fault not in known], changes, bool(known))
     found = [replace(fault, key_path=f"{home}.{fault.key_path}") for fault in [*wrong, *caused]]
     return part, found

@@ -214,6 +214,8 @@ def _did_you_mean(fault: Fault) -> str:
 def _foreign(fault: Fault) -> str:
     foreign = ", ".join(fault.details["foreign"])
     model = fault.parts[-2].strip("<>")
+    if model not in RHEOLOGY_PARTS:
+        return f"{foreign} comes from the readings of 'flow_curve'; leave out one of the two"
     given = set(_keys(fault.home)) & (_PARAMETERS - BESIDE_PARAMETERS)
     fitting = [name for name, part in RHEOLOGY_PARTS.items() if given == set(_own_parameters(part))]
     meant = f"did you mean model: {fitting[0]}? " if fitting else ""

@@ -31,6 +31,7 @@ VALIDATOR = Draft202012Validator(SCHEMA)
 
 LEFT_TO_THE_PROGRAM = {
     "07": "a number too large to compute with",
+    "21": "readings that are not there",
     "22": "a size that only looks like one",
     "25": "the material of a size",
     "26": "roughness against bore",
