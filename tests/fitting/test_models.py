@@ -230,3 +230,12 @@ def test_intervals_cover_the_truth(name: str) -> None:
             held[key] += low <= parameters(law)[key] <= high
     for key, count in held.items():
         assert 930 <= count <= 970, (key, count)
+
+
+def test_the_mud_of_a_course_by_a_general_optimiser() -> None:
+    """FIT-MUD-SIX-SPEED (read; no published answer, its unit of stress not stated): unweighted least squares."""
+    rates = np.array([5.0, 10.0, 170.0, 340.0, 511.0, 1022.0])
+    stress = np.array([10.0, 15.0, 26.0, 34.0, 42.0, 64.0])
+    fit = of(fit_curve(rates, stress, error="absolute"), "herschel-bulkley")
+    found, _ = curve_fit(lambda x, t, k, n: t + k * x**n, rates, stress, [10.0, 0.5, 0.7])
+    assert list((fit.parameters or {}).values()) == pytest.approx(found, rel=1e-5)
