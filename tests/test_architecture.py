@@ -132,5 +132,5 @@ def test_function_bodies_are_short():
 
 def test_the_version_is_said_once():
     """In ``pipeflow/__init__.py``; the packaging repeats it and must agree."""
-    text = (PACKAGE.parent / "pyproject.toml").read_text(encoding="utf-8")
+    text = (Path(__file__).parents[1] / "pyproject.toml").read_text(encoding="utf-8")
     assert f'version = "{pipeflow.__version__}"' in text or 'dynamic = ["version"]' in text
