@@ -15,6 +15,7 @@ from typing import Protocol
 import numpy as np
 
 from pipeflow.arrays import Array
+from pipeflow.quadrature import gauss_legendre
 from pipeflow.rheology.fitting import FINEST_RESOLUTION, aicc
 from pipeflow.rheology.forms import FORMS, Form, Problem
 from pipeflow.rheology.least_squares import solve
@@ -41,8 +42,7 @@ _ROUNDS = 60
 _SETTLED = 1e-11
 _CLEARLY = 10.0
 _DEGREE = 3
-_NODES, _WEIGHTS = np.polynomial.legendre.leggauss(80)
-_U, _DU = 0.5 * (_NODES + 1.0), 0.5 * _WEIGHTS
+_POINTS = 80
 
 
 class Instrument(Protocol):
@@ -63,8 +63,10 @@ class Tube:
 
     def shown(self, law: Rheology, rate: Array) -> Array:
         """``8V/D`` over the wall rate."""
-        relative = law.shear_stress(rate[:, None] * _U**4) / law.shear_stress(rate)[:, None]
-        return np.asarray(4.0 / 3.0 * ((1.0 - relative**3) @ (_DU * 4.0 * _U**3)))
+        nodes, weights = gauss_legendre(_POINTS)
+        # t = u^4 draws the points to the middle of the tube, where tau is not smooth
+        relative = law.shear_stress(rate[:, None] * nodes**4) / law.shear_stress(rate)[:, None]
+        return np.asarray(4.0 / 3.0 * ((1.0 - relative**3) @ (weights * 4.0 * nodes**3)))
 
     def factor(self, slope: Array) -> Array:
         """``(3 + 1/n')/4``."""
@@ -82,8 +84,9 @@ class Cylinders:
         bob = law.shear_stress(rate)
         low = np.maximum(bob / self.radius_ratio**2, law.yield_stress)
         span = (bob - low)[:, None]
-        stress = low[:, None] + span * _U**2
-        return np.asarray((law.shear_rate(stress) / stress * span) @ (_DU * 2.0 * _U) / rate)
+        nodes, weights = gauss_legendre(_POINTS)
+        stress = low[:, None] + span * nodes**2
+        return np.asarray((law.shear_rate(stress) / stress * span) @ (weights * 2.0 * nodes) / rate)
 
     def factor(self, slope: Array) -> Array:
         """``(2/s)/(1 - alpha**(-2/s))`` over ``2 Omega``."""
