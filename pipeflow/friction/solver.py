@@ -2,10 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
 from enum import IntEnum
-from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -152,10 +150,7 @@ def solve_pipes(
     stress does not need them.
     """
     methods = Methods.chosen(rheology, method, critical)
-    shape, flatten = _flattener(velocity, diameter, density, roughness, particle_size, rheology)
-    law = tube_law(rheology, flatten)
-    bore = Bore(flatten(diameter), flatten(density), flatten(roughness), flatten(particle_size))
-    speed = flatten(velocity)
+    shape, speed, law, bore = _flat(velocity, rheology, diameter, density, roughness, particle_size)
     pieces = []
     with np.errstate(all="ignore"):
         for first in range(0, max(speed.size, 1), CHUNK):
@@ -166,26 +161,24 @@ def solve_pipes(
 
 def critical_velocities(diameter: FloatOrArray, density: FloatOrArray, rheology: Rheology) -> dict[str, Array]:
     """End of laminar flow, m/s, by every criterion that knows the rheology; arguments as for the solver."""
-    shape, flatten = _flattener(diameter, density, rheology)
-    law, bore = tube_law(rheology, flatten), Bore(flatten(diameter), flatten(density), flatten(0.0), flatten(np.nan))
+    shape, one, law, bore = _flat(1.0, rheology, diameter, density, 0.0, np.nan)
     known = {key: criterion for key, criterion in CRITERIA.items() if rheology.key in criterion.models}
     with np.errstate(all="ignore"):
-        start = law.guess(np.log(8.0 / bore.diameter))
+        start = law.guess(np.log(8.0 * one / bore.diameter))
         found = {key: transition_edges(law, bore, start, criterion) for key, criterion in known.items()}
         return {key: np.exp(edges.log_velocity).reshape(shape) for key, edges in found.items()}
 
 
-def _flattener(*items: Any) -> tuple[tuple[int, ...], Callable[[object], Array]]:
-    """Find the common shape of arrays and of the parameters of a rheology, and how to bring one to it, flat."""
-    shapes = [
-        np.shape(value) for item in items for value in (vars(item).values() if isinstance(item, Rheology) else [item])
-    ]
-    shape = np.broadcast_shapes(*shapes)
+def _flat(
+    first: FloatOrArray, rheology: Rheology, *of_bore: FloatOrArray
+) -> tuple[tuple[int, ...], Array, TubeLaw, Bore]:
+    """Bring the pipes to one shape, flat: that shape, the first quantity, the law and the bore."""
+    shape = np.broadcast_shapes(*(np.shape(value) for value in (first, *of_bore, *vars(rheology).values())))
 
     def flatten(value: object) -> Array:
         return np.broadcast_to(np.asarray(value, dtype=np.float64), shape).reshape(-1)
 
-    return shape, flatten
+    return shape, flatten(first), tube_law(rheology, flatten), Bore(*(flatten(value) for value in of_bore))
 
 
 def _joined(pieces: list[PipeFlow], shape: tuple[int, ...]) -> PipeFlow:
@@ -289,10 +282,7 @@ def bulk_velocity(
     Zero up to the yield stress; nan where the input means nothing or no edge of the transition exists.
     """
     methods = Methods.chosen(rheology, method, critical)
-    shape, flatten = _flattener(wall_shear_stress, diameter, density, roughness, particle_size, rheology)
-    law = tube_law(rheology, flatten)
-    bore = Bore(flatten(diameter), flatten(density), flatten(roughness), flatten(particle_size))
-    stress = flatten(wall_shear_stress)
+    shape, stress, law, bore = _flat(wall_shear_stress, rheology, diameter, density, roughness, particle_size)
     with np.errstate(all="ignore"):
         velocity = np.where(stress <= law.yield_stress, 0.0, _velocity(stress, law, bore, methods))
         return np.where(_status_of_input(velocity, law, bore) == Status.INVALID, np.nan, velocity).reshape(shape)
