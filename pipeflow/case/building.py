@@ -7,6 +7,7 @@ from dataclasses import replace
 from typing import Any
 
 from pipeflow.case.fields import FlowValue
+from pipeflow.case.flow_curve_part import FlowCurvePart
 from pipeflow.case.fluid_part import FluidPart
 from pipeflow.case.limits_part import LimitsPart
 from pipeflow.case.model import (
@@ -55,6 +56,7 @@ def build_case(part: CasePart, file: str) -> Case:
         sizes={pipe.pipe: pipe.size.name for pipe in pipes if pipe.size},
         default_roughness={pipe.pipe: _material(pipe) for pipe in pipes if pipe.roughness is None},
         tested_shear_rate=part.fluid.rheology.tested,
+        fitted=part.fluid.rheology.result if isinstance(part.fluid.rheology, FlowCurvePart) else None,
         pumps=tuple(Pump(**pump.model_dump()) for pump in part.pumps),
         solids=solids,
         liquid=_liquid(part.fluid, solids),

@@ -6,6 +6,7 @@ import math
 from dataclasses import dataclass, field
 
 from pipeflow.line.elements import Element, Fluid, Vessel
+from pipeflow.rheology.sheet import FitResult
 
 
 @dataclass(frozen=True)
@@ -159,6 +160,8 @@ class Case:
         Material whose default roughness stands in for a value the case does not give, by pipe name.
     tested_shear_rate : tuple of float, optional
         Lowest and highest shear rate over which the rheology was measured, 1/s.
+    fitted : FitResult, optional
+        The fit behind the rheology, where the case names readings.
     temperature : float, optional
         Temperature of the fluid, K.
     specific_heat : float, optional
@@ -190,6 +193,7 @@ class Case:
     sizes: dict[str, str] = field(default_factory=dict)
     default_roughness: dict[str, str] = field(default_factory=dict)
     tested_shear_rate: tuple[float, float] | None = None
+    fitted: FitResult | None = None
     pumps: tuple[Pump, ...] = ()
     solids: Solids | None = None
     liquid: Liquid | None = None

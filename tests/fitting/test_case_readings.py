@@ -6,6 +6,7 @@ import json
 import shutil
 from pathlib import Path
 
+import numpy as np
 import pytest
 from typer.testing import CliRunner
 
@@ -54,6 +55,8 @@ def test_readings_make_the_rheology_and_its_tested_range(folder: Path) -> None:
     assert isinstance(found.fluid.rheology, HerschelBulkley)
     assert found.fluid.rheology.yield_stress == pytest.approx(9.5, rel=0.02)
     assert found.tested_shear_rate == pytest.approx((5.0, 400.0), rel=0.01)
+    assert found.fitted is not None
+    assert np.shape(found.fitted.selected.covariance) == (3, 3)  # type: ignore[union-attr]
 
 
 def test_the_fit_is_that_of_the_command(folder: Path) -> None:
