@@ -208,7 +208,7 @@ def _side_by_side(result: Result) -> Iterator[tuple[str, ...]]:
 
 
 def _against(check: Check) -> str:
-    unit = "kPa" if check.unit == "Pa" else check.unit
+    unit = "kPa" if check.unit == "Pa" and max(abs(check.value or 0.0), abs(check.limit or 0.0)) >= 1e3 else check.unit
     if check.value is None:
         return "no figure"
     if check.limit is None:

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import asdict
 
 import numpy as np
 
@@ -62,7 +61,7 @@ def checks(case: Case, line: LineFlow) -> Iterator[Check]:
         yield from _product(case, state)
     yield from _stopped(case, state)
     yield from _pressures(case, state)
-    if moving:
+    if moving and case.hold_times:
         yield from residence_checks(state, case.hold_times)
 
 
@@ -167,15 +166,17 @@ def _stopped(case: Case, state: LineState) -> Iterator[Check]:
 
 
 def _pressures(case: Case, state: LineState) -> Iterator[Check]:
-    position = pump_position(case)
-    found = raw_profile(state, position)
+    vapour = case.liquid.vapour_pressure if case.liquid else None
     if case.pipe_wall is None:
         yield not_checked("pipe_wall", ("pipe_wall",), "Pa", "pressure of the wall")
-    else:
-        inputs = WallInputs(**asdict(case.pipe_wall))
+        if case.site is None and vapour is None:
+            return
+    position = pump_position(case)
+    found = raw_profile(state, position)
+    if case.pipe_wall is not None:
+        inputs = WallInputs(**vars(case.pipe_wall))
         pressures = pressures_by_pipe(state, found, stopped_line(case), inputs, position)
         yield from wall_checks(state, walls_of(case, state), pressures, inputs)
-    vapour = case.liquid.vapour_pressure if case.liquid else None
     lowest = lowest_pressure_check(state, found, atmospheric_pressure(case), vapour)
     if lowest is not None:
         yield lowest

@@ -333,7 +333,7 @@ def shown(value: float, unit: str) -> str:
     """Write an SI figure of a check in the unit an engineer reads it in."""
     if unit == "Pa/m":
         return f"{significant(value / 1e3)} kPa/m"
-    return format_value(value, "kPa" if unit == "Pa" else unit) if unit else significant(value)
+    return format_value(value, "kPa" if unit == "Pa" and abs(value) >= 1e3 else unit) if unit else significant(value)
 
 
 def _on_the_central_figure(candidates: Sequence[Candidate]) -> Iterator[str]:
