@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import os
 import sys
+from io import TextIOWrapper
 from pathlib import Path
-from typing import TYPE_CHECKING, Annotated
+from typing import TYPE_CHECKING, Annotated, Any
 
 import typer
 
@@ -72,15 +73,20 @@ def _solve_one(path: str, as_json: bool) -> int:
 
 def _print(result: Result, as_json: bool) -> None:
     if as_json:
-        import json
-
         from pipeflow.record import document
 
-        typer.echo(json.dumps(document(result), ensure_ascii=False, allow_nan=False))
+        _print_json(document(result))
     else:
         from pipeflow.report.terminal import print_result
 
         print_result(result)
+
+
+def _print_json(document: dict[str, Any]) -> None:
+    import json
+
+    utf_8 = (sys.stdout.encoding or "").replace("-", "").lower() == "utf8"
+    typer.echo(json.dumps(document, ensure_ascii=not utf_8, allow_nan=False))
 
 
 @app.command()
@@ -112,11 +118,9 @@ def fit(
 
 def _print_fit(file: str, result: FitResult, as_json: bool) -> None:
     if as_json:
-        import json
-
         from pipeflow.report.fit_document import fit_document
 
-        typer.echo(json.dumps(fit_document(file, result), ensure_ascii=False, allow_nan=False))
+        _print_json(fit_document(file, result))
     else:
         from pipeflow.report.fit_page import fit_page
 
@@ -152,11 +156,9 @@ def _size(case: Case, as_json: bool) -> int:
 
     result = size_case(case)
     if as_json:
-        import json
-
         from pipeflow.report.size_document import size_document
 
-        typer.echo(json.dumps(size_document(result), ensure_ascii=False, allow_nan=False))
+        _print_json(size_document(result))
     else:
         from pipeflow.report.size_page import size_page
 
@@ -169,11 +171,9 @@ def _solve_for(case: Case, quantity: str, as_json: bool) -> int:
 
     answer = solve_for(case, quantity)
     if as_json:
-        import json
-
         from pipeflow.report.size_document import answer_document
 
-        typer.echo(json.dumps(answer_document(answer), ensure_ascii=False, allow_nan=False))
+        _print_json(answer_document(answer))
     else:
         from pipeflow.report.size_page import answer_page
 
@@ -191,16 +191,32 @@ def methods() -> None:
 
 def main() -> None:
     """Run the command; an error that is none of the user's leaves with status 3 and says so."""
-    # no plugin of pydantic is wanted, and looking for them costs more than solving the case
-    os.environ.setdefault("PYDANTIC_DISABLE_PLUGINS", "__all__")
+    _prepare_output()
     try:
-        app()
+        try:
+            app()
+        finally:
+            sys.stdout.flush()
     except BrokenPipeError:
         # the reader of a pipe has seen enough; keep the interpreter from complaining when it flushes
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        sys.exit(FAILS)
+    except OSError as error:
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        sys.stderr.write(f"pipeflow: the output can't be written: {error.strerror}\n")
+        sys.exit(UNUSABLE)
     except Exception as error:
         if os.environ.get("PIPEFLOW_TRACEBACK"):
             raise
         typer.echo(f"pipeflow: a bug of ours: {type(error).__name__}: {error}", err=True)
         typer.echo("Please report it with the case file; PIPEFLOW_TRACEBACK=1 shows where.", err=True)
         sys.exit(BUG)
+
+
+def _prepare_output() -> None:
+    """Let a stream that is closed swallow the text, and one that cannot hold a letter print a stand-in for it."""
+    sys.stdout = sys.stdout or open(os.devnull, "w", encoding="utf-8")  # noqa: PTH123, SIM115
+    sys.stderr = sys.stderr or open(os.devnull, "w", encoding="utf-8")  # noqa: PTH123, SIM115
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, TextIOWrapper):
+            stream.reconfigure(errors="replace")
