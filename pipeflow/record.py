@@ -51,6 +51,9 @@ _UNITS = {
     "pressure_upper": "Pa",
     "head_required": "m",
     "head_without": "m",
+    "pump_head": "m",
+    "pump_head_upper": "m",
+    "lowest_pressure": "Pa",
 }
 
 

@@ -25,7 +25,7 @@ TURNING_LADDERS = (57, 17, 17, 17, 17)
 TRANSITION_LINE = Source(
     key="transition-line",
     title="Straight line in ln V - ln tau_w from the laminar edge to the turbulent edge",
-    citation="our own construction, docs/theory.md: one rising curve, no jump",
+    citation="Own construction of this program, docs/theory.md: one rising curve, no jump",
     confidence="medium",
     note="flow in the transition is unsteady; no published method predicts its loss closely",
 )

@@ -4,21 +4,23 @@ from __future__ import annotations
 
 import sys
 from collections.abc import Container, Iterable, Iterator, Sequence
-from dataclasses import fields
+from dataclasses import fields, replace
 from shutil import get_terminal_size
 
 from pipeflow.case.model import Case, Liquid, Solids
+from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.line.elements import Pipe
 from pipeflow.report.text import WIDTH, paragraph, table
 from pipeflow.rheology import Rheology
 from pipeflow.study.flows import dry_solids_flow
 from pipeflow.study.profile import atmospheric_pressure
-from pipeflow.study.result import SAFETY_NOTICE, ElementResult, ProfileResult, Result
+from pipeflow.study.result import SAFETY_NOTICE, ElementResult, Result
 from pipeflow.units import format_value, significant, to_display
 from pipeflow.verdict import Check
 
 MARK = {"ok": "ok", "not checked": "not checked", "caution": "CAUTION", "fail": "FAIL"}
 """The word for each status, the gravest last."""
+REGIME_IN_SHORT = {"transitional": "transit.", "turbulent": "turb.", "laminar": "lam."}
 STYLE = {"ok": "green", "caution": "yellow", "fail": "bold red", "not checked": "dim"}
 UNITS = {
     "viscosity": "viscosity",
@@ -43,7 +45,7 @@ def print_result(result: Result) -> None:
     page.methods(result)
     if result.scenarios:
         page.heading("Scenarios side by side, at design flow")
-        columns = ("", "head loss\nm", "upper\nm", "total head\nm", "pressure\nkPa", "regime", "checks")
+        columns = ("", "head loss\nm", "upper\nm", "pump head\nupper m", "pressure\nupper kPa", "regime", "checks")
         page.rows(columns, _side_by_side(result), words=(0, 5, 6))
     for name, scenario in result.scenarios.items():
         page.banner(f"Scenario: {name}")
@@ -143,9 +145,9 @@ class _Page:
         profile = result.profile
         self.heading("Profile at design flow, pump at the start of the route")
         columns = ("end of", "distance\nm", "elevation\nm", "head\nm", "pressure\nkPa gauge", "upper\nkPa gauge")
-        self.rows(columns, _profile(profile))
+        self.rows(columns, _profile(result))
         self.text(f"Highest at {profile.highest_point}; lowest at {profile.lowest_point}.", mark="  ")
-        if profile.slack:
+        if profile.slack and profile.slack.share:
             self.text(f"The head of the pump is governed by {profile.slack.governed_by}.", mark="  ")
 
     def checks(self, result: Result) -> None:
@@ -170,11 +172,19 @@ def _counted(pipe: Pipe) -> list[str]:
     return counts + ([f"further K {pipe.loss_coefficient:g}"] if pipe.loss_coefficient else [])
 
 
-def _profile(profile: ProfileResult) -> list[tuple[str, ...]]:
+def _profile(result: Result) -> list[tuple[str, ...]]:
     """Before and after the pump, and the end of every element."""
-    before, after, *others = profile.points[1:-1]
+    profile = result.profile
+    weight = float(result.case.fluid.density) * STANDARD_GRAVITY
+    before = profile.points[1]
+    after = replace(
+        before,
+        head=before.head + profile.pump_head,
+        pressure=before.pressure + weight * profile.pump_head,
+        pressure_upper=before.pressure_upper + weight * profile.pump_head_upper,
+    )
     named = [("before the pump", before), ("after the pump", after)]
-    named += [(point.element, point) for point in others if point.place == "end"]
+    named += [(point.element, point) for point in profile.points[3:-1] if point.place == "end"]
     return [
         (
             name,
@@ -190,19 +200,17 @@ def _profile(profile: ProfileResult) -> list[tuple[str, ...]]:
 
 def _side_by_side(result: Result) -> Iterator[tuple[str, ...]]:
     for name, one in (("the case", result), *result.scenarios.items()):
-        totals = one.totals
         regimes = dict.fromkeys(element.regime for element in one.elements if element.regime)
         statuses = {check.status for check in one.checks}
-        worst = next(
-            (MARK[status] for status in ("fail", "caution", "ok", "not checked") if status in statuses), "none"
-        )
+        worst = next((mark for status, mark in reversed(MARK.items()) if status in statuses), "none stated")
+        weight = float(one.case.fluid.density) * STANDARD_GRAVITY
         yield (
             name,
-            _number(totals.head_loss),
-            _number(totals.head_loss_upper),
-            _number(totals.total_head),
-            _number(totals.pressure_required, "kPa"),
-            "\n".join(regimes),
+            _number(one.totals.head_loss),
+            _number(one.totals.head_loss_upper),
+            _number(one.profile.pump_head_upper),
+            _number(weight * one.profile.pump_head_upper, "kPa"),
+            " / ".join(REGIME_IN_SHORT.get(regime, regime) for regime in regimes),
             worst,
         )
 
@@ -325,11 +333,13 @@ def _totals(result: Result) -> Iterator[tuple[str, ...]]:
     yield "head loss", _number(totals.head_loss), _number(totals.head_loss_upper), "m of slurry"
     yield "static head", _number(totals.static_head), "", "m of slurry"
     yield "total head", _number(totals.total_head), _number(totals.total_head_upper), "m of slurry"
-    slack, upper = result.profile.slack, result.profile.slack_upper
-    if slack and upper and upper.share:
-        yield "pump head, slack flow", _number(slack.head_required), _number(upper.head_required), "m of slurry"
     required = (_number(figure, "kPa") for figure in (totals.pressure_required, totals.pressure_required_upper))
     yield "pressure required", *required, "kPa"
+    if result.profile.slack_upper and result.profile.slack_upper.share:
+        heads = (result.profile.pump_head, result.profile.pump_head_upper)
+        weight = float(result.case.fluid.density) * STANDARD_GRAVITY
+        yield "PUMP HEAD, slack flow", *(_number(head) for head in heads), "m of slurry"
+        yield "PUMP PRESSURE, slack flow", *(_number(weight * head, "kPa") for head in heads), "kPa"
 
 
 def _number(value: float | None, unit: str | None = None, digits: int = 4) -> str:

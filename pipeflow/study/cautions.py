@@ -43,12 +43,13 @@ def _about_input(case: Case) -> Iterator[str]:
     for material in dict.fromkeys(case.default_roughness.values()):
         names = [pipe for pipe, of in case.default_roughness.items() if of == material]
         roughness = MATERIALS[material].roughness * 1e3
-        yield f"{', '.join(names)}: roughness {roughness:g} mm, of new {material}, is assumed"
+        new = "new stainless tube" if material == "sanitary" else f"new {material} pipe"
+        yield f"{', '.join(names)}: roughness {roughness:g} mm, of {new}, is assumed"
     named = {key for pipe in pipes_of(case) for key in pipe.fittings}
     if case.source and case.destination and not named & ENDS:
         yield "the line joins two vessels, but no entrance or exit loss is among its fittings"
     if case.flow.design == 0:
-        yield "at rest: the losses shown are those that must be overcome before anything moves"
+        yield "at rest: the losses shown are the limit as the flow starts, what a yield stress holds back"
     yield from notes(sorted(named), case.methods.fittings or DEFAULT_METHOD)
     if case.pumps:
         yield "the pumps of the case are read, but not yet set against the system curve"
@@ -57,16 +58,20 @@ def _about_input(case: Case) -> Iterator[str]:
 def _about_profile(profile: ProfileResult) -> Iterator[str]:
     slack = profile.slack_upper
     if slack and slack.share:
+        by = "a vacuum, which no line can hold" if profile.slack_by_vacuum else "the pressure of the vapour"
+        places, governing = ", ".join(slack.share), slack.governed_by
         yield (
-            f"slack flow: {', '.join(slack.share)} partly filled behind {slack.governed_by}, where the pressure would "
-            f"fall below the vapour's; the pump must give {slack.head_required:.4g} m, not {slack.head_without:.4g} "
-            "m, and nothing is recovered downstream"
+            f"slack flow: {places} partly filled behind {governing}, where the pressure would fall below {by}; the pump "
+            f"must give {slack.head_required:.4g} m, not {slack.head_without:.4g} m, and nothing is recovered downstream"
         )
-    lowest = min(point.pressure for point in profile.points[1:-1])
-    if slack is None and lowest < 0:
+    elif profile.pump_head_upper < 0:
+        spare = -profile.pump_head_upper
+        yield f"the line runs by gravity: {spare:.4g} m must be throttled at this flow, or it runs faster"
+    if slack is None and profile.lowest_pressure < 0:
+        lowest, keys = profile.lowest_pressure / 1e3, " and ".join(profile.needed_for_slack)
         yield (
-            f"the pressure falls to {lowest / 1e3:.3g} kPa gauge at {profile.lowest_pressure_at}; slack flow and "
-            f"boiling are not checked: give {' and '.join(profile.needed_for_slack)}"
+            f"the pressure falls to {lowest:.3g} kPa gauge at {profile.lowest_pressure_at}; slack flow and boiling are not "
+            f"checked: give {keys}"
         )
 
 

@@ -56,9 +56,14 @@ class Section:
 
 def method_sections() -> tuple[Section, ...]:
     """Every method of the program, by kind."""
-    laminar = (RABINOWITSCH_MOONEY, BUCKINGHAM_REINER, HAGEN_POISEUILLE, METZNER_REED)
+    laminar = (
+        (RABINOWITSCH_MOONEY, "any fluid"),
+        (BUCKINGHAM_REINER, "bingham"),
+        (HAGEN_POISEUILLE, "newtonian"),
+        (METZNER_REED, "any fluid"),
+    )
     return (
-        Section("Laminar flow", "", tuple(Choice(source) for source in laminar)),
+        Section("Laminar flow", "", tuple(Choice(source, fluids) for source, fluids in laminar)),
         Section(
             "Turbulent flow",
             "methods.turbulent",

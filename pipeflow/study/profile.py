@@ -4,12 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-import numpy as np
-
 from pipeflow.case.model import Case
 from pipeflow.line.profile import GradeLine, Profile, profile
 from pipeflow.line.route import LineFlow
-from pipeflow.line.site import standard_atmosphere
+from pipeflow.line.site import SEA_LEVEL_PRESSURE, standard_atmosphere
 from pipeflow.study.flows import DESIGN
 from pipeflow.study.result import ProfilePoint, ProfileResult, SlackResult
 
@@ -24,29 +22,41 @@ def atmospheric_pressure(case: Case) -> float | None:
 
 
 def profile_of(case: Case, line: LineFlow) -> ProfileResult:
-    """Read the solved line at its nodes, the pump at the start of the route."""
+    """Read the solved line at its nodes, the pump at the start of the route.
+
+    Slack flow is checked with the pressure of the site and of the vapour. Where the case does not give them but the
+    pressure would fall below a vacuum at sea level, it is checked against that vacuum.
+    """
     atmosphere, vapour = atmospheric_pressure(case), case.liquid.vapour_pressure if case.liquid else None
-    found = profile(
-        line,
-        case.fluid,
-        case.route,
-        case.source,
-        case.destination,
-        atmospheric_pressure=atmosphere,
-        vapour_pressure=vapour,
-    )
     missing = {"site": atmosphere, "fluid.liquid.vapour_pressure": vapour}
+    found = _read(case, line, atmosphere, vapour)
+    impossible = found.central.slack is None and _lowest(found) < -SEA_LEVEL_PRESSURE
+    if impossible:
+        found = _read(case, line, atmosphere or SEA_LEVEL_PRESSURE, vapour or 0.0)
     return ProfileResult(
         points=tuple(_points(found)),
+        pump_head=float(found.central.pump_head[DESIGN]),
+        pump_head_upper=float(found.upper.pump_head[DESIGN]),
         highest_point=str(found.nodes[int(found.highest_point[DESIGN])]),
         lowest_point=str(found.nodes[int(found.lowest_point[DESIGN])]),
+        lowest_pressure=_lowest(found),
         lowest_pressure_at=str(found.nodes[int(found.central.lowest_pressure[DESIGN])]),
         highest_pressure_at=str(found.nodes[int(found.upper.highest_pressure[DESIGN])]),
         slack=_slack(found, found.central),
         slack_upper=_slack(found, found.upper),
+        slack_by_vacuum=impossible,
         needed_for_slack=tuple(key for key, value in missing.items() if value is None),
-        falls=bool(np.any(np.diff(found.elevation[DESIGN, 1:-1]) < 0)),
     )
+
+
+def _read(case: Case, line: LineFlow, atmosphere: float | None, vapour: float | None) -> Profile:
+    ends = (case.source, case.destination)
+    return profile(line, case.fluid, case.route, *ends, atmospheric_pressure=atmosphere, vapour_pressure=vapour)
+
+
+def _lowest(found: Profile) -> float:
+    """Lowest gauge pressure along the route, Pa; its end is left out, where the pressure is the vessel's."""
+    return float(found.central.pressure[DESIGN, 1:-2].min())
 
 
 def _points(found: Profile) -> Iterator[ProfilePoint]:
@@ -58,9 +68,14 @@ def _points(found: Profile) -> Iterator[ProfilePoint]:
             elevation=float(found.elevation[DESIGN, index]),
             head=float(found.central.total_head[DESIGN, index]),
             head_upper=float(found.upper.total_head[DESIGN, index]),
-            pressure=float(found.central.pressure[DESIGN, index]),
-            pressure_upper=float(found.upper.pressure[DESIGN, index]),
+            pressure=_without_rounding(found.central.pressure[DESIGN, index]),
+            pressure_upper=_without_rounding(found.upper.pressure[DESIGN, index]),
         )
+
+
+def _without_rounding(pressure: float) -> float:
+    """Pressure to a microPascal: what heads that should cancel leave is none."""
+    return round(float(pressure), 6) + 0.0
 
 
 def _slack(found: Profile, grade: GradeLine) -> SlackResult | None:

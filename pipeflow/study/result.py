@@ -113,19 +113,23 @@ class SlackResult:
 class ProfileResult:
     """The line along its route, with its high and low points.
 
-    ``slack`` is None where it could not be checked; ``needed_for_slack`` then names the keys it needs. ``falls`` tells
-    whether the route goes downhill anywhere.
+    ``pump_head`` is what the pump must give, m: the total head, or more where a high point governs. ``slack`` is None
+    where it could not be checked; ``needed_for_slack`` names the keys it needs. ``slack_by_vacuum`` tells that it was
+    checked against a vacuum at sea level for want of them. Pressures in Pa, gauge.
     """
 
     points: tuple[ProfilePoint, ...]
+    pump_head: float
+    pump_head_upper: float
     highest_point: str
     lowest_point: str
+    lowest_pressure: float
     lowest_pressure_at: str
     highest_pressure_at: str
     slack: SlackResult | None
     slack_upper: SlackResult | None
+    slack_by_vacuum: bool
     needed_for_slack: tuple[str, ...]
-    falls: bool
 
 
 @dataclass(frozen=True)
