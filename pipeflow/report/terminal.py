@@ -155,10 +155,9 @@ class _Page:
         if not result.checks:
             self.text("The case states no limit, so none was checked.")
         for check in result.checks:
-            said = f"{check.name.replace('_', ' ')} {_against(check)}; {check.basis}"
-            mark = f"{MARK[check.status]:<7} "
-            self.written.append((mark, STYLE[check.status]))
-            self.line(paragraph(said, self.width, mark)[len(mark) :])
+            self.written.append((f"{MARK[check.status]:<12}", STYLE[check.status]))
+            self.line(f"{check.name.replace('_', ' ')}: {_against(check)}")
+            self.text(check.basis, mark=" " * 12)
 
     def methods(self, result: Result) -> None:
         self.heading("Methods")

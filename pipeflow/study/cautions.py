@@ -61,8 +61,8 @@ def _about_profile(profile: ProfileResult) -> Iterator[str]:
         by = "a vacuum, which no line can hold" if profile.slack_by_vacuum else "the pressure of the vapour"
         places, governing = ", ".join(slack.share), slack.governed_by
         yield (
-            f"slack flow: {places} partly filled behind {governing}, where the pressure would fall below {by}; the pump "
-            f"must give {slack.head_required:.4g} m, not {slack.head_without:.4g} m, and nothing is recovered downstream"
+            f"slack flow: {places} partly filled behind {governing}, where the pressure would fall below {by}; the "
+            f"pump must give {slack.head_required:.4g} m, not {slack.head_without:.4g} m, and nothing is recovered after"
         )
     elif profile.pump_head_upper < 0:
         spare = -profile.pump_head_upper
@@ -70,8 +70,8 @@ def _about_profile(profile: ProfileResult) -> Iterator[str]:
     if slack is None and profile.lowest_pressure < 0:
         lowest, keys = profile.lowest_pressure / 1e3, " and ".join(profile.needed_for_slack)
         yield (
-            f"the pressure falls to {lowest:.3g} kPa gauge at {profile.lowest_pressure_at}; slack flow and boiling are not "
-            f"checked: give {keys}"
+            f"the pressure falls to {lowest:.3g} kPa gauge at {profile.lowest_pressure_at}; slack flow and boiling are "
+            f"not checked: give {keys}"
         )
 
 
