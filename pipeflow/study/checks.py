@@ -153,10 +153,14 @@ def pump_position(case: Case) -> int:
 
 
 def stopped_line(case: Case) -> Stopped | None:
-    """Give the case as a stopped line; None for a fluid that does not gel."""
-    restart = case.restart
-    stopped = Stopped.of(restart.static_yield_stress, dynamic_yield_stress(case), restart.factor, pump_position(case))
-    return stopped if stopped.static_yield_stress > 0 else None
+    """Give the case as a stopped line; None where nothing gels and no restart is asked for."""
+    restart, dynamic = case.restart, dynamic_yield_stress(case)
+    measured = restart.static_yield_stress
+    if measured is None and case.fluid.rheology.key == "newtonian":
+        measured = 0.0
+    stopped = Stopped.of(measured, dynamic, restart.factor, pump_position(case))
+    asked = stopped.static_yield_stress > 0 or case.limits.restart_pressure is not None
+    return stopped if asked else None
 
 
 def _stopped(case: Case, state: LineState) -> Iterator[Check]:

@@ -24,6 +24,8 @@ from pipeflow.units import format_value, significant
 from pipeflow.verdict import Check
 
 OWN = "the case"
+ROUGHEST = 0.1
+"""Highest roughness over bore, as a case may have it."""
 RISING_LIMITS = (
     "head_loss", "pressure_loss", "velocity_maximum", "wall_shear_rate", "wall_shear_stress", "temperature_rise",
     "restart_pressure",
@@ -255,7 +257,7 @@ def _candidate(cases: dict[str, Case], lines: dict[str, LineFlow], bore: Bore, p
     own, line = cases[OWN], lines[OWN]
     place = [pipe.name for pipe in pipes_of(own)].index(pipes[0])
     governing = max(lines, key=lambda name: float(lines[name].pressure_loss_upper[MAXIMUM]))
-    fails = _worst(found, "fail")
+    fails = (*_worst(found, "fail"), *_too_rough(own, pipes))
     flow = line.pipes
     return Candidate(
         size=bore.name,
@@ -285,6 +287,12 @@ def _candidate(cases: dict[str, Case], lines: dict[str, LineFlow], bore: Bore, p
         ),
         excess=max((_excess(check) for _, check in _of_status(found, "fail")), default=0.0),
     )
+
+
+def _too_rough(case: Case, pipes: tuple[str, ...]) -> Iterator[str]:
+    for pipe in pipes_of(case):
+        if pipe.name in pipes and pipe.roughness > ROUGHEST * pipe.diameter:
+            yield f"roughness of {pipe.name} {format_value(float(pipe.roughness), 'mm')}, at most a tenth of the bore"
 
 
 def _of_status(found: dict[str, list[Check]], status: str) -> Iterator[tuple[str, Check]]:
