@@ -49,7 +49,7 @@ def print_result(result: Result) -> None:
         page.rows(columns, _side_by_side(result), words=(0, 5, 6))
     for name, scenario in result.scenarios.items():
         page.banner(f"Scenario: {name}")
-        page.flow(scenario)
+        page.flow(scenario, brief=True)
     page.heading("Before relying on this")
     page.text(SAFETY_NOTICE)
     page.print()
@@ -110,7 +110,7 @@ class _Page:
             if isinstance(pipe, Pipe) and (pipe.fittings or pipe.loss_coefficient):
                 self.text(", ".join(_counted(pipe)), mark=f"  {pipe.name}: ")
 
-    def flow(self, result: Result) -> None:
+    def flow(self, result: Result, brief: bool = False) -> None:
         self.heading(f"Flow at design, {format_value(result.case.flow.design, 'volume flow')}")
         columns = (
             "element",
@@ -127,7 +127,7 @@ class _Page:
         self.rows(("", "central", "upper", ""), _totals(result), words=(0, 3))
         self.spread(result)
         self.profile(result)
-        self.checks(result)
+        self.checks(result, brief)
         if result.cautions:
             self.heading("Cautions")
             for caution in result.cautions:
@@ -150,14 +150,21 @@ class _Page:
         if profile.slack and profile.slack.share:
             self.text(f"The head of the pump is governed by {profile.slack.governed_by}.", mark="  ")
 
-    def checks(self, result: Result) -> None:
+    def checks(self, result: Result, brief: bool = False) -> None:
+        """Write every check, or in brief the figures of those that call for thought and the names of the others."""
         self.heading("Checks")
         if not result.checks:
             self.text("The case states no limit, so none was checked.")
+        quiet = ("ok", "not checked") if brief else ()
         for check in result.checks:
-            self.written.append((f"{MARK[check.status]:<12}", STYLE[check.status]))
-            self.line(f"{check.name.replace('_', ' ')}: {_against(check)}")
-            self.text(check.basis, mark=" " * 12)
+            if check.status not in quiet:
+                self.written.append((f"{MARK[check.status]:<12}", STYLE[check.status]))
+                self.line(f"{_spaced(check.name)}: {_against(check)}")
+                self.text(check.basis, mark=" " * 12)
+        for status in quiet:
+            names = [_spaced(check.name) for check in result.checks if check.status == status]
+            if names:
+                self.text(", ".join(names), mark=f"{MARK[status]:<12}")
 
     def methods(self, result: Result) -> None:
         self.heading("Methods")
@@ -212,6 +219,10 @@ def _side_by_side(result: Result) -> Iterator[tuple[str, ...]]:
             " / ".join(REGIME_IN_SHORT.get(regime, regime) for regime in regimes),
             worst,
         )
+
+
+def _spaced(name: str) -> str:
+    return name.replace("_", " ")
 
 
 def _against(check: Check) -> str:
