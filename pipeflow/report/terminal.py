@@ -49,7 +49,7 @@ def print_result(result: Result) -> None:
         page.rows(columns, _side_by_side(result), words=(0, 5, 6))
     for name, scenario in result.scenarios.items():
         page.banner(f"Scenario: {name}")
-        page.flow(scenario, brief=True)
+        page.flow(scenario, base=result)
     page.heading("Before relying on this")
     page.text(SAFETY_NOTICE)
     page.print()
@@ -110,7 +110,8 @@ class _Page:
             if isinstance(pipe, Pipe) and (pipe.fittings or pipe.loss_coefficient):
                 self.text(", ".join(_counted(pipe)), mark=f"  {pipe.name}: ")
 
-    def flow(self, result: Result, brief: bool = False) -> None:
+    def flow(self, result: Result, base: Result | None = None) -> None:
+        """Write what the flow gives; of a scenario in brief, without what holds for its ``base`` case too."""
         self.heading(f"Flow at design, {format_value(result.case.flow.design, 'volume flow')}")
         columns = (
             "element",
@@ -127,10 +128,12 @@ class _Page:
         self.rows(("", "central", "upper", ""), _totals(result), words=(0, 3))
         self.spread(result)
         self.profile(result)
-        self.checks(result, brief)
-        if result.cautions:
-            self.heading("Cautions")
-            for caution in result.cautions:
+        self.checks(result, brief=base is not None)
+        said = base.cautions if base else ()
+        own = [caution for caution in result.cautions if caution not in said]
+        if own:
+            self.heading("Cautions" if base is None else "Cautions beside those of the case itself")
+            for caution in own:
                 self.text(caution, mark="! ")
 
     def spread(self, result: Result) -> None:
