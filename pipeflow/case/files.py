@@ -11,7 +11,7 @@ from pipeflow.units import echo
 
 
 def read_text_file(path: Path, most: int, what: str) -> str:
-    """Read a text file.
+    """Read a text file; a pipe or a device does not make the program wait.
 
     Parameters
     ----------
@@ -41,8 +41,12 @@ def read_text_file(path: Path, most: int, what: str) -> str:
 
 def refusal(path: Path | str, message: str, line: int | None = None, column: int | None = None) -> InputError:
     """Make the error that refuses a file."""
-    named = "".join(char if char.isprintable() else echo(char)[1:-1] for char in str(path))
-    return InputError([Problem(named, line, column, "", message)])
+    return InputError([Problem(printable(str(path)), line, column, "", message)])
+
+
+def printable(name: str) -> str:
+    """Make the name of a file fit for a message."""
+    return "".join(char if char.isprintable() else echo(char)[1:-1] for char in name)
 
 
 def _refuse_unless_regular(status: os.stat_result, path: Path, most: int, what: str) -> None:
@@ -55,7 +59,7 @@ def _refuse_unless_regular(status: os.stat_result, path: Path, most: int, what: 
 
 
 def _too_large(path: Path, most: int, what: str) -> InputError:
-    return refusal(path, f"larger than {most // 1000} kB; {what} is at most that")
+    return refusal(path, f"larger than {most // 1024} kB; {what} is at most that")
 
 
 def _why(error: OSError | ValueError) -> str:

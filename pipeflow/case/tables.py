@@ -20,7 +20,7 @@ from pipeflow.case.files import read_text_file
 from pipeflow.errors import InputError, Problem
 from pipeflow.units import NUMBER, UnitError, accepted, echo, parse
 
-MAX_BYTES: Final = 2_000_000
+MAX_BYTES: Final = 2000 * 1024
 MAX_ROWS: Final = 10_000
 MAX_PROBLEMS: Final = 50
 SMALLEST, LARGEST = 1e-15, 1e15

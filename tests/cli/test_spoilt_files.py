@@ -126,7 +126,7 @@ def test_a_name_no_file_can_have(odd: str) -> None:
 def test_a_file_of_10_megabytes_is_not_read(tmp_path: Path) -> None:
     path = tmp_path / "huge.yaml"
     path.write_bytes(b"# " + b"x" * 10_000_000)
-    assert problem_of(path) == "  larger than 256 kB; a case file is at most that"
+    assert problem_of(path) == "  larger than 256 kB; a case is at most that"
 
 
 def test_the_largest_file_is_still_read(tmp_path: Path) -> None:
