@@ -29,6 +29,7 @@ from pipeflow.operability.restart import Stopped
 from pipeflow.operability.state import LineState
 from pipeflow.verdict import Check, Status
 
+METHOD_KEYS = (B31_3.key, B31_4.key, RATED.key)
 PEOPLE = "local codes and a licensed engineer settle the wall"
 
 
@@ -65,9 +66,7 @@ class WallInputs:
     def allowed(self, name: str, wall: Wall) -> tuple[float, str]:
         """Pressure that a pipe's wall holds, Pa, and by which method; or nan, and the case key that it needs."""
         if wall.material in ("polyethylene", None) or self.code is None:
-            if self.pressure_rating is not None:
-                return self.pressure_rating * (self.temperature_derating or 1.0), RATED.key
-            return np.nan, "pipe_wall.pressure_rating" if wall.material == "polyethylene" else "pipe_wall.code"
+            return self._rated("pipe_wall.pressure_rating" if wall.material == "polyethylene" else "pipe_wall.code")
         if wall.thickness is None or wall.outside_diameter is None:
             return np.nan, f"route[{name}].size"
         left = thickness_left(wall.thickness, self.mill_tolerance, self.corrosion_allowance + self.wear_allowance)
@@ -79,9 +78,16 @@ class WallInputs:
         factors = {"design_factor": self.design_factor or 0.72, "joint_factor": joint}
         return float(pressure_b31_4(left, wall.outside_diameter, self.yield_strength, **factors)), B31_4.key
 
+    def _rated(self, lacking: str) -> tuple[float, str]:
+        if self.pressure_rating is None:
+            return np.nan, lacking
+        return self.pressure_rating * (self.temperature_derating or 1.0), RATED.key
+
     def _b31_3(self, left: float, outside: float, joint: float) -> tuple[float, str]:
         if self.allowable_stress is None:
             return np.nan, "pipe_wall.allowable_stress"
+        if left >= outside / 6.0:  # beyond the form
+            return self._rated("pipe_wall.pressure_rating")
         coefficient = 0.4 if self.coefficient_y is None else self.coefficient_y
         factors = {"joint_factor": joint, "weld_factor": self.weld_factor or 1.0, "coefficient": coefficient}
         return float(pressure_b31_3(left, outside, self.allowable_stress, **factors)), B31_3.key
@@ -140,26 +146,37 @@ def wall_checks(
 ) -> Iterator[Check]:
     """Hold the wall of each pipe against the worst of its pressures; the sudden stop is told apart."""
     allowed = [inputs.allowed(name, wall) for name, wall in zip(state.names, walls, strict=True)]
-    needs = tuple(dict.fromkeys(key for limit, key in allowed if np.isnan(limit) and "." in key and key[:3] != "b31"))
-    if needs:
-        yield not_checked("pipe_wall", needs, "Pa", "pressure of the wall")
-        return
     limits = np.array([limit for limit, _ in allowed])
+    lacking = tuple(dict.fromkeys(key for _, key in allowed if key not in METHOD_KEYS))
+    if lacking and not np.any(np.isfinite(limits)):
+        yield not_checked("pipe_wall", lacking, "Pa", "pressure of the wall")
+        return
+    if "shut in" not in pressures:
+        lacking += ("pipe_wall.shut_in_pressure",)
+    found = _worst_wall(state, allowed, pressures)
+    if lacking and found.status == "ok":
+        found = replace(
+            found, status="not checked", basis=f"{found.basis}; needs {' and '.join(lacking)}", needs=lacking
+        )
+    yield found
+    if not lacking or lacking == ("pipe_wall.shut_in_pressure",):
+        yield _surge(state, walls, pressures["running"], limits, inputs)
+
+
+def _worst_wall(state: LineState, allowed: list[tuple[float, str]], pressures: dict[str, Array]) -> Check:
+    """Judge the pipe nearest its limit; one with nothing left of its wall is the worst there is."""
+    limits = np.array(
+        [np.inf if key not in METHOD_KEYS else 1e-300 if np.isnan(limit) else limit for limit, key in allowed]
+    )
     every = np.stack(list(pressures.values()))
-    ratio = every / np.where(np.isnan(limits), 1e-300, limits)
+    ratio = every / limits
     which, worst = (int(place) for place in np.unravel_index(int(ratio.argmax()), ratio.shape))
     basis = f"{list(pressures)[which]}, {state.named(worst)}; {PEOPLE}"
-    value, limit = float(every[which, worst]), float(limits[worst])
+    value, (limit, source) = float(every[which, worst]), allowed[worst]
     if np.isnan(limit):
-        said = f"{basis}; nothing is left of the wall after its allowances, or it is too thick for the form"
-        yield Check("pipe_wall", "fail", value, None, "Pa", said, source=allowed[worst][1])
-        return
-    found = at_most("pipe_wall", value, value, limit, "Pa", basis, allowed[worst][1])
-    key = "pipe_wall.shut_in_pressure"
-    if "shut in" not in pressures and found.status == "ok":
-        found = replace(found, status="not checked", basis=f"{basis}; the shut-in line needs {key}", needs=(key,))
-    yield found
-    yield _surge(state, walls, pressures["running"], limits, inputs)
+        said = f"{basis}; nothing is left of the wall after its allowances"
+        return Check("pipe_wall", "fail", value, None, "Pa", said, source=source)
+    return at_most("pipe_wall", value, value, limit, "Pa", basis, source)
 
 
 def _surge(state: LineState, walls: tuple[Wall, ...], running: Array, limits: Array, inputs: WallInputs) -> Check:

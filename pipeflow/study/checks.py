@@ -54,6 +54,10 @@ def checks(case: Case, line: LineFlow) -> Iterator[Check]:
     moving = state.moving(MAXIMUM)
     if case.solids is not None and state.moving(MINIMUM):
         yield from _solids(case, state)
+    elif case.solids is not None:
+        yield Check(
+            "deposition", "caution", 0.0, None, "m/s", "at rest at minimum flow: solids settle, and pack with time"
+        )
     margin = margin_check(state) if state.moving(MINIMUM) else None
     if margin is not None:
         yield margin

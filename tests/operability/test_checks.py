@@ -191,6 +191,30 @@ def test_a_wall_that_lacks_an_input_does_not_pass(wall, needs):
     assert checks(more=f"pipe_wall: {wall}")["pipe_wall"].needs == (needs,)
 
 
+def test_a_pipe_that_fails_is_told_though_another_lacks_an_input():
+    more = "pipe_wall: {code: B31.3, allowable_stress: 5 MPa, wear_allowance: 5 mm, shut_in_pressure: 3 MPa}"
+    assert checks(size="OD 160 SDR 11", more=more)["pipe_wall"].status == "fail"
+
+
+def test_a_wall_beyond_the_form_needs_a_rating():
+    more = "pipe_wall: {code: B31.3, allowable_stress: 138 MPa, shut_in_pressure: 1 MPa}"
+    found = checks(size="NPS 1/2 Sch XXS", flow="0.1 m3/h", more=more)["pipe_wall"]
+    assert found.needs == ("pipe_wall.pressure_rating",)
+
+
+def test_a_worn_through_wall_fails():
+    more = "pipe_wall: {code: B31.4, yield_strength: 240 MPa, wear_allowance: 9 mm, shut_in_pressure: 1 MPa}"
+    found = checks(more=more)["pipe_wall"]
+    assert found.status == "fail"
+    assert "nothing is left of the wall" in found.basis
+
+
+def test_at_rest_solids_settle():
+    found = checks(flow="{minimum: 0 m3/h, design: 100 m3/h}", solids=SOLIDS)["deposition"]
+    assert found.status == "caution"
+    assert "at rest" in found.basis
+
+
 def test_polyethylene_is_held_to_its_derated_rating():
     more = "pipe_wall: {code: B31.3, allowable_stress: 138 MPa, shut_in_pressure: 500 kPa%s}"
     assert checks(size="OD 160 SDR 11", more=more % "")["pipe_wall"].needs == ("pipe_wall.pressure_rating",)
