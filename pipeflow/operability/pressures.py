@@ -93,9 +93,19 @@ class WallInputs:
         return float(pressure_b31_3(left, outside, self.allowable_stress, **factors)), B31_3.key
 
 
-def raw_profile(state: LineState, pump_position: int) -> Profile:
-    """Pressures of the line run full, whatever the high points ask for."""
-    return profile(state.line, state.fluid, state.route, state.source, state.destination, pump_position=pump_position)
+def profile_of(state: LineState, pump_position: int, absolute: tuple[float, float] | None = None) -> Profile:
+    """Pressures of the line run full; with the atmosphere and the vapour pressure, Pa, as its high points ask for."""
+    atmosphere, vapour = absolute or (None, None)
+    return profile(
+        state.line,
+        state.fluid,
+        state.route,
+        state.source,
+        state.destination,
+        pump_position=pump_position,
+        atmospheric_pressure=atmosphere,
+        vapour_pressure=vapour,
+    )
 
 
 def lowest_pressure_check(

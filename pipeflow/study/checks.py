@@ -20,7 +20,7 @@ from pipeflow.operability.pressures import (
     WallInputs,
     lowest_pressure_check,
     pressures_by_pipe,
-    raw_profile,
+    profile_of,
     wall_checks,
 )
 from pipeflow.operability.product import heating_check, shear_checks
@@ -179,13 +179,14 @@ def _pressures(case: Case, state: LineState) -> Iterator[Check]:
         yield not_checked("pipe_wall", ("pipe_wall",), "Pa", "pressure of the wall")
         if case.site is None and vapour is None:
             return
-    position = pump_position(case)
-    found = raw_profile(state, position)
+    position, atmosphere = pump_position(case), atmospheric_pressure(case)
     if case.pipe_wall is not None:
+        absolute = None if atmosphere is None or vapour is None else (atmosphere, vapour)
+        found = profile_of(state, position, absolute)
         inputs = WallInputs(**vars(case.pipe_wall))
         pressures = pressures_by_pipe(state, found, stopped_line(case), inputs, position)
         yield from wall_checks(state, walls_of(case, state), pressures, inputs)
-    lowest = lowest_pressure_check(state, found, atmospheric_pressure(case), vapour)
+    lowest = lowest_pressure_check(state, profile_of(state, position), atmosphere, vapour)
     if lowest is not None:
         yield lowest
 

@@ -264,3 +264,16 @@ def test_the_word_of_comfort_is_never_used():
     result = solve(load_text(CASE.format(rheology=PASTE, flow="100 m3/h", size="NPS 6 Sch 40", hold="9 s",
                                          more=WALL % "1 MPa", solids=SOLIDS)))  # fmt: skip
     assert not any(re.search(r"\bsafe\b", check.basis) for check in result.checks)
+
+
+def test_a_high_point_raises_the_pressure_of_the_wall_before_it():
+    hill = CASE.replace("rise: -2 m", "rise: 18 m").replace("rise: 10 m", "rise: -40 m")
+    wall = "pipe_wall: {code: B31.3, allowable_stress: 138 MPa}\n"
+    given = {"rheology": WATERY, "flow": "40 m3/h", "size": "NPS 6 Sch 40", "hold": "1 s"}
+    solids = "  liquid: {vapour_pressure: 3 kPa}\n"
+    blind, told = (
+        {check.name: check for check in solve(load_text(hill.format(**given, more=more, solids=solids))).checks}
+        for more in (wall, wall + "site: {altitude: 0 m}\n")
+    )
+    assert told["pipe_wall"].value > blind["pipe_wall"].value + 1e4
+    assert told["lowest_pressure"].status == "fail"
