@@ -173,6 +173,8 @@ NUMBER: Final = r"[+-]?(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?"
 
 _QUANTITY: Final = re.compile(rf"({NUMBER})[ ]*(.*)", re.DOTALL)
 _RANGE: Final = re.compile(rf"({NUMBER})[ ]*\.\.[ ]*({NUMBER})[ ]*(.*)", re.DOTALL)
+_DECIMAL_COMMA: Final = re.compile(r"[+-]?(?:0*,[0-9]+|[0-9]+,(?![0-9]{3}(?![0-9]))[0-9]+)(?![0-9.,])")
+"""Digits and a comma that cannot be a thousands mark."""
 _TYPOGRAPHY: Final = str.maketrans("³²·⋅*μ⁻¹", "32...µ-1")
 
 
@@ -281,6 +283,21 @@ def echo(text: str) -> str:
     return f"'{shown}'" if len(shown) <= ECHO_LENGTH else f"'{shown[: ECHO_LENGTH - 1]}…'"
 
 
+def number_advice(text: str) -> str:
+    """Say how the number at the start of a text with a comma or a space in it is written instead.
+
+    Examples
+    --------
+    >>> number_advice("0,9 mPa.s")
+    'numbers have a decimal point: 0.9 mPa.s'
+    >>> number_advice("1,420 kg/m3")
+    'numbers have a decimal point and no thousands mark, as 1234.5'
+    """
+    is_sure = _DECIMAL_COMMA.match(text) and len(text) <= ECHO_LENGTH
+    meant = echo(text.replace(",", ".", 1))[1:-1]
+    return f"numbers have a decimal point{f': {meant}' if is_sure else ' and no thousands mark, as 1234.5'}"
+
+
 @cache
 def accepted(*dimensions: str) -> str:
     """List the units an error offers for a dimension, the commonest first."""
@@ -321,7 +338,7 @@ def _wrong_unit(text: str, written: str, normal: str, dimensions: tuple[str, ...
         return f"found {echo(text)} without a unit; give one of {accepted(*dimensions)}"
     found = f"found {echo(text)}"
     if re.match(r",|[ ]*[0-9]+([ ,.]|$)", written):
-        return f"{found}; numbers have a decimal point and no thousands mark, as 1234.5"
+        return f"{found}; {number_advice(text)}"
     hints = _HINTS | _ABSOLUTE_HINTS if "absolute pressure" in dimensions else _HINTS
     if normal in hints:
         return f"{found}; {hints[normal]}; units that fit: {accepted(*dimensions)}"

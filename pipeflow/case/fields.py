@@ -26,6 +26,7 @@ SMALLEST, LARGEST = 1e-15, 1e15
 """Sizes of an SI value beyond which the figure is a slip, and the arithmetic would overflow."""
 
 _NUMBER = re.compile(units.NUMBER)
+_COMMA = re.compile(r"[+-]?[0-9]*(,[0-9]+)+")
 
 
 @dataclass(frozen=True)
@@ -135,6 +136,8 @@ def read_range(value: object) -> tuple[float, float]:
 def read_number(value: object) -> float:
     """Read a bare number."""
     scalar = _scalar(value, "a bare number")
+    if scalar.plain and _COMMA.fullmatch(scalar.text):
+        raise said(f"found {units.echo(scalar.text)}; {units.number_advice(scalar.text)}")
     if not (scalar.plain and _NUMBER.fullmatch(scalar.text)):
         raise said(f"found {units.echo(scalar.text)}; a bare number is needed (no unit, no quotes)")
     number = float(scalar.text)

@@ -6,17 +6,20 @@ of YAML can change a number or a name in silence.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+import re
+from dataclasses import dataclass, field, replace
 from functools import cached_property
 from typing import Any
 
 import yaml
 
-from pipeflow.units import echo
+from pipeflow.units import echo, number_advice
 
 MAX_DEPTH = 12
 NAME_KEYS = ("pipe", "equipment", "name")
 _CORE_TAG = "tag:yaml.org,2002:"
+_DIGITS = re.compile(r"[+-]?[0-9]*(,[0-9]+)*")
+_REST = re.compile(r"[0-9][^_]*", re.DOTALL)
 _NULLS = ("", "~", "null", "Null", "NULL")
 _LOADER: Any = getattr(yaml, "CSafeLoader", yaml.SafeLoader)
 
@@ -209,6 +212,8 @@ class _Builder:
         if isinstance(key, Scalar) and key.faulty:
             mapping.faulty = True
             return
+        if isinstance(key, Scalar) and self._is_rest_of_number(mapping, key, value):
+            return
         fault = _fault_of_key(mapping, key)
         if fault is not None or not isinstance(key, Scalar):
             mapping.faulty |= isinstance(key, Scalar) and key.text == "<<"
@@ -216,6 +221,29 @@ class _Builder:
             return
         mapping.keys[key.text] = key
         mapping.values[key.text] = value
+
+
+    def _is_rest_of_number(self, mapping: Mapping, key: Scalar, value: Node) -> bool:
+        """Find a number with a comma in it, which in a ``{...}`` ends the value: what follows stands as a key."""
+        last, before = next(reversed(mapping.values.items()), ("", None))
+        if not (isinstance(before, Scalar) and isinstance(value, Scalar) and _touches(before, key)):
+            return False
+        if last in NAME_KEYS or not (value.is_null and _REST.fullmatch(key.text) and _DIGITS.fullmatch(before.text)):
+            return False
+        if "," in before.text:
+            self.findings.pop()
+        self._open[-1].key = mapping.keys[last]
+        whole = replace(before, text=f"{before.text},{key.text}", faulty=True)
+        mapping.values[last] = whole
+        message = f"found {echo(whole.text)}; {number_advice(whole.text)}"
+        self.findings.append(Finding(whole.line, whole.column, self._path(), message))
+        return True
+
+
+def _touches(before: Scalar, key: Scalar) -> bool:
+    """Whether nothing but a comma can stand between a value and the key after it."""
+    both_plain = before.plain and key.plain
+    return both_plain and (before.line, before.column + len(before.text) + 1) == (key.line, key.column)
 
 
 def _fault_of_key(mapping: Mapping, key: Node) -> str | None:

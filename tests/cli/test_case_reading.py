@@ -385,3 +385,26 @@ def test_a_misspelt_part_is_one_fault_though_scenarios_change_it() -> None:
     assert refusal(GOOD.replace("fluid:", "fliud:", 1)) == ["4:1 fliud"]
     assert refusal(GOOD.replace("limits:", "limits: *l\nx:")) == ["34:9 limits", "35:1 x"]
     assert refusal(GOOD.replace("- pipe: disch", "- pip: disch")) == ["27:5 route[3]"]
+
+
+@pytest.mark.parametrize(
+    ("written", "told"),
+    [
+        ("diameter: 0,1 m", "7:25 route[p].diameter"),
+        ("diameter: 100 mm, fittings: {elbow_90: 2,5, exit: 1}", "7:54 route[p].fittings.elbow_90"),
+        ("diameter: 1,234,567 mm", "7:25 route[p].diameter"),
+        ("diameter: -1,5 m", "7:25 route[p].diameter"),
+    ],
+)
+def test_a_comma_in_a_number_of_a_flow_map_is_one_fault(written: str, told: str) -> None:
+    assert refusal(SMALL.strip().replace("diameter: 100 mm", written)) == [told]
+
+
+@pytest.mark.parametrize(
+    "written", ["loss_coefficient: 2, 45 mm", "fittings: {exit: 1,45_elbow}", "loss_coefficient: '2',5"]
+)
+def test_a_key_that_continues_no_number_is_told_as_a_key(written: str) -> None:
+    text = SMALL.replace("length:", f"{written}, length:")
+    with pytest.raises(InputError) as caught:
+        load_text(text)
+    assert "decimal point" not in str(caught.value)
