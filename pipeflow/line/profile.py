@@ -114,6 +114,17 @@ class Profile:
     central: GradeLine
     upper: GradeLine
 
+    def along_route(self, grade: GradeLine, density: FloatOrArray) -> Array:
+        """Gauge pressure at the nodes of the route, Pa; at its end not below what the vessel gives there.
+
+        Without an exit among the fittings the static pressure of the end lies the velocity head below that, which is no
+        suction.
+        """
+        column = np.asarray(density) * STANDARD_GRAVITY * (self.elevation[..., -1] - self.elevation[..., -2])
+        pressure = grade.pressure[..., 1:-1].copy()
+        pressure[..., -1] = np.maximum(pressure[..., -1], grade.pressure[..., -1] + column)
+        return pressure
+
     @property
     def highest_point(self) -> Indices:
         """Index of the highest node of the route."""

@@ -11,6 +11,7 @@ from pipeflow.arrays import Array
 from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.line.elements import Pipe
 from pipeflow.line.profile import Profile, profile
+from pipeflow.line.site import SEA_LEVEL_PRESSURE
 from pipeflow.operability.limits import at_most, not_checked
 from pipeflow.operability.pipe_wall import (
     B31_3,
@@ -115,11 +116,14 @@ def lowest_pressure_check(
 
     ``atmosphere`` and ``vapour`` are absolute, Pa. Without them only a line that falls below the atmosphere is told.
     """
-    pressure = found.central.pressure[:, 1:-1]
+    pressure = found.along_route(found.central, state.density).round(6)
     flow, node = np.unravel_index(int(pressure.argmin()), pressure.shape)
     value = float(pressure[flow, node])
     needs = tuple(key for key, one in (("site", atmosphere), ("fluid.liquid.vapour_pressure", vapour)) if one is None)
     at = f"gauge, of the full line, at {found.nodes[int(node) + 1]}"
+    if value <= -SEA_LEVEL_PRESSURE and (atmosphere is None or vapour is None):
+        basis = f"{at}; no line holds less than a vacuum: it runs slack"
+        return Check("lowest_pressure", "fail", value, -SEA_LEVEL_PRESSURE, "Pa", basis, sense="at least")
     if atmosphere is None or vapour is None:
         return not_checked("lowest_pressure", needs, "Pa", at, value) if value < 0 or len(needs) == 1 else None
     limit = vapour - atmosphere
@@ -142,9 +146,8 @@ def pressures_by_pipe(
     after_pump = np.array(at) >= pump_position
     pressures = {"running": running}
     if stopped is not None:
-        behind = np.cumsum(stopped.yielding(state)[::-1])[::-1]
-        held = behind + float(state.destination.pressure) + weight * (elevation[-1] - lowest)
-        pressures["at restart"] = np.where(after_pump, held, -np.inf)
+        demand = stopped.demand(state)
+        pressures["at restart"] = np.where(after_pump, np.maximum(demand[:-1], demand[1:]), -np.inf)
     if inputs.shut_in_pressure is not None:
         shut = inputs.shut_in_pressure + weight * (elevation[2 + 2 * pump_position - 1] - lowest)
         pressures["shut in"] = np.where(after_pump, shut, -np.inf)
@@ -175,9 +178,7 @@ def wall_checks(
 
 def _worst_wall(state: LineState, allowed: list[tuple[float, str]], pressures: dict[str, Array]) -> Check:
     """Judge the pipe nearest its limit; one with nothing left of its wall is the worst there is."""
-    limits = np.array(
-        [np.inf if key not in METHOD_KEYS else 1e-300 if np.isnan(limit) else limit for limit, key in allowed]
-    )
+    limits = np.array([_or_extreme(limit, key) for limit, key in allowed])
     every = np.stack(list(pressures.values()))
     ratio = every / limits
     which, worst = (int(place) for place in np.unravel_index(int(ratio.argmax()), ratio.shape))
@@ -187,6 +188,11 @@ def _worst_wall(state: LineState, allowed: list[tuple[float, str]], pressures: d
         said = f"{basis}; nothing is left of the wall after its allowances"
         return Check("pipe_wall", "fail", value, None, "Pa", said, source=source)
     return at_most("pipe_wall", value, value, limit, "Pa", basis, source)
+
+
+def _or_extreme(limit: float, key: str) -> float:
+    """Put a limit that is not known beyond any pressure, and that of a wall worn through below."""
+    return 1e100 if key not in METHOD_KEYS else 1e-100 if np.isnan(limit) else limit
 
 
 def _surge(state: LineState, walls: tuple[Wall, ...], running: Array, limits: Array, inputs: WallInputs) -> Check:

@@ -80,10 +80,23 @@ class Stopped:
             state.length, state.diameter, self.static_yield_stress, state.laminar_resistance
         )
 
+    def demand(self, state: LineState) -> Array:
+        """Gauge pressure asked for at the start of each pipe to move the full line, Pa; the last is that at its end.
+
+        From the end backwards; a crest asks for no less than the atmosphere, since no siphon draws a stopped line on.
+        """
+        weight = state.density * STANDARD_GRAVITY
+        last = state.destination
+        demand = [float(last.pressure + weight * np.asarray(last.head_of_level))]
+        for pipe, yielding in zip(reversed(state.pipes), reversed(self.yielding(state)), strict=True):
+            demand.append(max(demand[-1] + float(yielding) + weight * float(pipe.rise), 0.0))
+        return np.array(demand[::-1])
+
     def required(self, state: LineState) -> float:
-        """Pressure to restart the full line, with its static head, Pa."""
-        static = state.density * STANDARD_GRAVITY * float(state.line.static_head[state.maximum])
-        return float(self.yielding(state).sum()) + static
+        """Pressure the pump must add to restart the full line, Pa."""
+        source = state.source
+        given = float(source.pressure) + state.density * STANDARD_GRAVITY * float(source.level)
+        return float(self.demand(state)[0]) - given
 
     @property
     def said(self) -> str:
@@ -96,7 +109,8 @@ def restart_checks(state: LineState, stopped: Stopped, credited: float | None) -
     """Hold the pressure that restarts the line against the pump's credit, Pa, and the suction side to the source."""
     value = stopped.required(state)
     basis = (
-        f"4 L tau_s/D of the full line, {stopped.said}, times {stopped.factor:g} (common practice), and the static head"
+        f"4 L tau_s/D of the full line, {stopped.said}, times {stopped.factor:g} (common practice), and its rise to "
+        "the end or to a crest, whichever asks for more"
     )
     if credited is None:
         yield not_checked("restart_pressure", ("limits.restart_pressure",), "Pa", basis, value, RESTART.key)

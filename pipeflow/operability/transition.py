@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import replace
 
 import numpy as np
 
@@ -67,17 +68,30 @@ def margins(velocity: Array, pipes: PipeFlow) -> Array:
 
 
 def margin_check(state: LineState) -> Check | None:
-    """Hold the minimum flow away from the transition; closer than the margin is a caution."""
+    """Hold every flow of the range away from the transition; closer than the margin, or across it, is a caution."""
+    places = dict.fromkeys((state.minimum, 0, state.maximum))
     with np.errstate(divide="ignore", invalid="ignore"):
-        each = margins(state.line.velocity, state.line.pipes)[state.minimum]
+        each = margins(state.line.velocity, state.line.pipes)[list(places)]
     if np.all(np.isnan(each)):
         return None
-    worst = int(np.nanargmin(each))
-    regime = Regime(int(state.regimes(state.minimum)[worst])).name.lower()
-    pipe, velocity = state.line.pipes, float(state.line.velocity[state.minimum, worst])
+    row, worst = (int(place) for place in np.unravel_index(int(np.nanargmin(each)), each.shape))
+    flow = list(places)[row]
+    name = {state.minimum: "minimum", state.maximum: "maximum"}.get(flow, "design")
+    regime = Regime(int(state.regimes(flow)[worst])).name.lower()
+    pipe, velocity = state.line.pipes, float(state.line.velocity[flow, worst])
+    across = [
+        pipe_name
+        for pipe_name, low, high in zip(
+            state.names, state.regimes(state.minimum), state.regimes(state.maximum), strict=True
+        )
+        if low == Regime.LAMINAR and high == Regime.TURBULENT
+    ]
     basis = (
-        f"{state.named(worst, 'minimum')}, {regime} at {velocity:.3g} m/s; laminar to "
-        f"{pipe.critical_velocity[state.minimum, worst]:.3g} m/s, turbulent from "
-        f"{pipe.turbulent_velocity[state.minimum, worst]:.3g} m/s; a factor of 1.2 from either is common practice"
+        f"{state.named(worst, name)}, {regime} at {velocity:.3g} m/s; laminar to "
+        f"{pipe.critical_velocity[flow, worst]:.3g} m/s, turbulent from "
+        f"{pipe.turbulent_velocity[flow, worst]:.3g} m/s; a factor of 1.2 from either is common practice"
     )
-    return at_least("transition_margin", float(each[worst]), 1.0 + MARGIN, "", basis, below="caution")
+    if across:
+        basis += f"; from minimum to maximum flow the transition is crossed in {', '.join(across)}"
+    found = at_least("transition_margin", float(each[row, worst]), 1.0 + MARGIN, "", basis, below="caution")
+    return replace(found, status="caution") if across else found

@@ -62,7 +62,7 @@ def _about_profile(profile: ProfileResult) -> Iterator[str]:
         places, governing = ", ".join(slack.share), slack.governed_by
         yield (
             f"slack flow: {places} partly filled behind {governing}, where the pressure would fall below {by}; the "
-            f"pump must give {slack.head_required:.4g} m, not {slack.head_without:.4g} m, nothing is recovered after"
+            f"pump must give {slack.head_required:.4g} m, not {slack.head_without:.4g} m; nothing is recovered after it"
         )
     elif profile.pump_head_upper < 0:
         spare = -profile.pump_head_upper

@@ -12,6 +12,7 @@ from pipeflow.line.catalogue import find_size
 from pipeflow.line.elements import Vessel
 from pipeflow.line.fittings import DEFAULT_METHOD
 from pipeflow.line.route import LineFlow
+from pipeflow.line.site import SEA_LEVEL_PRESSURE
 from pipeflow.operability.deposition import Solids, deposition_check
 from pipeflow.operability.entrance import entrance_check
 from pipeflow.operability.limits import at_least, at_most, not_checked
@@ -177,12 +178,9 @@ def _pressures(case: Case, state: LineState) -> Iterator[Check]:
     vapour = case.liquid.vapour_pressure if case.liquid else None
     if case.pipe_wall is None:
         yield not_checked("pipe_wall", ("pipe_wall",), "Pa", "pressure of the wall")
-        if case.site is None and vapour is None:
-            return
     position, atmosphere = pump_position(case), atmospheric_pressure(case)
     if case.pipe_wall is not None:
-        absolute = None if atmosphere is None or vapour is None else (atmosphere, vapour)
-        found = profile_of(state, position, absolute)
+        found = profile_of(state, position, (atmosphere or SEA_LEVEL_PRESSURE, vapour or 0.0))
         inputs = WallInputs(**vars(case.pipe_wall))
         pressures = pressures_by_pipe(state, found, stopped_line(case), inputs, position)
         yield from wall_checks(state, walls_of(case, state), pressures, inputs)

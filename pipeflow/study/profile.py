@@ -30,7 +30,7 @@ def profile_of(case: Case, line: LineFlow) -> ProfileResult:
     atmosphere, vapour = atmospheric_pressure(case), case.liquid.vapour_pressure if case.liquid else None
     missing = {"site": atmosphere, "fluid.liquid.vapour_pressure": vapour}
     found = _read(case, line, atmosphere, vapour)
-    impossible = found.central.slack is None and _lowest(found) < -SEA_LEVEL_PRESSURE
+    impossible = found.central.slack is None and _lowest(case, found) < -SEA_LEVEL_PRESSURE
     if impossible:
         found = _read(case, line, atmosphere or SEA_LEVEL_PRESSURE, vapour or 0.0)
     return ProfileResult(
@@ -39,7 +39,7 @@ def profile_of(case: Case, line: LineFlow) -> ProfileResult:
         pump_head_upper=float(found.upper.pump_head[DESIGN]),
         highest_point=str(found.nodes[int(found.highest_point[DESIGN])]),
         lowest_point=str(found.nodes[int(found.lowest_point[DESIGN])]),
-        lowest_pressure=_lowest(found),
+        lowest_pressure=_lowest(case, found),
         lowest_pressure_at=str(found.nodes[int(found.central.lowest_pressure[DESIGN])]),
         highest_pressure_at=str(found.nodes[int(found.upper.highest_pressure[DESIGN])]),
         slack=_slack(found, found.central),
@@ -54,9 +54,9 @@ def _read(case: Case, line: LineFlow, atmosphere: float | None, vapour: float | 
     return profile(line, case.fluid, case.route, *ends, atmospheric_pressure=atmosphere, vapour_pressure=vapour)
 
 
-def _lowest(found: Profile) -> float:
-    """Lowest gauge pressure along the route, Pa; its end is left out, where the pressure is the vessel's."""
-    return float(found.central.pressure[DESIGN, 1:-2].min())
+def _lowest(case: Case, found: Profile) -> float:
+    """Lowest gauge pressure along the route, Pa."""
+    return _without_rounding(found.along_route(found.central, case.fluid.density)[DESIGN].min())
 
 
 def _points(found: Profile) -> Iterator[ProfilePoint]:
