@@ -207,7 +207,9 @@ def fitting_keys() -> tuple[str, ...]:
     return tuple(row["key"] for row in table("fittings.csv"))
 
 
-Name = Annotated[str, BeforeValidator(Words(NAME_LENGTH, "a name"))]
+read_name = Words(NAME_LENGTH, "a name")
+
+Name = Annotated[str, BeforeValidator(read_name)]
 Text = Annotated[str, BeforeValidator(Words(TEXT_LENGTH, "a text", "\n\t"))]
 Number = Annotated[float, BeforeValidator(read_number)]
 Count = Annotated[float, Field(ge=0, le=10_000), BeforeValidator(read_number)]

@@ -39,6 +39,17 @@ def read_text_file(path: Path, most: int, what: str) -> str:
     return _text(content, path, what)
 
 
+def why_no_file(path: Path) -> str:
+    """Say why a path leads to no regular file; empty if it does. What the file holds is not looked at."""
+    try:
+        status = path.stat()
+    except (OSError, ValueError) as error:
+        return _why(error)
+    if stat.S_ISDIR(status.st_mode):
+        return "a directory"
+    return "" if stat.S_ISREG(status.st_mode) else "not a regular file"
+
+
 def refusal(path: Path | str, message: str, line: int | None = None, column: int | None = None) -> InputError:
     """Make the error that refuses a file."""
     return InputError([Problem(printable(str(path)), line, column, "", message)])

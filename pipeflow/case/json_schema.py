@@ -19,6 +19,7 @@ from pydantic.fields import FieldInfo
 from pipeflow import units
 from pipeflow.case.descriptions import DESCRIPTIONS
 from pipeflow.case.fields import (
+    NAME_LENGTH,
     Choice,
     FlowReader,
     Quantity,
@@ -203,6 +204,7 @@ class Writer:
         return {
             "type": "object",
             "maxProperties": MAX_SCENARIOS,
+            "propertyNames": {"pattern": r"\S", "maxLength": NAME_LENGTH},
             "additionalProperties": {
                 "type": "object",
                 "additionalProperties": False,

@@ -7,7 +7,7 @@ from pathlib import Path
 
 from pipeflow.case.building import build_case
 from pipeflow.case.checking import examine
-from pipeflow.case.files import printable, read_text_file
+from pipeflow.case.files import printable, read_text_file, refusal
 from pipeflow.case.model import Case
 from pipeflow.case.nodes import Finding, UnreadableError, read_tree
 from pipeflow.case.scenarios import read_scenarios
@@ -34,11 +34,16 @@ def load_case(path: str | Path) -> Case:
     InputError
         The file cannot be used; carries every problem found, in file order.
     """
+    if not str(path):
+        raise refusal("''", "an empty file name; a case is a file")
     return load_text(read_text_file(Path(path), MAX_BYTES, "a case"), str(path))
 
 
 def load_text(text: str, file: str = "case.yaml") -> Case:
-    """Read the text of a case file like :func:`load_case`; ``file`` is what errors and the case name."""
+    """Read the text of a case file like :func:`load_case`.
+
+    Errors and the case name ``file``, and paths in the text start from its folder; it need not be there itself.
+    """
     try:
         tree, notation = read_tree(text)
     except UnreadableError as error:

@@ -222,7 +222,6 @@ class _Builder:
         mapping.keys[key.text] = key
         mapping.values[key.text] = value
 
-
     def _is_rest_of_number(self, mapping: Mapping, key: Scalar, value: Node) -> bool:
         """Find a number with a comma in it, which in a ``{...}`` ends the value: what follows stands as a key."""
         last, before = next(reversed(mapping.values.items()), ("", None))

@@ -7,7 +7,10 @@ from dataclasses import dataclass, replace
 from difflib import get_close_matches
 from pathlib import Path
 
+from pydantic_core import PydanticCustomError
+
 from pipeflow.case.checking import examine
+from pipeflow.case.fields import read_name
 from pipeflow.case.nodes import Finding, Mapping, Node, Scalar, Sequence, join, kind, shown
 from pipeflow.case.schema import MAX_SCENARIOS, CasePart
 from pipeflow.units import echo
@@ -86,6 +89,10 @@ def _read_one(
     node, home = scenarios.values[name], join("scenarios", name)
     if node.faulty:
         return None, []
+    try:
+        read_name(scenarios.keys[name])
+    except PydanticCustomError as error:
+        return None, [Finding(scenarios.keys[name].line, scenarios.keys[name].column, home, error.message())]
     if not isinstance(node, Mapping):
         return None, [Finding(node.line, node.column, home, _map_needed(node, "changes by key path"))]
     if len(node.values) > MAX_CHANGES:

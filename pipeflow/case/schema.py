@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from pathlib import Path
 from typing import Annotated, Any, Final
 
 from pydantic import Discriminator, Field, Tag, ValidationInfo
@@ -23,6 +24,7 @@ from pipeflow.case.fields import (
     needs,
     said,
 )
+from pipeflow.case.files import why_no_file
 from pipeflow.case.fluid_part import FluidPart
 from pipeflow.case.limits_part import LimitsPart, PipeWallPart, RestartPart
 from pipeflow.case.part import FAILED, InputPart, Part
@@ -64,7 +66,9 @@ def _in_order(value: FlowValue | None, info: ValidationInfo) -> FlowValue | None
     if lower is None or value is None:
         return value
     if lower.is_mass != value.is_mass:
-        raise at_odds(f"'{key}' is given otherwise; all mass flows or all volume flows are needed")
+        kinds = ("a volume flow", "a mass flow")
+        this, other = kinds[value.is_mass], kinds[lower.is_mass]
+        raise at_odds(f"this is {this}, but '{key}' is {other}; give all of them by mass or all by volume")
     if lower.value > value.value:
         raise at_odds(f"less than '{key}'; minimum <= design <= maximum is needed")
     return value
@@ -190,7 +194,7 @@ class MethodsPart(Part):
         if value is None or fluid is None:
             return value
         known = TURBULENT if info.field_name == "turbulent" else CRITERIA
-        model = fluid.rheology.model
+        model = fluid.rheology.model or fluid.rheology.rheology().key
         if model not in known[value].models:
             fitting = ", ".join(key for key, method in known.items() if model in method.models)
             raise at_odds(f"not made for {model} fluids; those that are: {fitting}")
@@ -215,6 +219,14 @@ class PumpPart(Part):
     speed: Speed | None = None
     curve_speed: Speed | None = None
     curve: Name
+
+    @check("curve")
+    @classmethod
+    def _is_there(cls, value: str, info: ValidationInfo) -> str:
+        why = why_no_file((info.context or {}).get("folder", Path()) / value)
+        if why:
+            raise at_odds(f"{why}; the path of a file is needed, from the folder of the case file")
+        return value
 
 
 class CasePart(Part):

@@ -21,7 +21,8 @@ from pipeflow.case.schema import MAX_ELEMENTS, MAX_SCENARIOS, METHOD_KEYS
 from pipeflow.line.catalogue import MATERIALS, size_names, table
 from pipeflow.units import UNITS
 
-PAGE = Path(__file__).parents[2] / "docs" / "case-file.md"
+HERE = Path(__file__).parent
+PAGE = HERE.parents[1] / "docs" / "case-file.md"
 
 
 def text() -> str:
@@ -111,7 +112,7 @@ def test_the_bounds_of_the_page_are_those_of_the_program() -> None:
 def test_the_example_is_a_case() -> None:
     example = re.search(r"```yaml\n(.*?)```", text(), re.DOTALL)
     assert example is not None
-    case = load_text(example.group(1))
+    case = load_text(example.group(1), str(HERE / "case.yaml"))
     assert list(case.scenarios) == ["thick", "rough"]
 
 
@@ -121,7 +122,7 @@ def test_the_pieces_shown_are_parts_of_cases() -> None:
     for piece in pieces:
         given = re.findall(r"(?m)^(\w+):", piece)
         rest = [block for block in re.split(r"(?m)^(?=\w)", first) if block.split(":")[0] not in [*given, "scenarios"]]
-        case = load_text(piece + "".join(rest))
+        case = load_text(piece + "".join(rest), str(HERE / "case.yaml"))
         assert case.title == "Thickener underflow to filter feed tank"
 
 
@@ -130,7 +131,7 @@ def test_the_change_of_size_shown_is_one() -> None:
     change = re.search(r"`(\{\"route.*?\})`", text(), re.DOTALL)
     assert example is not None
     assert change is not None
-    case = load_text(f"{example.group(1)}  wide: {change.group(1)}\n")
+    case = load_text(f"{example.group(1)}  wide: {change.group(1)}\n", str(HERE / "case.yaml"))
     assert case.scenarios["wide"].sizes["discharge line"] == "NPS 10 Sch 40"
 
 

@@ -28,7 +28,8 @@ from pipeflow.rheology import (
 )
 from pipeflow.study import solve
 
-GOOD = (Path(__file__).parent / "good.yaml").read_text(encoding="utf-8")
+HERE = Path(__file__).parent
+GOOD = (HERE / "good.yaml").read_text(encoding="utf-8")
 SMALL = """
 title: Small line
 fluid:
@@ -52,7 +53,7 @@ def pipe(case: Case, place: int = 0) -> Pipe:
 
 def refusal(text: str) -> list[str]:
     with pytest.raises(InputError) as caught:
-        load_text(text)
+        load_text(text, str(HERE / "case.yaml"))
     return [f"{problem.line}:{problem.column} {problem.key_path}" for problem in caught.value.problems]
 
 
@@ -408,3 +409,66 @@ def test_a_key_that_continues_no_number_is_told_as_a_key(written: str) -> None:
     with pytest.raises(InputError) as caught:
         load_text(text)
     assert "decimal point" not in str(caught.value)
+
+
+@pytest.mark.parametrize(
+    ("curve", "told"),
+    [
+        ("curves/a.csv", None),
+        ("a.csv", "no such file"),
+        ("curves", "a directory"),
+        ("/dev/null", "not a regular file"),
+        ("curves/a.csv/b.csv", "cannot be read: Not a directory"),
+    ],
+)
+def test_the_curve_of_a_pump_is_a_file_from_the_folder_of_the_case(
+    tmp_path: Path, curve: str, told: str | None
+) -> None:
+    (tmp_path / "curves").mkdir()
+    (tmp_path / "curves" / "a.csv").write_text("")
+    path = tmp_path / "case.yaml"
+    path.write_text(f"{SMALL}pumps:\n  - {{name: A, kind: centrifugal, curve: {curve}}}\n")
+    if told is None:
+        assert load_case(path).pumps[0].curve == curve
+        return
+    with pytest.raises(InputError) as caught:
+        load_case(path)
+    (problem,) = caught.value.problems
+    assert problem.message.startswith(f"found '{curve}'; {told}; the path of a file is needed")
+    assert (problem.line, problem.key_path) == (10, "pumps[A].curve")
+
+
+def test_the_curve_a_scenario_names_is_looked_for_too() -> None:
+    text = GOOD.replace("  rough: {", '  rough: {"pumps[candidate A].curve": b.csv, ')
+    assert refusal(text) == ["48:39 scenarios.rough.pumps[candidate A].curve"]
+
+
+ODD = {"escape": "\x1b", "zero width": "\u200b", "right to left": "\u202e", "isolate": "\u2066", "soft hyphen": "\xad"}
+
+
+@pytest.mark.parametrize("char", ODD.values(), ids=ODD)
+@pytest.mark.parametrize(
+    "text",
+    [
+        SMALL.replace("pipe: p", 'pipe: "a?"'),
+        SMALL.replace("Small line", '"a?"'),
+        SMALL + 'scenarios: {"a?": {}}\n',
+        SMALL + 'pumps: [{name: "a?", kind: centrifugal, curve: good.yaml}]\n',
+    ],
+    ids=["pipe", "title", "scenario", "pump"],
+)
+def test_a_character_nobody_sees_is_refused_in_a_name_and_shown_escaped(text: str, char: str) -> None:
+    escaped = f"\\u{ord(char):04x}"
+    with pytest.raises(InputError) as caught:
+        load_text(text.replace("?", escaped), str(HERE / "case.yaml"))
+    message = str(caught.value)
+    shown = char.encode("unicode_escape").decode()
+    assert f"found the character '{shown}' in the text" in message
+    assert message.isprintable()
+
+
+@pytest.mark.parametrize(("name", "told"), [("''", "no value"), ("' '", "no value"), ("x" * 101, "found 101 char")])
+def test_the_name_of_a_scenario_is_a_name(name: str, told: str) -> None:
+    with pytest.raises(InputError) as caught:
+        load_text(f"{SMALL}scenarios: {{{name}: {{}}}}\n")
+    assert told in str(caught.value)

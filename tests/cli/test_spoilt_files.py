@@ -6,6 +6,7 @@ reads. After a wanted change of wording run this file as a program, and read the
 
 from __future__ import annotations
 
+import contextlib
 import os
 import re
 import time
@@ -31,7 +32,7 @@ PLACE = re.compile(r"[^:\n]+\.yaml:[1-9][0-9]*:[1-9][0-9]*  ")
 
 
 def answer(path: Path) -> list[str]:
-    with pytest.raises(InputError) as caught:
+    with contextlib.chdir(HERE), pytest.raises(InputError) as caught:
         load_text(path.read_text(encoding="utf-8"), path.name)
     return str(caught.value).splitlines()
 
@@ -43,7 +44,7 @@ def name(path: Path) -> str:
 def test_the_case_they_were_spoilt_from_is_good() -> None:
     case = load_case(HERE / "good.yaml")
     assert list(case.scenarios) == ["thick", "rough"]
-    assert len(SPOILT) == 94
+    assert len(SPOILT) == 97
 
 
 @pytest.mark.parametrize("path", SPOILT, ids=name)
@@ -95,6 +96,12 @@ def test_no_such_file(tmp_path: Path) -> None:
     assert problem_of(tmp_path / "none.yaml") == "  no such file"
 
 
+def test_an_empty_name() -> None:
+    with pytest.raises(InputError) as caught:
+        load_case("")
+    assert str(caught.value) == "''  an empty file name; a case is a file"
+
+
 def test_a_directory(tmp_path: Path) -> None:
     assert problem_of(tmp_path) == "  a directory; a case is a file"
 
@@ -131,6 +138,7 @@ def test_a_file_of_10_megabytes_is_not_read(tmp_path: Path) -> None:
 
 def test_the_largest_file_is_still_read(tmp_path: Path) -> None:
     good = (HERE / "good.yaml").read_bytes()
+    (tmp_path / "candidate-a.csv").touch()
     path = tmp_path / "large.yaml"
     path.write_bytes(good + b"#" * (MAX_BYTES - len(good)))
     assert load_case(path).title == "Thickener underflow to filter feed tank"

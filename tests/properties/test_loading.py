@@ -19,7 +19,8 @@ from pipeflow.case.model import Case
 from pipeflow.errors import InputError
 from pipeflow.line.elements import Equipment, Pipe
 
-GOOD = (Path(__file__).parents[1] / "cli" / "good.yaml").read_text(encoding="utf-8")
+FILE = Path(__file__).parents[1] / "cli" / "good.yaml"
+GOOD = FILE.read_text(encoding="utf-8")
 LINES = GOOD.splitlines()
 WORDS = sorted(set(GOOD.replace(":", " ").replace(",", " ").split()))
 
@@ -41,7 +42,7 @@ VALUES = (
 
 def outcome(text: str) -> Case | InputError:
     try:
-        return load_text(text)
+        return load_text(text, str(FILE))
     except InputError as error:
         return error
 
