@@ -118,7 +118,7 @@ def fit(
 
 def _print_fit(file: str, result: FitResult, as_json: bool) -> None:
     if as_json:
-        from pipeflow.report.fit_document import fit_document
+        from pipeflow.study.fit_document import fit_document
 
         _print_json(fit_document(file, result))
     else:

@@ -17,6 +17,7 @@ from pipeflow.study.result import (
     SlackResult,
     Totals,
 )
+from pipeflow.study.rheology_document import rheology_document
 from pipeflow.verdict import Check
 
 _UNITS = {
@@ -75,6 +76,7 @@ def document(result: Result) -> dict[str, Any]:
         "profile": _profile(result.profile),
         "checks": [_fields(check) for check in result.checks],
         "cautions": list(result.cautions),
+        **rheology_document(case, result.rheology),
         "methods": [_method(use) for use in result.methods],
         "safety_notice": SAFETY_NOTICE,
     }

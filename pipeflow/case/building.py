@@ -57,6 +57,7 @@ def build_case(part: CasePart, file: str) -> Case:
         default_roughness={pipe.pipe: _material(pipe) for pipe in pipes if pipe.roughness is None},
         tested_shear_rate=part.fluid.rheology.tested,
         fitted=part.fluid.rheology.result if isinstance(part.fluid.rheology, FlowCurvePart) else None,
+        readings=(part.fluid.rheology.flow_curve,) if isinstance(part.fluid.rheology, FlowCurvePart) else (),
         pumps=tuple(Pump(**pump.model_dump()) for pump in part.pumps),
         solids=solids,
         liquid=_liquid(part.fluid, solids),

@@ -162,6 +162,8 @@ class Case:
         Lowest and highest shear rate over which the rheology was measured, 1/s.
     fitted : FitResult, optional
         The fit behind the rheology, where the case names readings.
+    readings : tuple of str
+        Their files.
     temperature : float, optional
         Temperature of the fluid, K.
     specific_heat : float, optional
@@ -194,6 +196,7 @@ class Case:
     default_roughness: dict[str, str] = field(default_factory=dict)
     tested_shear_rate: tuple[float, float] | None = None
     fitted: FitResult | None = None
+    readings: tuple[str, ...] = ()
     pumps: tuple[Pump, ...] = ()
     solids: Solids | None = None
     liquid: Liquid | None = None

@@ -117,7 +117,7 @@ class TurbulentMethod:
 ALL_MODELS = frozenset(
     {
         "newtonian", "power-law", "bingham", "herschel-bulkley", "casson",
-        "cross", "carreau", "sisko", "ellis", "robertson-stiff",
+        "cross", "carreau", "sisko", "ellis", "robertson-stiff", "tangent",
     }
 )  # fmt: skip
 

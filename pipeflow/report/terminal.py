@@ -10,6 +10,7 @@ from shutil import get_terminal_size
 from pipeflow.case.model import Case, Liquid, Solids
 from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.line.elements import Pipe
+from pipeflow.report.rheology_lines import rheology_lines
 from pipeflow.report.text import WIDTH, paragraph, table
 from pipeflow.rheology import Rheology
 from pipeflow.study.flows import dry_solids_flow
@@ -127,6 +128,7 @@ class _Page:
         self.heading("Totals")
         self.rows(("", "central", "upper", ""), _totals(result), words=(0, 3))
         self.spread(result)
+        self.rheology(result)
         self.profile(result)
         self.checks(result, brief=base is not None)
         said = base.cautions if base else ()
@@ -143,6 +145,10 @@ class _Page:
         if result.spread.left_out:
             reasons = "; ".join(f"{key}, {why}" for key, why in result.spread.left_out.items())
             self.text(f"Not in the upper figure: {reasons}.", mark="  ")
+
+    def rheology(self, result: Result) -> None:
+        for line in rheology_lines(result, self.width):
+            self.line(line)
 
     def profile(self, result: Result) -> None:
         profile = result.profile

@@ -26,6 +26,13 @@ ARRHENIUS = Source(
     note="yield stresses often follow temperature less; the flow index hardly",
 )
 
+SOLIDS_LAWS = Source(
+    key="solids-laws",
+    title="Yield stress, consistency or viscosity with the solids fraction, a C^b or a exp(b C)",
+    citation="empirical forms of slurry practice, without a single source; b of 3 to 6 is usual for yield stresses",
+    note="not to be carried above the solids tested; pH, salts or dispersant shift it tenfold at equal solids",
+)
+
 Variable = Literal["solids", "temperature"]
 
 

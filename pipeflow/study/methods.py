@@ -27,6 +27,11 @@ from pipeflow.operability.settling import (
     STEINOUR,
     STOKES,
 )
+from pipeflow.rheology.conditions import ARRHENIUS, SOLIDS_LAWS
+from pipeflow.rheology.fitting import AKAIKE
+from pipeflow.rheology.instruments import KRIEGER_MARON, RABINOWITSCH
+from pipeflow.rheology.quality import TAYLOR
+from pipeflow.rheology.tube_viscometer import BAGLEY, MOONEY_SLIP
 from pipeflow.sources import Source
 
 SLURRIES = "turbulent flow of settling solids in a Newtonian liquid"
@@ -34,6 +39,8 @@ OPERABILITY = (
     LAMINAR_TRANSPORT, STATIC_SUSPENSION, STOKES, SCHILLER_NAUMANN, RICHARDSON_ZAKI, STEINOUR, LANGHAAR, POOLE_RIDLEY,
     TURBULENT_ENTRANCE, HEATING, RESTART, B31_3, B31_4, RATED, JOUKOWSKY, FASTEST_PARTICLE,
 )  # fmt: skip
+
+FLOW_CURVES = (RABINOWITSCH, KRIEGER_MARON, BAGLEY, MOONEY_SLIP, TAYLOR, AKAIKE, ARRHENIUS, SOLIDS_LAWS)
 
 
 @dataclass(frozen=True)
@@ -82,6 +89,7 @@ def method_sections() -> tuple[Section, ...]:
             "Deposition of solids", "methods.deposition", tuple(Choice(f.source, SLURRIES) for f in FORMULAS.values())
         ),
         Section("Other checks", "", tuple(Choice(source) for source in OPERABILITY)),
+        Section("Flow curves, solids and temperature", "", tuple(Choice(source) for source in FLOW_CURVES)),
     )
 
 

@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 from pipeflow.case.model import Case
 from pipeflow.sources import Source
+from pipeflow.study.rheology_result import RheologyAnswers
 from pipeflow.verdict import Check
 
 SAFETY_NOTICE = (
@@ -145,6 +146,7 @@ class Result:
     cautions: tuple[str, ...]
     methods: tuple[MethodUse, ...]
     scenarios: dict[str, Result]
+    rheology: RheologyAnswers = field(default_factory=RheologyAnswers)
 
     @property
     def fails(self) -> bool:

@@ -28,6 +28,7 @@ from pipeflow.study.checks import checks
 from pipeflow.study.flows import DESIGN, one_pipe, pipes_of
 from pipeflow.study.profile import profile_of
 from pipeflow.study.result import ElementResult, MethodSpread, MethodUse, Result, Totals
+from pipeflow.study.rheology_answers import rheology_answers, rheology_cautions, rheology_checks, rheology_methods
 
 
 def solve(case: Case) -> Result:
@@ -42,9 +43,9 @@ def solve(case: Case) -> Result:
     Result
         Elements and totals at design flow; checks and cautions over the minimum, design and maximum flow.
     """
-    flows = np.array([case.flow.design, case.flow.minimum, case.flow.maximum])
+    flows = (case.flow.design, case.flow.minimum, case.flow.maximum)
     line = route.solve(
-        flows,
+        np.array(flows),
         case.fluid,
         case.route,
         case.source,
@@ -56,16 +57,18 @@ def solve(case: Case) -> Result:
     )
     elements = tuple(_elements(case, line))
     profile = profile_of(case, line)
+    rheology = rheology_answers(case, line, flows)
     return Result(
         case=case,
         elements=elements,
         totals=_totals(line),
         spread=_spread(line, elements),
         profile=profile,
-        checks=tuple(checks(case, line)),
-        cautions=tuple(cautions(case, line, elements, profile)),
-        methods=tuple(_methods(case, elements)),
+        checks=tuple(rheology_checks(rheology, checks(case, line))),
+        cautions=(*rheology_cautions(case, rheology), *cautions(case, line, elements, profile)),
+        methods=(*_methods(case, elements), *rheology_methods(case, rheology)),
         scenarios={name: solve(scenario) for name, scenario in case.scenarios.items()},
+        rheology=rheology,
     )
 
 

@@ -1,0 +1,79 @@
+"""What rests on the rheology, in the lines of a terminal page: the fit, rival laws, rates beyond those tested."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from pipeflow.report.fit_page import UNITS
+from pipeflow.report.text import WIDTH, paragraph, table, underlined
+from pipeflow.rheology.sheet import FitResult
+from pipeflow.study.result import Result
+from pipeflow.study.rheology_result import BeyondTested, LawLoss
+from pipeflow.units import format_value, significant
+
+
+def rheology_lines(result: Result, width: int = WIDTH) -> Iterator[str]:
+    """Lines of the sections that apply; none for a rheology given by its parameters and kept to."""
+    case, answers = result.case, result.rheology
+    if case.fitted is not None:
+        yield from _heading("Rheology from readings", width)
+        yield from _fit(case.fitted, case.readings[0], width)
+    if answers.by_law:
+        yield from _heading("Laws the readings do not tell apart, at design flow", width)
+        columns = ("", "loss\nkPa", "upper\nkPa", "difference\nkPa")
+        yield from table(columns, [_law_row(law, answers.by_law[0]) for law in answers.by_law], width=width)
+        if answers.for_design:
+            yield paragraph(f"For design take {answers.for_design.model}, the highest loss.", width, "  ")
+    if answers.beyond:
+        yield from _heading("Wall shear rates far beyond those tested", width)
+        heads = ("", "highest\n1/s", "loss\nkPa", "upper\nkPa", "by tangent\nkPa", "upper\nkPa")
+        yield from table(heads, [_beyond_row(beyond) for beyond in answers.beyond], width=width)
+        tested = significant(answers.highest_tested)
+        note = f"Tested to {tested} 1/s. The tangent carries the law straight on from there; either answer is a guess."
+        yield paragraph(note, width, "  ")
+
+
+def _heading(text: str, width: int) -> Iterator[str]:
+    yield ""
+    yield from underlined(text, width).split("\n")
+
+
+def _fit(fitted: FitResult, file: str, width: int) -> Iterator[str]:
+    fit = fitted.selected
+    if fit is None or fit.parameters is None or fit.standard_errors is None or fit.intervals is None:
+        return
+    yield paragraph(f"{file}: {fit.model}, {fitted.fit.why}.", width)
+    rows = [
+        (
+            name.replace("_", " "),
+            f"{significant(value)} {UNITS[name]}".rstrip(),
+            significant(fit.standard_errors[name], 2),
+            " .. ".join(significant(end) for end in fit.intervals[name]),
+        )
+        for name, value in fit.parameters.items()
+    ]
+    yield from table(("", "value", "standard error", "95 % interval"), rows, words=(0, 1), width=width)
+    low, high = fitted.curve.tested
+    scatter = f"scatter {fit.rmse_relative:.2%}" if fit.rmse_relative is not None else ""
+    used = f"{int(fitted.curve.kept.sum())} of {fitted.curve.kept.size} readings"
+    yield paragraph(f"{used} over {significant(low)} .. {significant(high)} 1/s, {scatter}.", width, "  ")
+
+
+def _law_row(law: LawLoss, taken: LawLoss) -> tuple[str, ...]:
+    difference = "" if law is taken else f"{(law.pressure_loss - taken.pressure_loss) / 1e3:+.4g}"
+    return law.model, _kpa(law.pressure_loss), _kpa(law.pressure_loss_upper), difference
+
+
+def _beyond_row(beyond: BeyondTested) -> tuple[str, ...]:
+    return (
+        f"{beyond.at}, {format_value(beyond.flow, 'volume flow')}: {', '.join(beyond.pipes)}",
+        significant(beyond.wall_shear_rate, 3),
+        _kpa(beyond.pressure_loss),
+        _kpa(beyond.pressure_loss_upper),
+        _kpa(beyond.pressure_loss_tangent),
+        _kpa(beyond.pressure_loss_tangent_upper),
+    )
+
+
+def _kpa(value: float | None) -> str:
+    return "-" if value is None else significant(value / 1e3)
