@@ -276,7 +276,7 @@ def test_a_high_point_raises_the_pressure_of_the_wall_before_it():
         {check.name: check for check in solve(load_text(hill.format(**given, more=more, solids=solids))).checks}
         for more in (wall, wall + "site: {altitude: 0 m}\n")
     )
-    # a site that is not given is taken at sea level, as the one told is; full, the line would have 88 kPa there
+    # a site that is not given is taken at sea level, as the one told is
     assert told["pipe_wall"].value == blind["pipe_wall"].value > 1e5
     assert told["lowest_pressure"].status == "fail"
 
