@@ -205,11 +205,14 @@ class _Solved:
         return np.asarray(self.line.pressure_loss_upper / heat)
 
     def restart(self) -> Array:
-        gel = sum(
-            yield_pressure(pipe.length, pipe.diameter, self.variant.static_yield_stress, resistance)
-            for pipe, resistance in zip(self.pipes, self.variant.laminar_resistance, strict=True)
-        )
-        return np.asarray(gel + self.line.static_head * self.variant.fluid.density * STANDARD_GRAVITY)
+        """Pressure the pump must add: from the end backwards, a crest asking for no less than the atmosphere."""
+        one = self.variant
+        weight = np.asarray(one.fluid.density) * STANDARD_GRAVITY
+        demand = np.asarray(one.destination.pressure + weight * one.destination.head_of_level)
+        for pipe, resistance in zip(reversed(self.pipes), reversed(one.laminar_resistance), strict=True):
+            gel = yield_pressure(pipe.length, pipe.diameter, one.static_yield_stress, resistance)
+            demand = np.maximum(demand + gel + weight * pipe.rise, 0.0)
+        return np.asarray(demand - one.source.pressure - weight * one.source.level)
 
 
 FIGURES: dict[str, Callable[[_Solved], Array]] = {

@@ -131,12 +131,14 @@ def _neighbours(result: SizingResult, selected: Candidate) -> Iterator[str]:
     for step, word in ((-1, "smaller"), (1, "larger")):
         if 0 <= place + step < len(result.candidates):
             other = result.candidates[place + step]
-            change = other.head_loss_upper / selected.head_loss_upper - 1.0
+            change = ""
+            if selected.head_loss_upper:
+                change = f": head loss {other.head_loss_upper / selected.head_loss_upper - 1.0:+.0%}"
             cost = ""
             if other.cost_per_year and selected.cost_per_year:
                 cost = f", {other.cost_per_year / selected.cost_per_year - 1.0:+.0%} a year"
             passes = "passes" if other.passes else "fails"
-            yield paragraph(f"One size {word}, {other.size}: head loss {change:+.0%}{cost}; it {passes}.", mark="- ")
+            yield paragraph(f"One size {word}, {other.size}{change}{cost}; it {passes}.", mark="- ")
 
 
 def answer_page(answer: Answer) -> str:

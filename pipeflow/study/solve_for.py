@@ -69,6 +69,7 @@ def solve_for(case: Case, quantity: str) -> Answer:
     if quantity not in by_name:
         message = f"found {echo(quantity)}; accepted: {', '.join(by_name)}"
         raise InputError([Problem("--solve-for", None, None, "", message)])
+    varying(case)
     return by_name[quantity](case)
 
 
@@ -100,14 +101,15 @@ def _length(case: Case) -> Answer:
 
 def _yield_stress(case: Case) -> Answer:
     present = dynamic_yield_stress(case)
-    if present <= 0:
-        raise refused(case, "fluid.rheology", f"a {case.fluid.rheology.key} fluid has no yield stress to vary")
+    law: Any = case.fluid.rheology
+    if present <= 0 or "yield_stress" not in {field.name for field in fields(law)}:
+        raise refused(case, "fluid.rheology", f"a {law.key} fluid has no yield stress to vary by itself")
     ratio = variant(case).static_yield_stress / present
     measured = case.restart.static_yield_stress is not None
 
     def change(one: Variant, stress: Array) -> Variant:
-        law: Any = one.fluid.rheology
-        rheology = replace(law, yield_stress=stress)
+        varied: Any = one.fluid.rheology
+        rheology = replace(varied, yield_stress=stress)
         static = one.static_yield_stress if measured else ratio * stress
         return replace(one, fluid=replace(one.fluid, rheology=rheology), static_yield_stress=static)  # type: ignore[arg-type]
 

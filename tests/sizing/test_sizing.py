@@ -177,6 +177,15 @@ def test_the_least_bore_meets_its_limit_to_1e_10():
         assert judged == pytest.approx(limit, rel=1e-10)
 
 
+def test_the_least_bore_of_a_line_over_a_crest_restarts_it():
+    one = case(limits=Limits(restart_pressure=7e5), sizing=Sizing(bores=(0.02, 1.0)), scenarios={})
+    up, down = (replace(one.route[2], name=name, rise=rise) for name, rise in (("up", 30.0), ("down", -80.0)))
+    one = replace(one, route=(up, down), sizes={})
+    (found,) = size(one).candidates
+    check = next(made for made in solve(bored(one, found.diameter)).checks if made.name == "restart_pressure")
+    assert check.value == pytest.approx(7e5, rel=1e-10)
+
+
 def bored(one, bore):
     return replace(
         one,
