@@ -18,6 +18,7 @@ from pydantic_core import PydanticCustomError
 
 from pipeflow import units
 from pipeflow.case.nodes import Scalar
+from pipeflow.case.size_advice import advice as size_advice
 from pipeflow.line.catalogue import PipeSize, find_size, size_names, table
 
 NAME_LENGTH = 100
@@ -186,6 +187,9 @@ def read_size(value: object) -> PipeSize:
     """Read the name of a pipe size."""
     text = _scalar(value, "a pipe size, as 'NPS 8 Sch 40',").text
     size = find_size(text)
+    meant = "" if size else size_advice(text)
+    if meant:
+        raise said(f"found {units.echo(text)}; {meant}")
     if size is None:
         raise wrong_choice(text, "pipe size", size_names())
     return size

@@ -59,6 +59,7 @@ LEFT_TO_THE_PROGRAM = {
     "95": "flows by mass and by volume",
     "96": "a curve that is not there",
     "97": "an invisible character",
+    "98": "a size without its schedule",
 }
 """What a schema cannot say, or is not asked to, by the number of the spoilt file."""
 NOTATION = {"18", "41", "42", "43", "44", "45", "46", "47", "52", "57", "58"}
