@@ -109,6 +109,12 @@ def profile_of(state: LineState, pump_position: int, absolute: tuple[float, floa
     )
 
 
+def runs_full(found: Profile) -> bool:
+    """Whether no high point asks for more than the destination does: the pressures are then those of a full line."""
+    slack = found.central.slack
+    return slack is not None and bool(np.all(slack.governing == len(found.nodes) - 1))
+
+
 def lowest_pressure_check(
     state: LineState, found: Profile, atmosphere: float | None, vapour: float | None
 ) -> Check | None:

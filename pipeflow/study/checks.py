@@ -11,6 +11,7 @@ from pipeflow.friction import Status
 from pipeflow.line.catalogue import find_size
 from pipeflow.line.elements import Vessel
 from pipeflow.line.fittings import DEFAULT_METHOD
+from pipeflow.line.profile import Profile
 from pipeflow.line.route import LineFlow
 from pipeflow.line.site import SEA_LEVEL_PRESSURE
 from pipeflow.operability.deposition import Solids, deposition_check
@@ -22,6 +23,7 @@ from pipeflow.operability.pressures import (
     lowest_pressure_check,
     pressures_by_pipe,
     profile_of,
+    runs_full,
     wall_checks,
 )
 from pipeflow.operability.product import heating_check, shear_checks
@@ -179,12 +181,14 @@ def _pressures(case: Case, state: LineState) -> Iterator[Check]:
     if case.pipe_wall is None:
         yield not_checked("pipe_wall", ("pipe_wall",), "Pa", "pressure of the wall")
     position, atmosphere = pump_position(case), atmospheric_pressure(case)
+    full: Profile | None = None
     if case.pipe_wall is not None:
         found = profile_of(state, position, (atmosphere or SEA_LEVEL_PRESSURE, vapour or 0.0))
         inputs = WallInputs(**vars(case.pipe_wall))
         pressures = pressures_by_pipe(state, found, stopped_line(case), inputs, position)
         yield from wall_checks(state, walls_of(case, state), pressures, inputs)
-    lowest = lowest_pressure_check(state, profile_of(state, position), atmosphere, vapour)
+        full = found if runs_full(found) else None
+    lowest = lowest_pressure_check(state, full or profile_of(state, position), atmosphere, vapour)
     if lowest is not None:
         yield lowest
 
