@@ -36,12 +36,12 @@ def laminar_ratio(count: int = PIPES) -> tuple[float, float, float]:
 def main() -> None:
     regimes = np.concatenate([flow.regime for flow in vectorised(population(PIPES))])
     shares = ", ".join(f"{regime.name.lower()} {np.mean(regimes == regime):.0%}" for regime in Regime if regime)
-    print(f"{PIPES} yield-fluid pipes ({shares})")  # noqa: T201
+    print(f"{PIPES} yield-fluid pipes ({shares})")
     for name, (ours, theirs, ratio) in (
         ("whole curve, loop of brentq", loop_ratio()),
         ("laminar root, elementwise.find_root", laminar_ratio()),
     ):
-        print(f"{name}: {theirs:.2f} s against {ours:.3f} s, ratio {ratio:.1f}")  # noqa: T201
+        print(f"{name}: {theirs:.2f} s against {ours:.3f} s, ratio {ratio:.1f}")
 
 
 if __name__ == "__main__":
