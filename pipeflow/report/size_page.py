@@ -160,7 +160,7 @@ def _answer(answer: Answer) -> Iterator[str]:
     yield paragraph(f"The case has {_quantity(answer, answer.present)}. Varied: {answer.note}.")
     yield ""
     rows = [(name.replace("_", " "), _met_at(answer, value)) for name, value in answer.each.items()]
-    yield from table(("limit met at", ""), rows)
+    yield from table(("limit reached at", ""), rows)
     yield from _heading("Before relying on this")
     yield paragraph(SAFETY_NOTICE)
 
@@ -168,7 +168,7 @@ def _answer(answer: Answer) -> Iterator[str]:
 def _met_at(answer: Answer, value: float) -> str:
     if not math.isfinite(value) or value <= 0:
         return "nowhere"
-    return "not met" if value >= answer.highest else _quantity(answer, value)
+    return "not reached" if value >= answer.highest else _quantity(answer, value)
 
 
 def _quantity(answer: Answer, value: float) -> str:
