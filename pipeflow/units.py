@@ -81,6 +81,7 @@ _FACTORS: Final[dict[str, dict[str, float]]] = {
     "temperature": {"K": 1.0},
     "temperature difference": {"K": 1.0},
     "specific heat": {"kJ/(kg.K)": 1e3, "J/(kg.K)": 1.0},
+    "molar energy": {"kJ/mol": 1e3, "J/mol": 1.0, "kcal/mol": 4184.0},
     "time": {"s": 1.0, "min": 60.0, "h": _HOUR, "d": _DAY},
     "power": {"kW": 1e3, "W": 1.0, "MW": 1e6},
     "torque": {
@@ -113,6 +114,7 @@ _DISPLAY: Final = {
     "temperature": "°C",
     "temperature difference": "K",
     "specific heat": "kJ/(kg.K)",
+    "molar energy": "kJ/mol",
     "time": "s",
     "power": "kW",
     "torque": "mN.m",

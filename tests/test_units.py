@@ -56,6 +56,7 @@ BASE_UNITS = {
     "temperature": "K",
     "temperature difference": "K",
     "specific heat": "J/(kg*K)",
+    "molar energy": "J/mol",
     "time": "s",
     "power": "W",
     "torque": "N*m",

@@ -14,6 +14,7 @@ from pipeflow.case.model import (
     Case,
     Cost,
     FlowRange,
+    Followed,
     Limits,
     Liquid,
     Methods,
@@ -37,13 +38,14 @@ def build_case(part: CasePart, file: str) -> Case:
     """Make the case, without its scenarios, of a file found to be right."""
     density = part.fluid.slurry_density
     pipes = [element for element in part.route if isinstance(element, PipePart)]
-    solids = _solids(part.fluid)
+    solids, rheology = _solids(part.fluid), part.fluid.rheology
+    sheets = rheology.results if isinstance(rheology, FlowCurvePart) else ()
     return Case(
         file=file,
         title=part.title,
         revision=part.revision or "",
         notes=part.notes or "",
-        fluid=Fluid(density, part.fluid.rheology.rheology()),
+        fluid=Fluid(density, rheology.rheology(part.fluid.conditions)),
         flow=_flow_range(part.flow, density, solids),
         source=_vessel(part.source),
         destination=_vessel(part.destination),
@@ -55,9 +57,11 @@ def build_case(part: CasePart, file: str) -> Case:
         methods=Methods(**part.methods.model_dump()),
         sizes={pipe.pipe: pipe.size.name for pipe in pipes if pipe.size},
         default_roughness={pipe.pipe: _material(pipe) for pipe in pipes if pipe.roughness is None},
-        tested_shear_rate=part.fluid.rheology.tested,
-        fitted=part.fluid.rheology.result if isinstance(part.fluid.rheology, FlowCurvePart) else None,
-        readings=(part.fluid.rheology.flow_curve,) if isinstance(part.fluid.rheology, FlowCurvePart) else (),
+        tested_shear_rate=rheology.tested,
+        fitted=sheets[0] if len(sheets) == 1 else None,
+        readings=rheology.files if isinstance(rheology, FlowCurvePart) else (),
+        sheets=sheets,
+        followed=tuple(_followed(part.fluid)),
         pumps=tuple(Pump(**pump.model_dump()) for pump in part.pumps),
         solids=solids,
         liquid=_liquid(part.fluid, solids),
@@ -104,6 +108,19 @@ def _solids(fluid: FluidPart) -> Solids | None:
         "volume_fraction": fluid.solids.of_the_volume(density),
     }
     return Solids(**_inputs(fluid.solids) | fractions)
+
+
+def _followed(fluid: FluidPart) -> Iterator[Followed]:
+    rheology, conditions = fluid.rheology, fluid.conditions
+    if isinstance(rheology, FlowCurvePart):
+        series = rheology.series
+        laws = {name: fitted.law for name, fitted in series.laws.items()} if series else {}
+    else:
+        laws = {name: part.dependence() for name, part in rheology.laws.items()}
+    for name, law in laws.items():
+        condition = conditions.of(law.variable)
+        assert condition is not None
+        yield Followed(name, law, condition, float(law.value(condition)))
 
 
 def _liquid(fluid: FluidPart, solids: Solids | None) -> Liquid | None:

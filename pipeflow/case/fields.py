@@ -42,9 +42,9 @@ class FlowValue:
         return self.value / density if self.is_mass else self.value
 
 
-def said(message: str) -> PydanticCustomError:
-    """Make an error whose message is complete."""
-    return PydanticCustomError("said", "{message}", {"message": message})
+def said(message: str, *below: str | int) -> PydanticCustomError:
+    """Make an error whose message is complete; ``below`` as for :func:`at_odds`."""
+    return PydanticCustomError("said", "{message}", {"message": message, "below": below})
 
 
 def at_odds(message: str, *below: str) -> PydanticCustomError:
@@ -122,16 +122,45 @@ class FlowReader:
         return FlowValue(_within_reach(number, scalar.text), dimension == "mass flow")
 
 
-def read_range(value: object) -> tuple[float, float]:
-    """Read a range of shear rates."""
-    scalar = _scalar(value, "a range of shear rates, as '5 .. 400 1/s',")
-    try:
-        low, high = units.parse_range(scalar.text, "shear rate")
-    except units.UnitError as error:
-        raise said(str(error)) from None
-    if low < 0:
-        raise said(f"found {units.echo(scalar.text)}; shear rates must be 0 or more")
-    return _within_reach(low, scalar.text), _within_reach(high, scalar.text)
+@dataclass(frozen=True)
+class RangeReader:
+    """Reads a range of one dimension to SI; ``floor`` is what its lower end must not be below."""
+
+    dimension: str
+    example: str
+    floor: float = 0.0
+
+    def __call__(self, value: object) -> tuple[float, float]:
+        """Read one."""
+        scalar = _scalar(value, f"a range, as '{self.example}',")
+        try:
+            low, high = units.parse_range(scalar.text, self.dimension)
+        except units.UnitError as error:
+            raise said(str(error)) from None
+        if low < self.floor:
+            least = "0 or more" if self.floor == 0 else "above absolute zero"
+            raise said(f"found {units.echo(scalar.text)}; {self.dimension}s must be {least}")
+        return _within_reach(low, scalar.text), _within_reach(high, scalar.text)
+
+
+def read_fractions(value: object) -> tuple[float, float]:
+    """Read a range of fractions of solids."""
+    text = _scalar(value, "a range of fractions, as '0.48 .. 0.58',").text
+    match = re.fullmatch(rf" *({units.NUMBER}) *\.\. *({units.NUMBER}) *", text)
+    if match is None:
+        raise said(f"found {units.echo(text)}; a range of fractions is needed, as '0.48 .. 0.58'")
+    low, high = float(match[1]), float(match[2])
+    if not 0 < low < high < 1:
+        raise said(f"found {units.echo(text)}; two fractions above 0 and below 1 are needed, the lower end first")
+    return low, high
+
+
+def read_answer(value: object) -> bool:
+    """Read true or false."""
+    scalar = _scalar(value, "true or false")
+    if not scalar.plain or scalar.text not in ("true", "false"):
+        raise said(f"found {units.echo(scalar.text)}; true or false is needed")
+    return scalar.text == "true"
 
 
 def read_number(value: object) -> float:
@@ -222,7 +251,10 @@ Exponent = Annotated[float, Field(gt=0, le=10), BeforeValidator(read_number)]
 Fraction = Annotated[float, Field(gt=0, lt=1), BeforeValidator(read_number)]
 Flow = Annotated[FlowValue, PlainValidator(FlowReader(("volume flow", "mass flow")))]
 MassFlow = Annotated[FlowValue, PlainValidator(FlowReader(("mass flow",)))]
-ShearRates = Annotated[tuple[float, float], PlainValidator(read_range)]
+ShearRates = Annotated[tuple[float, float], PlainValidator(RangeReader("shear rate", "5 .. 400 1/s"))]
+Temperatures = Annotated[tuple[float, float], PlainValidator(RangeReader("temperature", "15 .. 60 °C", SMALLEST))]
+Fractions = Annotated[tuple[float, float], PlainValidator(read_fractions)]
+Answer = Annotated[bool, PlainValidator(read_answer)]
 Size = Annotated[PipeSize, PlainValidator(read_size)]
 
 Length = Annotated[float, Field(gt=0), quantity("length")]
@@ -244,3 +276,4 @@ Speed = Annotated[float, Field(gt=0), quantity("rotational speed")]
 Temperature = Annotated[float, quantity("temperature")]
 TemperatureDifference = Annotated[float, Field(gt=0), quantity("temperature difference")]
 SpecificHeat = Annotated[float, Field(gt=0), quantity("specific heat")]
+Energy = Annotated[float, quantity("molar energy")]

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from typing import Annotated, Final
+from typing import Annotated, Any, Final
 
 from pydantic import Field, ValidationInfo
 from pydantic import field_validator as check
 
+from pipeflow.case.dependence_part import Conditions
 from pipeflow.case.fields import (
     AbsolutePressure,
     Density,
@@ -116,6 +117,20 @@ class FluidPart(InputPart):
             raise at_odds("not above absolute zero, -273.15 °C")
         return value
 
+    @check("rheology")
+    @classmethod
+    def _where_it_was_tested(cls, value: Any, info: ValidationInfo) -> Any:
+        """Hold laws of the solids or the temperature against those of the case, where these have no fault."""
+        if {"solids", "liquid", "density", "temperature"} <= info.data.keys():
+            given = (info.data[key] for key in ("solids", "liquid", "density", "temperature"))
+            value.hold_against(_conditions(*given))
+        return value
+
+    @property
+    def conditions(self) -> Conditions:
+        """What the parameters of the rheology may follow."""
+        return _conditions(self.solids, self.liquid, self.density, self.temperature)
+
     @property
     def mixed_density(self) -> float | None:
         """Density in kg/m³ that solids and liquid make; None where they are not both known."""
@@ -127,6 +142,15 @@ class FluidPart(InputPart):
     def slurry_density(self) -> float:
         """Density in kg/m³: as stated, or else as mixed."""
         return self.density or self.mixed_density or 0.0
+
+
+def _conditions(
+    solids: SolidsPart | None, liquid: LiquidPart | None, density: float | None, temperature: float | None
+) -> Conditions:
+    if solids is None:
+        return Conditions(None, temperature)
+    mixed = solids.mixed_density(liquid.density) if liquid is not None and liquid.density is not None else None
+    return Conditions(solids.of_the_mass(mixed or density or 0.0), temperature)
 
 
 def _refuse_unless_mixed(solids: SolidsPart | None, liquid: LiquidPart | None) -> None:

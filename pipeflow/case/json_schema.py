@@ -17,16 +17,19 @@ from pydantic import BeforeValidator, PlainValidator
 from pydantic.fields import FieldInfo
 
 from pipeflow import units
+from pipeflow.case.dependence_part import UnknownLawPart
 from pipeflow.case.descriptions import DESCRIPTIONS
 from pipeflow.case.fields import (
     NAME_LENGTH,
     Choice,
     FlowReader,
     Quantity,
+    RangeReader,
     Words,
     fitting_keys,
+    read_answer,
+    read_fractions,
     read_number,
-    read_range,
     read_size,
 )
 from pipeflow.case.fluid_part import FluidPart, SolidsPart
@@ -41,7 +44,7 @@ from pipeflow.line.fittings import fittings
 Schema = dict[str, Any]
 
 PLACES: Final = {part: place for place, part in PARTS_AT.items()} | {PARTS_AT[("pumps",)]: ("pumps",)}
-UNWRITTEN: Final = (UnknownModelPart,)
+UNWRITTEN: Final = (UnknownModelPart, UnknownLawPart)
 """Parts that stand for what cannot be read."""
 
 
@@ -59,6 +62,7 @@ RELATIONS: Final[dict[type[Part], Schema]] = {
 }
 """What is asked of the keys of a map together."""
 
+_FRACTION: Final = r"\+?0?\.[0-9]+"
 _BOUNDS: Final = {"gt": "exclusiveMinimum", "ge": "minimum", "lt": "exclusiveMaximum", "le": "maximum"}
 _SPELLINGS: Final = {
     "3": r"(?:\^?3|³)",
@@ -148,10 +152,16 @@ class Writer:
                 return {"type": kinds, "pattern": r"\S", "maxLength": reader.longest}
             case Choice():
                 return {"enum": list(reader.options())}
+            case RangeReader():
+                return self._range(reader)
         if reader is read_number:
             return {"type": "number", **bounds}
-        if reader is read_range:
-            return self._range()
+        if reader is read_answer:
+            return {"type": "boolean"}
+        if reader is read_fractions:
+            title = "lower and upper fraction of solids by mass, as 0.48 .. 0.58"
+            pattern = rf"^ *{_FRACTION} *\.\. *{_FRACTION} *$"
+            return self._named("fractions", {"title": title, "type": "string", "pattern": pattern})
         assert reader is read_size
         named = {
             "anyOf": [
@@ -174,11 +184,12 @@ class Writer:
         }
         return self._named(f"quantity of {name}".replace(" ", "_"), schema)
 
-    def _range(self) -> Schema:
-        number = units.NUMBER.replace("[+-]?", r"\+?", 1)
-        spelt = "|".join(_spelt(text) for text in units.UNITS["shear rate"])
+    def _range(self, reader: RangeReader) -> Schema:
+        number = units.NUMBER.replace("[+-]?", r"\+?", 1) if reader.floor == 0 else units.NUMBER
+        spelt = "|".join(_spelt(text) for text in units.UNITS[reader.dimension])
         schema = {"type": "string", "pattern": rf"^ *{number} *\.\. *{number} *(?:{spelt}) *$"}
-        return self._named("shear_rates", {**schema, "title": "lower and upper shear rate, as 5 .. 400 1/s"})
+        title = f"lower and upper {reader.dimension}, as {reader.example}"
+        return self._named(f"{reader.dimension}s".replace(" ", "_"), {**schema, "title": title})
 
     def _fittings(self, count: Any) -> Schema:
         each = self._named("count", self._of(count, []))

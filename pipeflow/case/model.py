@@ -6,7 +6,9 @@ import math
 from dataclasses import dataclass, field
 
 from pipeflow.line.elements import Element, Fluid, Vessel
+from pipeflow.rheology.conditions import Dependence, Variable
 from pipeflow.rheology.sheet import FitResult
+from pipeflow.units import format_value
 
 
 @dataclass(frozen=True)
@@ -100,6 +102,26 @@ class Methods:
     deposition: str | None = None
 
 
+def shown_condition(variable: Variable, value: float) -> str:
+    """Write a solids fraction by mass, or a temperature in K, for a reader."""
+    return f"{value:.4g}" if variable == "solids" else format_value(value, "temperature")
+
+
+@dataclass(frozen=True)
+class Followed:
+    """A rheological parameter, SI, as its law gives it at a condition: a solids fraction by mass, or K."""
+
+    parameter: str
+    law: Dependence
+    condition: float
+    value: float
+
+    @property
+    def is_carried_on(self) -> bool:
+        """Whether the condition is outside the range tested."""
+        return not self.law.holds(self.condition)
+
+
 @dataclass(frozen=True)
 class Solids:
     """The solids of a slurry: density in kg/m³, fractions of the whole, sizes in m; None where not given.
@@ -161,9 +183,13 @@ class Case:
     tested_shear_rate : tuple of float, optional
         Lowest and highest shear rate over which the rheology was measured, 1/s.
     fitted : FitResult, optional
-        The fit behind the rheology, where the case names readings.
+        The fit behind the rheology, where the case names one sheet of readings.
     readings : tuple of str
-        Their files.
+        Files of the readings, one or several.
+    sheets : tuple of FitResult
+        The fit of each.
+    followed : tuple of Followed
+        The parameters that follow the solids or the temperature.
     temperature : float, optional
         Temperature of the fluid, K.
     specific_heat : float, optional
@@ -197,6 +223,8 @@ class Case:
     tested_shear_rate: tuple[float, float] | None = None
     fitted: FitResult | None = None
     readings: tuple[str, ...] = ()
+    sheets: tuple[FitResult, ...] = ()
+    followed: tuple[Followed, ...] = ()
     pumps: tuple[Pump, ...] = ()
     solids: Solids | None = None
     liquid: Liquid | None = None

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import Final
 
+from pipeflow.case.dependence_part import FOLLOWING, LAW_PARTS
 from pipeflow.case.flow_curve_part import FlowCurvePart, UsePart
 from pipeflow.case.fluid_part import FluidPart, LiquidPart, SolidsPart
 from pipeflow.case.limits_part import LimitsPart, PipeWallPart, RestartPart, VelocityPart
@@ -22,10 +23,22 @@ from pipeflow.case.schema import (
 )
 from pipeflow.case.sizing_part import BoresPart, CostPart, PricePart, SizingPart
 
+_FOLLOWING: Final = [
+    (model, parameter, LAW_PARTS[dimension])
+    for model, part in RHEOLOGY_PARTS.items()
+    for parameter, dimension in FOLLOWING.items()
+    if parameter in part.model_fields
+]
+
 PARTS_AT: Final[dict[tuple[str, ...], type[Part]]] = {
     (): CasePart,
     ("fluid",): FluidPart,
     **{("fluid", "rheology", f"<{model}>"): part for model, part in RHEOLOGY_PARTS.items()},
+    **{
+        ("fluid", "rheology", f"<{model}>", parameter, f"<{law}>"): part
+        for model, parameter, parts in _FOLLOWING
+        for law, part in parts.items()
+    },
     ("fluid", "rheology", "<flow_curve>"): FlowCurvePart,
     ("fluid", "rheology", "<flow_curve>", "use"): UsePart,
     ("fluid", "solids"): SolidsPart,
@@ -78,6 +91,13 @@ EXAMPLES: Final[dict[str, str]] = {
     "model": "herschel-bulkley",
     "flow_curve": "readings.csv",
     "shear_rate": "30 .. 300 1/s",
+    "law": "power",
+    "a": "2500 Pa",
+    "fluid.rheology.<newtonian>.viscosity.<power>.a": "0.4 Pa.s",
+    "b": "4.2",
+    "reference": "0.9 Pa.s",
+    "reference_temperature": "20 °C",
+    "activation_energy": "24 kJ/mol",
     "route": "[{pipe: suction line, diameter: 200 mm, length: 12 m}]",
     "viscosity": "21 mPa.s",
     "plastic_viscosity": "21 mPa.s",

@@ -7,8 +7,8 @@ from typing import Annotated, ClassVar, Final, Self
 from pydantic import BeforeValidator, ConfigDict, Discriminator, Field, Tag, ValidationInfo, model_validator
 from pydantic import field_validator as check
 
+from pipeflow.case.dependence_part import Conditions, ConsistencyOrLaw, LawPart, ViscosityOrLaw, YieldStressOrLaw
 from pipeflow.case.fields import (
-    Consistency,
     Exponent,
     FlowIndex,
     LimitViscosity,
@@ -18,7 +18,6 @@ from pipeflow.case.fields import (
     Stress,
     Time,
     Viscosity,
-    YieldStress,
     at_odds,
     choice,
     read_number,
@@ -53,10 +52,30 @@ class ModelPart(InputPart):
     model: Name
     tested: ShearRates | None = None
 
-    def rheology(self) -> Rheology:
-        """Make the law of the shear stress."""
+    @property
+    def key(self) -> str:
+        """Name of the model."""
+        return self.model
+
+    @property
+    def laws(self) -> dict[str, LawPart]:
+        """The parameters that follow the solids or the temperature, by name."""
+        given = {name: getattr(self, name) for name in type(self).model_fields}
+        return {name: value for name, value in given.items() if isinstance(value, LawPart)}
+
+    def hold_against(self, conditions: Conditions) -> None:
+        """Refuse conditions the laws do not hold for."""
+        for name, law in self.laws.items():
+            law.hold_against(conditions, name)
+
+    def rheology(self, conditions: Conditions | None = None) -> Rheology:
+        """Make the law of the shear stress; the conditions are needed where parameters follow them."""
         assert self.law is not None
-        return self.law(**self.model_dump(exclude=set(BESIDE_PARAMETERS)))
+        parameters = {name: getattr(self, name) for name in type(self).model_fields if name not in BESIDE_PARAMETERS}
+        for name, law in self.laws.items():
+            assert conditions is not None
+            parameters[name] = law.at(conditions)
+        return self.law(**parameters)
 
 
 class NewtonianPart(ModelPart):
@@ -64,7 +83,7 @@ class NewtonianPart(ModelPart):
 
     law = Newtonian
 
-    viscosity: Viscosity
+    viscosity: ViscosityOrLaw
 
 
 class PowerLawPart(ModelPart):
@@ -72,7 +91,7 @@ class PowerLawPart(ModelPart):
 
     law = PowerLaw
 
-    consistency: Consistency
+    consistency: ConsistencyOrLaw
     flow_index: FlowIndex
 
 
@@ -81,8 +100,8 @@ class BinghamPart(ModelPart):
 
     law = Bingham
 
-    yield_stress: YieldStress
-    plastic_viscosity: Viscosity
+    yield_stress: YieldStressOrLaw
+    plastic_viscosity: ViscosityOrLaw
 
 
 class HerschelBulkleyPart(ModelPart):
@@ -90,8 +109,8 @@ class HerschelBulkleyPart(ModelPart):
 
     law = HerschelBulkley
 
-    yield_stress: YieldStress
-    consistency: Consistency
+    yield_stress: YieldStressOrLaw
+    consistency: ConsistencyOrLaw
     flow_index: FlowIndex
 
 
@@ -100,8 +119,8 @@ class CassonPart(ModelPart):
 
     law = Casson
 
-    yield_stress: YieldStress
-    casson_viscosity: Viscosity
+    yield_stress: YieldStressOrLaw
+    casson_viscosity: ViscosityOrLaw
 
 
 class RobertsonStiffPart(ModelPart):
@@ -109,7 +128,7 @@ class RobertsonStiffPart(ModelPart):
 
     law = RobertsonStiff
 
-    consistency: Consistency
+    consistency: ConsistencyOrLaw
     flow_index: FlowIndex
     rate_offset: ShearRate
 
@@ -120,7 +139,7 @@ class SiskoPart(ModelPart):
     law = Sisko
 
     infinite_shear_viscosity: LimitViscosity
-    consistency: Consistency
+    consistency: ConsistencyOrLaw
     flow_index: FlowIndex
 
 

@@ -194,7 +194,7 @@ class MethodsPart(Part):
         if value is None or fluid is None:
             return value
         known = TURBULENT if info.field_name == "turbulent" else CRITERIA
-        model = fluid.rheology.model or fluid.rheology.rheology().key
+        model = fluid.rheology.key
         if model not in known[value].models:
             fitting = ", ".join(key for key, method in known.items() if model in method.models)
             raise at_odds(f"not made for {model} fluids; those that are: {fitting}")

@@ -17,6 +17,7 @@ from pipeflow.units import ECHO_LENGTH, echo
 
 MAX_SUGGESTIONS = 100
 _LISTED = 12
+_PARTS_OF_A_PARAMETER = len(("fluid", "rheology", "<model>", "key"))
 _PARAMETERS = frozenset(key for part in RHEOLOGY_PARTS.values() for key in part.model_fields)
 
 
@@ -143,7 +144,7 @@ def _foreign_parameters(faults: list[Fault]) -> list[Fault]:
 
 
 def _is_foreign(fault: Fault) -> bool:
-    in_model = fault.parts[:2] == ("fluid", "rheology")
+    in_model = fault.parts[:2] == ("fluid", "rheology") and len(fault.parts) == _PARTS_OF_A_PARAMETER
     return in_model and fault.kind == "extra_forbidden" and fault.key in _PARAMETERS
 
 

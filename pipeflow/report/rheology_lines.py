@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from pathlib import PurePath
 
+from pipeflow.case.model import Followed, shown_condition
 from pipeflow.report.fit_page import UNITS
 from pipeflow.report.text import WIDTH, paragraph, table, underlined
 from pipeflow.rheology.sheet import FitResult
@@ -14,10 +16,22 @@ from pipeflow.units import format_value, significant
 
 def rheology_lines(result: Result, width: int = WIDTH) -> Iterator[str]:
     """Lines of the sections that apply; none for a rheology given by its parameters and kept to."""
+    for text in _sections(result, width):
+        yield from text.split("\n")
+
+
+def _sections(result: Result, width: int) -> Iterator[str]:
     case, answers = result.case, result.rheology
     if case.fitted is not None:
         yield from _heading("Rheology from readings", width)
         yield from _fit(case.fitted, case.readings[0], width)
+    elif case.sheets:
+        yield from _heading("Rheology from readings", width)
+        yield from (paragraph(_sheet(*each), width, "- ") for each in zip(case.readings, case.sheets, strict=True))
+    if case.followed:
+        yield from _heading("Parameters by solids or temperature", width)
+        heads = ("", "law", "value", "", "at", "tested")
+        yield from table(heads, [_followed_row(followed) for followed in case.followed], (0, 1, 3), width)
     if answers.by_law:
         yield from _heading("Laws the readings do not tell apart, at design flow", width)
         columns = ("", "loss\nkPa", "upper\nkPa", "difference\nkPa")
@@ -35,7 +49,7 @@ def rheology_lines(result: Result, width: int = WIDTH) -> Iterator[str]:
 
 def _heading(text: str, width: int) -> Iterator[str]:
     yield ""
-    yield from underlined(text, width).split("\n")
+    yield underlined(text, width)
 
 
 def _fit(fitted: FitResult, file: str, width: int) -> Iterator[str]:
@@ -57,6 +71,21 @@ def _fit(fitted: FitResult, file: str, width: int) -> Iterator[str]:
     scatter = f"scatter {fit.rmse_relative:.2%}" if fit.rmse_relative is not None else ""
     used = f"{int(fitted.curve.kept.sum())} of {fitted.curve.kept.size} readings"
     yield paragraph(f"{used} over {significant(low)} .. {significant(high)} 1/s, {scatter}.", width, "  ")
+
+
+def _sheet(file: str, fitted: FitResult) -> str:
+    sample, (low, high) = fitted.curve.sample, fitted.curve.tested
+    solids = [] if sample.solids is None else [f"solids {sample.solids:g}"]
+    warm = [] if sample.temperature is None else [format_value(sample.temperature, "temperature")]
+    rates = f"{significant(low)} .. {significant(high)} 1/s"
+    return ", ".join([f"{PurePath(file).name}: {fitted.fit.selected}", *solids, *warm, rates])
+
+
+def _followed_row(followed: Followed) -> tuple[str, ...]:
+    law, name = followed.law, followed.parameter
+    shown = [shown_condition(law.variable, value) for value in (followed.condition, *law.tested)]
+    ends = " .. ".join(shown[1:])
+    return name.replace("_", " "), law.key, significant(followed.value), UNITS[name], shown[0], ends
 
 
 def _law_row(law: LawLoss, taken: LawLoss) -> tuple[str, ...]:

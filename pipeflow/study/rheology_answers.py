@@ -4,17 +4,20 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
 from dataclasses import replace
+from pathlib import PurePath
 
 import numpy as np
 
-from pipeflow.case.model import Case
+from pipeflow.case.model import Case, shown_condition
 from pipeflow.friction.methods import critical_criterion, turbulent_method
 from pipeflow.line import route
 from pipeflow.line.route import LineFlow
 from pipeflow.rheology import Rheology
+from pipeflow.rheology.conditions import ARRHENIUS, SOLIDS_LAWS, Variable
 from pipeflow.rheology.models import Casson, GeneralizedPowerLaw
 from pipeflow.rheology.sheet import FitResult
 from pipeflow.rheology.tangent import FAR, continued_by_tangent, is_far
+from pipeflow.sources import Source
 from pipeflow.study.flows import DESIGN, distinct_flows, pipes_of
 from pipeflow.study.result import MethodUse
 from pipeflow.study.rheology_result import BeyondTested, LawLoss, RheologyAnswers
@@ -145,13 +148,26 @@ def _range_check(answers: RheologyAnswers) -> Check:
 
 def rheology_cautions(case: Case, answers: RheologyAnswers) -> Iterator[str]:
     """Say what the readings leave open, and what the other answers come to."""
-    if case.fitted is not None:
-        yield from (f"readings: {text}" for text in case.fitted.curve.corrections)
-        yield from (f"readings: {text}" for text in case.fitted.cautions)
+    for file, sheet in zip(case.readings, case.sheets, strict=True):
+        of = f"readings of {PurePath(file).name}" if len(case.sheets) > 1 else "readings"
+        yield from (f"{of}: {text}" for text in (*sheet.curve.corrections, *sheet.cautions))
+    yield from _about_conditions(case)
     if answers.by_law:
         yield from _about_rivals(answers)
     if answers.beyond:
         yield _about_tangent(max(answers.beyond, key=_by_rate))
+
+
+def _about_conditions(case: Case) -> Iterator[str]:
+    """Say which laws of the solids or the temperature are carried on past what was tested."""
+    names: dict[tuple[Variable, float, tuple[float, float]], list[str]] = {}
+    for followed in case.followed:
+        if followed.is_carried_on:
+            place = (followed.law.variable, followed.condition, followed.law.tested)
+            names.setdefault(place, []).append(followed.parameter.replace("_", " "))
+    for (variable, condition, tested), parameters in names.items():
+        here, low, high = (shown_condition(variable, value) for value in (condition, *tested))
+        yield f"{', '.join(parameters)} carried on to {variable} of {here}, tested over {low} .. {high}: a guess"
 
 
 def _about_rivals(answers: RheologyAnswers) -> Iterator[str]:
@@ -180,8 +196,14 @@ def _about_tangent(beyond: BeyondTested) -> str:
 
 def rheology_methods(case: Case, answers: RheologyAnswers) -> Iterator[MethodUse]:
     """Methods behind the rheology itself."""
-    if case.fitted is not None:
-        yield from (MethodUse(source, "rheology from readings") for source in case.fitted.methods)
+    for source in dict.fromkeys(source for sheet in case.sheets for source in sheet.methods):
+        yield MethodUse(source, "rheology from readings")
+    by_source: dict[Source, list[str]] = {}
+    for followed in case.followed:
+        source = ARRHENIUS if followed.law.variable == "temperature" else SOLIDS_LAWS
+        by_source.setdefault(source, []).append(followed.parameter.replace("_", " "))
+    for source, names in by_source.items():
+        yield MethodUse(source, ", ".join(names))
     if answers.tangent_method:
         source = turbulent_method(case.fluid.rheology, answers.tangent_method).source
         yield MethodUse(source, "turbulent friction by the tangent of the law")

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import asdict
+from dataclasses import asdict, fields
 from typing import Any, Final
 
-from pipeflow.case.model import Case
-from pipeflow.study.fit_document import fit_document
+from pipeflow.case.model import Case, Followed
+from pipeflow.rheology.sheet import FitResult
+from pipeflow.study.fit_document import fit_document, with_unit
 from pipeflow.study.rheology_result import BeyondTested, LawLoss, RheologyAnswers
 
 _KEYS: Final = {
@@ -20,11 +21,14 @@ _KEYS: Final = {
 
 
 def rheology_document(case: Case, answers: RheologyAnswers) -> dict[str, Any]:
-    """Lay out the keys that are there: ``rheology_fit``, ``rheology_rivals``, ``beyond_tested_shear_rate``."""
+    """Lay out the keys that are there: the fit or fits, the laws, rivals, rates beyond those tested."""
     laid_out: dict[str, Any] = {}
     if case.fitted is not None:
-        document = fit_document(case.readings[0], case.fitted)
-        laid_out["rheology_fit"] = {key: value for key, value in document.items() if key != "points"}
+        laid_out["rheology_fit"] = _fit(case.readings[0], case.fitted)
+    elif case.sheets:
+        laid_out["rheology_fits"] = [_fit(*each) for each in zip(case.readings, case.sheets, strict=True)]
+    if case.followed:
+        laid_out["rheology_laws"] = [_followed(followed) for followed in case.followed]
     if answers.by_law:
         highest, taken = answers.for_design, answers.by_law[0]
         laid_out["rheology_rivals"] = {
@@ -34,6 +38,26 @@ def rheology_document(case: Case, answers: RheologyAnswers) -> dict[str, Any]:
     if answers.beyond:
         laid_out["beyond_tested_shear_rate"] = [_keyed(beyond) for beyond in answers.beyond]
     return laid_out
+
+
+def _fit(file: str, fitted: FitResult) -> dict[str, Any]:
+    return {key: value for key, value in fit_document(file, fitted).items() if key != "points"}
+
+
+def _followed(followed: Followed) -> dict[str, Any]:
+    """Lay a law out; its coefficients in SI units, the energy in J/mol, temperatures in K."""
+    law = followed.law
+    coefficients = {field.name: getattr(law, field.name) for field in fields(law) if field.name != "tested"}
+    return {
+        "parameter": followed.parameter,
+        "law": law.key,
+        "follows": law.variable,
+        "coefficients": coefficients,
+        "tested": list(law.tested),
+        "at": followed.condition,
+        with_unit(followed.parameter): followed.value,
+        "extrapolated": followed.is_carried_on,
+    }
 
 
 def _law(law: LawLoss, taken: LawLoss) -> dict[str, Any]:

@@ -74,7 +74,7 @@ def test_the_fit_is_part_of_the_result() -> None:
     assert any("shear rate at the bob over" in caution for caution in result.cautions)
     assert any("a restart needs that" in caution for caution in result.cautions)
     assert {"krieger-maron", "aicc"} <= {use.source.key for use in result.methods}
-    assert all(len(line) <= 80 for text in rheology_lines(result) for line in text.split("\n"))
+    assert all(len(line) <= 80 for line in rheology_lines(result))
 
 
 def test_rivals_are_solved_and_the_higher_named(tmp_path: Path) -> None:
@@ -95,7 +95,7 @@ def test_rivals_are_solved_and_the_higher_named(tmp_path: Path) -> None:
     highest = max(result.rheology.by_law, key=lambda law: law.pressure_loss)
     assert any(f"the highest loss, {highest.model}" in caution for caution in result.cautions)
     assert document(result)["rheology_rivals"]["for_design"] == highest.model
-    assert any(line.startswith(rivals[0]) for text in rheology_lines(result) for line in text.split("\n"))
+    assert any(line.startswith(rivals[0]) for line in rheology_lines(result))
 
 
 @pytest.mark.parametrize("model", list(PARAMETERS))
@@ -114,7 +114,7 @@ def test_far_beyond_the_tested_rates_there_are_two_answers(model: str) -> None:
     assert beyond.pressure_loss_tangent >= beyond.pressure_loss
     assert {one_check(case, name)[0] for name in ("pressure_loss", "head_loss", "tested_shear_rate")} == {"caution"}
     assert document(result)["beyond_tested_shear_rate"][0]["pressure_loss_tangent_Pa"] == beyond.pressure_loss_tangent
-    assert all(len(line) <= 80 for text in rheology_lines(result) for line in text.split("\n"))
+    assert all(len(line) <= 80 for line in rheology_lines(result))
 
 
 def test_a_fail_stays_a_fail_beyond_the_tested_rates() -> None:
