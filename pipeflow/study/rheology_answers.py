@@ -148,14 +148,23 @@ def _range_check(answers: RheologyAnswers) -> Check:
 
 def rheology_cautions(case: Case, answers: RheologyAnswers) -> Iterator[str]:
     """Say what the readings leave open, and what the other answers come to."""
-    for file, sheet in zip(case.readings, case.sheets, strict=True):
-        of = f"readings of {PurePath(file).name}" if len(case.sheets) > 1 else "readings"
-        yield from (f"{of}: {text}" for text in (*sheet.curve.corrections, *sheet.cautions))
+    yield from _about_readings(case)
     yield from _about_conditions(case)
     if answers.by_law:
         yield from _about_rivals(answers)
     if answers.beyond:
         yield _about_tangent(max(answers.beyond, key=_by_rate))
+
+
+def _about_readings(case: Case) -> Iterator[str]:
+    """Give what the sheets say, the same words once."""
+    files: dict[str, list[str]] = {}
+    for file, sheet in zip(case.readings, case.sheets, strict=True):
+        for text in (*sheet.curve.corrections, *sheet.cautions):
+            files.setdefault(text, []).append(PurePath(file).name)
+    for text, names in files.items():
+        of = "readings" if len(names) == len(case.sheets) else f"readings of {', '.join(names)}"
+        yield f"{of}: {text}"
 
 
 def _about_conditions(case: Case) -> Iterator[str]:

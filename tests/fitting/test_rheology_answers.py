@@ -65,7 +65,8 @@ def one_check(case: Case, name: str) -> tuple[str, float | None]:
 
 
 def test_the_fit_is_part_of_the_result() -> None:
-    result = solve(load_case(CASES / "thickener-underflow-readings.yaml"))
+    given = text(f"flow_curve: {CASES / 'thickener-underflow-52.csv'}")
+    result = solve(load_text(given))
     found = json.loads(json.dumps(document(result)))["rheology_fit"]
     selected = next(model for model in found["models"] if model["model"] == found["selected"])
     assert found["selected"] == "herschel-bulkley"
