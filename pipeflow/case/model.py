@@ -4,11 +4,14 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
 
 from pipeflow.line.elements import Element, Fluid, Vessel
 from pipeflow.rheology.conditions import Dependence, Variable
-from pipeflow.rheology.sheet import FitResult
 from pipeflow.units import format_value
+
+if TYPE_CHECKING:
+    from pipeflow.rheology.sheet import FitResult
 
 
 @dataclass(frozen=True)

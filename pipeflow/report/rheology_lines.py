@@ -4,14 +4,17 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from pathlib import PurePath
+from typing import TYPE_CHECKING
 
 from pipeflow.case.model import Followed, shown_condition
 from pipeflow.report.fit_page import UNITS
 from pipeflow.report.text import WIDTH, paragraph, table, underlined
-from pipeflow.rheology.sheet import FitResult
 from pipeflow.study.result import Result
 from pipeflow.study.rheology_result import BeyondTested, LawLoss
 from pipeflow.units import format_value, significant
+
+if TYPE_CHECKING:
+    from pipeflow.rheology.sheet import FitResult
 
 
 def rheology_lines(result: Result, width: int = WIDTH) -> Iterator[str]:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator
 from dataclasses import replace
 from pathlib import PurePath
+from typing import TYPE_CHECKING
 
 import numpy as np
 
@@ -15,13 +16,15 @@ from pipeflow.line.route import LineFlow
 from pipeflow.rheology import Rheology
 from pipeflow.rheology.conditions import ARRHENIUS, SOLIDS_LAWS, Variable
 from pipeflow.rheology.models import Casson, GeneralizedPowerLaw
-from pipeflow.rheology.sheet import FitResult
 from pipeflow.rheology.tangent import FAR, continued_by_tangent, is_far
 from pipeflow.sources import Source
 from pipeflow.study.flows import DESIGN, distinct_flows, pipes_of
 from pipeflow.study.result import MethodUse
 from pipeflow.study.rheology_result import BeyondTested, LawLoss, RheologyAnswers
 from pipeflow.verdict import Check
+
+if TYPE_CHECKING:
+    from pipeflow.rheology.sheet import FitResult
 
 _ON_LOSSES = ("head_loss", "pressure_loss")
 """Checks that stand or fall with the losses."""

@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import asdict, fields
-from typing import Any, Final
+from typing import TYPE_CHECKING, Any, Final
 
 from pipeflow.case.model import Case, Followed
-from pipeflow.rheology.sheet import FitResult
 from pipeflow.study.fit_document import fit_document, with_unit
 from pipeflow.study.rheology_result import BeyondTested, LawLoss, RheologyAnswers
+
+if TYPE_CHECKING:
+    from pipeflow.rheology.sheet import FitResult
 
 _KEYS: Final = {
     "pressure_loss": "pressure_loss_Pa",
