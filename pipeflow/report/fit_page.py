@@ -8,6 +8,7 @@ from textwrap import fill
 import numpy as np
 
 from pipeflow.arrays import Array
+from pipeflow.report.text import PARAMETER_UNITS
 from pipeflow.rheology.fitting import ModelFit
 from pipeflow.rheology.readings import Sample
 from pipeflow.rheology.sheet import FitResult
@@ -16,15 +17,6 @@ from pipeflow.units import format_value, significant
 WIDTH = 80
 HALF = 10
 """Characters either side of the middle of the picture of residuals."""
-
-UNITS = {
-    "viscosity": "Pa.s",
-    "plastic_viscosity": "Pa.s",
-    "casson_viscosity": "Pa.s",
-    "yield_stress": "Pa",
-    "consistency": "Pa.s^n",
-    "flow_index": "",
-}
 _MOST_POINTS = 60
 
 
@@ -164,7 +156,7 @@ def _model_row(fit: ModelFit, lowest: float, selected: str | None) -> tuple[str,
 
 
 def _shown(name: str, value: float) -> str:
-    return f"{name.replace('_', ' ')} {significant(value)} {UNITS[name]}".rstrip()
+    return f"{name.replace('_', ' ')} {significant(value)} {PARAMETER_UNITS[name]}".rstrip()
 
 
 def _selected(result: FitResult) -> Iterator[str]:
@@ -192,4 +184,9 @@ def _selected(result: FitResult) -> Iterator[str]:
 def _parameter_row(fit: ModelFit, name: str) -> tuple[str, ...]:
     low, high = (fit.intervals or {})[name]
     value = (fit.parameters or {})[name]
-    return name.replace("_", " "), significant(value), f"{significant(low)} .. {significant(high)}", UNITS[name]
+    return (
+        name.replace("_", " "),
+        significant(value),
+        f"{significant(low)} .. {significant(high)}",
+        PARAMETER_UNITS[name],
+    )

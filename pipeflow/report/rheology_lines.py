@@ -7,8 +7,7 @@ from pathlib import PurePath
 from typing import TYPE_CHECKING
 
 from pipeflow.case.model import Followed, shown_condition
-from pipeflow.report.fit_page import UNITS
-from pipeflow.report.text import WIDTH, paragraph, table, underlined
+from pipeflow.report.text import PARAMETER_UNITS, WIDTH, paragraph, table, underlined
 from pipeflow.study.result import Result
 from pipeflow.study.rheology_result import BeyondTested, LawLoss
 from pipeflow.units import format_value, significant
@@ -63,7 +62,7 @@ def _fit(fitted: FitResult, file: str, width: int) -> Iterator[str]:
     rows = [
         (
             name.replace("_", " "),
-            f"{significant(value)} {UNITS[name]}".rstrip(),
+            f"{significant(value)} {PARAMETER_UNITS[name]}".rstrip(),
             significant(fit.standard_errors[name], 2),
             " .. ".join(significant(end) for end in fit.intervals[name]),
         )
@@ -88,7 +87,7 @@ def _followed_row(followed: Followed) -> tuple[str, ...]:
     law, name = followed.law, followed.parameter
     shown = [shown_condition(law.variable, value) for value in (followed.condition, *law.tested)]
     ends = " .. ".join(shown[1:])
-    return name.replace("_", " "), law.key, significant(followed.value), UNITS[name], shown[0], ends
+    return name.replace("_", " "), law.key, significant(followed.value), PARAMETER_UNITS[name], shown[0], ends
 
 
 def _law_row(law: LawLoss, taken: LawLoss) -> tuple[str, ...]:

@@ -11,7 +11,7 @@ from pipeflow.case.model import Case, Liquid, Solids
 from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.line.elements import Pipe
 from pipeflow.report.rheology_lines import rheology_lines
-from pipeflow.report.text import WIDTH, paragraph, table
+from pipeflow.report.text import PARAMETER_UNITS, WIDTH, paragraph, table
 from pipeflow.rheology import Rheology
 from pipeflow.study.flows import dry_solids_flow
 from pipeflow.study.profile import atmospheric_pressure
@@ -23,19 +23,6 @@ MARK = {"ok": "ok", "not checked": "not checked", "caution": "CAUTION", "fail": 
 """The word for each status, the gravest last."""
 REGIME_IN_SHORT = {"transitional": "transit.", "turbulent": "turb.", "laminar": "lam."}
 STYLE = {"ok": "green", "caution": "yellow", "fail": "bold red", "not checked": "dim"}
-UNITS = {
-    "viscosity": "viscosity",
-    "plastic_viscosity": "viscosity",
-    "casson_viscosity": "viscosity",
-    "zero_shear_viscosity": "viscosity",
-    "infinite_shear_viscosity": "viscosity",
-    "consistency": "consistency",
-    "yield_stress": "stress",
-    "half_stress": "stress",
-    "time_constant": "s",
-    "rate_offset": "1/s",
-}
-"""Dimension or unit of each rheological parameter; those not named have none."""
 
 
 def print_result(result: Result) -> None:
@@ -304,8 +291,7 @@ def _liquid(liquid: Liquid) -> Iterator[tuple[str, str]]:
 def _parameters(rheology: Rheology) -> Iterator[tuple[str, str]]:
     for field in fields(rheology):  # type: ignore[arg-type]
         value = getattr(rheology, field.name)
-        dimension = UNITS.get(field.name)
-        shown = format_value(value, dimension) if dimension else significant(value)
+        shown = f"{significant(value)} {PARAMETER_UNITS[field.name]}".rstrip()
         yield f"  {field.name.replace('_', ' ')}", shown
 
 

@@ -11,6 +11,23 @@ DEEPEST_HANG = 24
 NARROWEST = 12
 """First column of a table is not made narrower than this."""
 
+PARAMETER_UNITS = {
+    "viscosity": "Pa.s",
+    "plastic_viscosity": "Pa.s",
+    "casson_viscosity": "Pa.s",
+    "zero_shear_viscosity": "Pa.s",
+    "infinite_shear_viscosity": "Pa.s",
+    "consistency": "Pa.s^n",
+    "yield_stress": "Pa",
+    "half_stress": "Pa",
+    "time_constant": "s",
+    "rate_offset": "1/s",
+    "flow_index": "",
+    "exponent": "",
+    "transition_exponent": "",
+}
+"""Unit of each rheological parameter, SI."""
+
 
 def paragraph(text: str, width: int = WIDTH, mark: str = "") -> str:
     """Fill a paragraph, ``mark`` hanging before it if it is short."""

@@ -13,7 +13,6 @@ from typing import ClassVar, Final, Literal
 import numpy as np
 
 from pipeflow.arrays import Array, FloatOrArray
-from pipeflow.rheology.fitting import student
 from pipeflow.sources import Source
 
 GAS_CONSTANT: Final = 8.31446261815324
@@ -148,6 +147,8 @@ def fit_dependence(kind: str, conditions: Array, values: Array) -> FittedDepende
     """
     if np.unique(conditions).size < 2 or not np.all(values > 0):
         raise ValueError("a dependence needs values above 0 at two conditions or more")
+    from pipeflow.rheology.fitting import student
+
     x = _abscissa(kind, conditions)
     middle = float(x.mean())
     slope, level = np.polyfit(x - middle, np.log(values), 1)
