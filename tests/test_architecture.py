@@ -17,7 +17,15 @@ PACKAGE = Path(pipeflow.__file__).parent
 MODULES = sorted(path for path in PACKAGE.rglob("*.py"))
 
 GROUND = ("errors", "constants", "sources", "verdict", "arrays", "rootfind", "quadrature")
-INPUTS = ("line.elements", "line.catalogue", "line.fittings", "rheology", "friction.methods", "friction.criteria")
+INPUTS = (
+    "line.elements",
+    "line.catalogue",
+    "line.fittings",
+    "rheology",
+    "friction.methods",
+    "friction.criteria",
+    "operability.pressures",
+)
 """The input dataclasses of the rooms below ``study``, and the keys and records of methods."""
 MAY_IMPORT: dict[str, tuple[str, ...]] = {
     **dict.fromkeys(GROUND, GROUND),

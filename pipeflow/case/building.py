@@ -18,7 +18,6 @@ from pipeflow.case.model import (
     Limits,
     Liquid,
     Methods,
-    PipeWall,
     Pump,
     Restart,
     Site,
@@ -31,6 +30,7 @@ from pipeflow.case.schema import CasePart, FlowPart, VesselPart
 from pipeflow.case.sizing_part import CostPart, SizingPart
 from pipeflow.line.catalogue import INCH, MATERIALS
 from pipeflow.line.elements import Element, Equipment, Fluid, Pipe, Vessel
+from pipeflow.operability.pressures import WallInputs
 from pipeflow.rheology import mixture
 
 
@@ -52,7 +52,7 @@ def build_case(part: CasePart, file: str) -> Case:
         route=tuple(_element(element, density) for element in part.route),
         limits=_limits(part.limits),
         restart=Restart(**_inputs(part.restart)) if part.restart else Restart(),
-        pipe_wall=PipeWall(**_inputs(part.pipe_wall)) if part.pipe_wall else None,
+        pipe_wall=WallInputs(**_inputs(part.pipe_wall)) if part.pipe_wall else None,
         sizing=_sizing(part.sizing) if part.sizing else Sizing(),
         methods=Methods(**part.methods.model_dump()),
         sizes={pipe.pipe: pipe.size.name for pipe in pipes if pipe.size},

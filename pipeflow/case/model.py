@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 from pipeflow.line.elements import Element, Fluid, Vessel
+from pipeflow.operability.pressures import WallInputs
 from pipeflow.rheology.conditions import Dependence, Variable
 from pipeflow.units import format_value
 
@@ -44,28 +45,6 @@ class Restart:
     static_yield_stress: float | None = None
     factor: float | None = None
     pump_after: str | None = None
-
-
-@dataclass(frozen=True)
-class PipeWall:
-    """What holds the pressure, SI; None where the case does not say (``pipeflow.case.limits_part``)."""
-
-    code: str | None = None
-    allowable_stress: float | None = None
-    yield_strength: float | None = None
-    design_factor: float | None = None
-    joint_factor: float | None = None
-    weld_factor: float | None = None
-    coefficient_y: float | None = None
-    mill_tolerance: float = 0.0
-    corrosion_allowance: float = 0.0
-    wear_allowance: float = 0.0
-    pressure_rating: float | None = None
-    temperature_derating: float | None = None
-    shut_in_pressure: float | None = None
-    closure_time: float | None = None
-    bulk_modulus: float | None = None
-    elastic_modulus: float | None = None
 
 
 @dataclass(frozen=True)
@@ -218,7 +197,7 @@ class Case:
     route: tuple[Element, ...]
     limits: Limits = Limits()
     restart: Restart = Restart()
-    pipe_wall: PipeWall | None = None
+    pipe_wall: WallInputs | None = None
     sizing: Sizing = Sizing()
     methods: Methods = Methods()
     sizes: dict[str, str] = field(default_factory=dict)

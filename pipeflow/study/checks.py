@@ -19,7 +19,6 @@ from pipeflow.operability.entrance import entrance_check
 from pipeflow.operability.limits import at_least, at_most, not_checked
 from pipeflow.operability.pressures import (
     Wall,
-    WallInputs,
     lowest_pressure_check,
     pressures_by_pipe,
     profile_of,
@@ -184,9 +183,8 @@ def _pressures(case: Case, state: LineState) -> Iterator[Check]:
     full: Profile | None = None
     if case.pipe_wall is not None:
         found = profile_of(state, position, (atmosphere or SEA_LEVEL_PRESSURE, vapour or 0.0))
-        inputs = WallInputs(**vars(case.pipe_wall))
-        pressures = pressures_by_pipe(state, found, stopped_line(case), inputs, position)
-        yield from wall_checks(state, walls_of(case, state), pressures, inputs)
+        pressures = pressures_by_pipe(state, found, stopped_line(case), case.pipe_wall, position)
+        yield from wall_checks(state, walls_of(case, state), pressures, case.pipe_wall)
         full = found if runs_full(found) else None
     lowest = lowest_pressure_check(state, full or profile_of(state, position), atmosphere, vapour)
     if lowest is not None:
