@@ -301,15 +301,34 @@ def aicc(sum_of_squares: float, readings: int, parameters: int) -> float | None:
 
 
 def _select(fits: tuple[ModelFit, ...]) -> tuple[str | None, str, tuple[str, ...]]:
-    """The lowest AICc; of those within :data:`DECISIVE` of it, the one with fewest parameters."""
+    """The lowest AICc; of those within :data:`DECISIVE` of it, the one with fewest parameters.
+
+    None where a model of more parameters comes far closer, but the readings are too few for its AICc.
+    """
     ranked = sorted((fit for fit in fits if fit.aicc is not None), key=_aicc_of)
     if not ranked:
         return None, "the readings identify no model", ()
     lowest = _aicc_of(ranked[0])
     near = [fit for fit in ranked if _aicc_of(fit) - lowest <= DECISIVE]
     chosen = min(near, key=lambda fit: (len(fit.parameters or {}), _aicc_of(fit)))
+    closer = _far_closer(chosen, fits)
+    if closer is not None:
+        why = (
+            f"{closer.model} comes within {closer.rmse_relative:.2%} of the readings, {chosen.model} within "
+            f"{chosen.rmse_relative:.2%}, and they are too few to compare the two; take more, or name a model"
+        )
+        return None, why, ()
     rivals = tuple(fit.model for fit in near if fit is not chosen)
     return chosen.model, _reason_of(chosen, ranked, rivals), rivals
+
+
+def _far_closer(chosen: ModelFit, fits: tuple[ModelFit, ...]) -> ModelFit | None:
+    """Find a model without an AICc that leaves less than half the scatter."""
+    open_fits = [fit for fit in fits if fit.aicc is None and fit.rmse_relative is not None]
+    closest = min(open_fits, key=lambda fit: fit.rmse_relative or 0.0, default=None)
+    if closest is None or (closest.rmse_relative or 0.0) >= 0.5 * (chosen.rmse_relative or 0.0):
+        return None
+    return closest
 
 
 def _aicc_of(fit: ModelFit) -> float:

@@ -111,22 +111,9 @@ def _cautions(curve: FlowCurve, found: CurveFit) -> Iterator[str]:
         yield f"no model is selected: {found.why}"
         return
     yield from selected.notes
-    yield from _about_closer(selected, found)
     yield from _about_scatter(curve, selected)
     yield from _about_sample(curve, selected.law)
     yield from (note for note in curve.sample.notes if note.startswith("the column "))
-
-
-def _about_closer(selected: ModelFit, found: CurveFit) -> Iterator[str]:
-    """Name a model that comes far closer, but that so few readings cannot compare."""
-    known = [fit for fit in found.models if fit.aicc is None and fit.rmse_relative is not None]
-    closest = min(known, key=lambda fit: fit.rmse_relative or 0.0, default=None)
-    here = selected.rmse_relative or 0.0
-    if closest is not None and closest is not selected and (closest.rmse_relative or 0.0) < 0.5 * here:
-        yield (
-            f"{closest.model} comes within {closest.rmse_relative:.2%} of the readings, {selected.model} within "
-            f"{here:.2%}: too few to compare the two; ask for {closest.model} by name, or take more readings"
-        )
 
 
 def _about_scatter(curve: FlowCurve, selected: ModelFit) -> Iterator[str]:
