@@ -66,7 +66,7 @@ class _Page:
     def banner(self, text: str) -> None:
         self.line()
         self.line("=" * self.width)
-        self.line(text, style="bold")
+        self.line(paragraph(text, self.width), style="bold")
 
     def heading(self, text: str) -> None:
         self.line()

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Container, Iterator, Sequence
 from textwrap import fill, wrap
+from unicodedata import combining, east_asian_width
 
 WIDTH = 80
 GAP = "  "
@@ -50,16 +51,26 @@ def table(
     empty ones are left out.
     """
     cells = [*_heads(columns), *rows]
-    widths = [max(len(cell) for cell in column) for column in zip(*cells, strict=True)]
+    widths = [max(columns_of(cell) for cell in column) for column in zip(*cells, strict=True)]
     widths[0] = min(widths[0], max(width - sum(widths[1:]) - len(GAP) * (len(widths) - 1), NARROWEST))
     for first, *others in cells:
         head, *rest = wrap(first, widths[0]) or [""]
         aligned = (
-            cell.ljust(column) if index in words else cell.rjust(column)
+            _padded(cell, column, index in words)
             for index, (cell, column) in enumerate(zip((head, *others), widths, strict=True))
         )
         yield GAP.join(aligned).rstrip()
         yield from (f"  {line}" for line in rest)
+
+
+def columns_of(text: str) -> int:
+    """Columns that a text takes in a terminal: two for a wide letter, none for a mark on the letter before."""
+    return sum(0 if combining(char) else 2 if east_asian_width(char) in "WF" else 1 for char in text)
+
+
+def _padded(cell: str, width: int, is_word: bool) -> str:
+    space = " " * (width - columns_of(cell))
+    return cell + space if is_word else space + cell
 
 
 def _heads(columns: Sequence[str]) -> list[list[str]]:
