@@ -180,7 +180,8 @@ class _Sheet:
         rows = self.table.lines.size
         if rows < LEAST_READINGS:
             line = int(self.table.lines[-1])
-            self.fault(line, None, "", f"{rows} readings; at least {LEAST_READINGS} are needed to compare models")
+            found = f"{rows} reading" + ("s" if rows != 1 else "")
+            self.fault(line, None, "", f"{found}; at least {LEAST_READINGS} are needed to compare models")
             return
         for name in KINDS[kind] if kind else ():
             if np.ptp(self.table.numbers[name]) == 0:
