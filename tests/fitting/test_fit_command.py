@@ -156,7 +156,7 @@ REFUSED: dict[str, tuple[str | bytes, list[str]]] = {
             ":13:3  shear_stress  found '0'",
         ],
     ),
-    "one point": (HEADER + "5,11\n", [":2  1 readings; at least 4 are needed"]),
+    "one point": (HEADER + "5,11\n", [":2  1 reading; at least 4 are needed"]),
     "no points": (HEADER, [":1  no rows below the header"]),
     "empty": ("", ["no header; the first row names the columns"]),
     "constant stress": (HEADER + "5,11\n10,11\n20,11\n40,11\n", [":1  shear_stress  the same in every row"]),
