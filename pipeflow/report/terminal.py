@@ -139,7 +139,8 @@ class _Page:
 
     def profile(self, result: Result) -> None:
         profile = result.profile
-        self.heading("Profile at design flow, pump at the start of the route")
+        place = f"after {profile.pump_after}" if profile.pump_after else "at the start of the route"
+        self.heading(f"Profile at design flow, pump {place}")
         columns = ("end of", "distance\nm", "elevation\nm", "head\nm", "pressure\nkPa gauge", "upper\nkPa gauge")
         self.rows(columns, _profile(result))
         self.text(f"Highest at {profile.highest_point}; lowest at {profile.lowest_point}.", mark="  ")
@@ -175,18 +176,21 @@ def _counted(pipe: Pipe) -> list[str]:
 
 
 def _profile(result: Result) -> list[tuple[str, ...]]:
-    """Before and after the pump, and the end of every element."""
+    """The start of the route, the end of every element, and the line right after the pump."""
     profile = result.profile
     weight = float(result.case.fluid.density) * STANDARD_GRAVITY
-    before = profile.points[1]
-    after = replace(
-        before,
-        head=before.head + profile.pump_head,
-        pressure=before.pressure + weight * profile.pump_head,
-        pressure_upper=before.pressure_upper + weight * profile.pump_head_upper,
-    )
-    named = [("before the pump", before), ("after the pump", after)]
-    named += [(point.element, point) for point in profile.points[3:-1] if point.place == "end"]
+    named = []
+    for index, point in enumerate(profile.points[:-1]):
+        if index == 1 or (index > 1 and point.place == "end"):
+            named.append((_place(index, point.element, profile.before_pump), point))
+        if index == profile.before_pump:
+            after = replace(
+                point,
+                head=point.head + profile.pump_head,
+                pressure=point.pressure + weight * profile.pump_head,
+                pressure_upper=point.pressure_upper + weight * profile.pump_head_upper,
+            )
+            named.append(("after the pump", after))
     return [
         (
             name,
@@ -198,6 +202,12 @@ def _profile(result: Result) -> list[tuple[str, ...]]:
         )
         for name, point in named
     ]
+
+
+def _place(index: int, element: str, before_pump: int) -> str:
+    if index > 1:
+        return element
+    return "before the pump" if before_pump == 1 else "start of the route"
 
 
 def _side_by_side(result: Result) -> Iterator[tuple[str, ...]]:

@@ -32,7 +32,7 @@ from pipeflow.operability.settling import COARSE, laminar_transport_check, stati
 from pipeflow.operability.state import LineState
 from pipeflow.operability.transition import margin_check
 from pipeflow.rheology import mixture
-from pipeflow.study.flows import MAXIMUM, MINIMUM
+from pipeflow.study.flows import MAXIMUM, MINIMUM, pump_position
 from pipeflow.study.profile import atmospheric_pressure
 from pipeflow.verdict import Check
 
@@ -149,13 +149,6 @@ def _product(case: Case, state: LineState) -> Iterator[Check]:
     heating = heating_check(state, case.specific_heat, case.limits.temperature_rise)
     if heating is not None:
         yield heating
-
-
-def pump_position(case: Case) -> int:
-    """Number of elements before the pump."""
-    names = [element.name for element in case.route]
-    after = case.restart.pump_after
-    return 0 if after is None else names.index(after) + 1
 
 
 def stopped_line(case: Case) -> Stopped | None:

@@ -34,3 +34,10 @@ def dry_solids_flow(case: Case) -> float | None:
     if case.solids is None:
         return None
     return float(mixture.dry_solids_flow(case.flow.design, case.solids.mass_fraction, case.fluid.density))
+
+
+def pump_position(case: Case) -> int:
+    """Number of elements before the pump."""
+    names = [element.name for element in case.route]
+    after = case.restart.pump_after
+    return 0 if after is None else names.index(after) + 1

@@ -8,7 +8,7 @@ from pipeflow.case.model import Case
 from pipeflow.line.profile import GradeLine, Profile, profile
 from pipeflow.line.route import LineFlow
 from pipeflow.line.site import SEA_LEVEL_PRESSURE, standard_atmosphere
-from pipeflow.study.flows import DESIGN
+from pipeflow.study.flows import DESIGN, pump_position
 from pipeflow.study.result import ProfilePoint, ProfileResult, SlackResult
 
 
@@ -22,7 +22,7 @@ def atmospheric_pressure(case: Case) -> float | None:
 
 
 def profile_of(case: Case, line: LineFlow) -> ProfileResult:
-    """Read the solved line at its nodes, the pump at the start of the route.
+    """Read the solved line at its nodes, the pump where the case has it, else at the start of the route.
 
     Slack flow is checked with the pressure of the site and of the vapour. Where the case does not give them but the
     pressure would fall below a vacuum at sea level, it is checked against that vacuum.
@@ -35,6 +35,8 @@ def profile_of(case: Case, line: LineFlow) -> ProfileResult:
         found = _read(case, line, atmosphere or SEA_LEVEL_PRESSURE, vapour or 0.0)
     return ProfileResult(
         points=tuple(_points(found)),
+        pump_after=case.restart.pump_after,
+        before_pump=2 * pump_position(case) + 1,
         pump_head=float(found.central.pump_head[DESIGN]),
         pump_head_upper=float(found.upper.pump_head[DESIGN]),
         highest_point=str(found.nodes[int(found.highest_point[DESIGN])]),
@@ -50,8 +52,16 @@ def profile_of(case: Case, line: LineFlow) -> ProfileResult:
 
 
 def _read(case: Case, line: LineFlow, atmosphere: float | None, vapour: float | None) -> Profile:
-    ends = (case.source, case.destination)
-    return profile(line, case.fluid, case.route, *ends, atmospheric_pressure=atmosphere, vapour_pressure=vapour)
+    return profile(
+        line,
+        case.fluid,
+        case.route,
+        case.source,
+        case.destination,
+        pump_position=pump_position(case),
+        atmospheric_pressure=atmosphere,
+        vapour_pressure=vapour,
+    )
 
 
 def _lowest(case: Case, found: Profile) -> float:

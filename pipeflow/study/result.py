@@ -114,12 +114,15 @@ class SlackResult:
 class ProfileResult:
     """The line along its route, with its high and low points.
 
-    ``pump_head`` is what the pump must give, m: the total head, or more where a high point governs. ``slack`` is None
-    where it could not be checked; ``needed_for_slack`` names the keys it needs. ``slack_by_vacuum`` tells that it was
-    checked against a vacuum at sea level for want of them. Pressures in Pa, gauge.
+    ``pump_after`` names the element before the pump, None is the start of the route; ``before_pump`` is the index of
+    its point. ``pump_head`` is what it must give, m: the total head, or more where a high point governs. ``slack`` is
+    None where it could not be checked; ``needed_for_slack`` names the keys it needs. ``slack_by_vacuum`` tells that it
+    was checked against a vacuum at sea level for want of them. Pressures in Pa, gauge.
     """
 
     points: tuple[ProfilePoint, ...]
+    pump_after: str | None
+    before_pump: int
     pump_head: float
     pump_head_upper: float
     highest_point: str

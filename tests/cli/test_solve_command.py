@@ -170,3 +170,17 @@ route:
   - {{pipe: only, diameter: 4 in, length: 300 ft, rise: 5 ft, roughness: 0.002 in, fittings: {{elbow_90: 2}}}}
 """,
 }
+
+
+def test_the_profile_puts_the_pump_where_the_case_has_it():
+    """Before a pump after the suction line stands the source's pressure less what the suction line loses."""
+    document = json.loads(pipeflow("solve", "--json", ROOT / "cases" / "thickener-underflow.yaml").stdout)
+    profile, (suction, *_) = document["profile"], document["elements"]
+    assert profile["pump_after"] == "suction line"
+    before, after = (profile["points"][profile["before_pump"] + step] for step in (0, 1))
+    weight = document["density_kg_m3"] * 9.80665
+    head = 3.2 - (suction["friction_loss_Pa"] + suction["fitting_loss_Pa"]) / weight
+    assert before["head_m"] == pytest.approx(head, rel=1e-9)
+    reducer = document["elements"][2]["reducer_loss_Pa"] if after["element"] != "densitometer" else 0.0
+    assert after["head_m"] == pytest.approx(head + profile["pump_head_m"] - reducer / weight, rel=1e-9)
+    assert profile["pump_head_m"] == pytest.approx(document["totals"]["total_head_m"], rel=1e-9)
