@@ -54,6 +54,8 @@ _UNITS = {
     "head_without": "m",
     "pump_head": "m",
     "pump_head_upper": "m",
+    "pump_pressure": "Pa",
+    "pump_pressure_upper": "Pa",
     "lowest_pressure": "Pa",
 }
 
@@ -101,6 +103,7 @@ def _profile(profile: ProfileResult) -> dict[str, Any]:
     return {
         **_fields(profile),
         "points": [_fields(point) for point in profile.points],
+        "after_pump": _fields(profile.after_pump),
         "slack": profile.slack and _fields(profile.slack),
         "slack_upper": profile.slack_upper and _fields(profile.slack_upper),
     }

@@ -4,11 +4,10 @@ from __future__ import annotations
 
 import sys
 from collections.abc import Container, Iterable, Iterator, Sequence
-from dataclasses import fields, replace
+from dataclasses import fields
 from shutil import get_terminal_size
 
 from pipeflow.case.model import Case, Liquid, Solids
-from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.line.elements import Pipe
 from pipeflow.report.rheology_lines import rheology_lines
 from pipeflow.report.text import PARAMETER_UNITS, WIDTH, paragraph, table
@@ -178,19 +177,12 @@ def _counted(pipe: Pipe) -> list[str]:
 def _profile(result: Result) -> list[tuple[str, ...]]:
     """The start of the route, the end of every element, and the line right after the pump."""
     profile = result.profile
-    weight = float(result.case.fluid.density) * STANDARD_GRAVITY
     named = []
     for index, point in enumerate(profile.points[:-1]):
         if index == 1 or (index > 1 and point.place == "end"):
             named.append((_place(index, point.element, profile.before_pump), point))
         if index == profile.before_pump:
-            after = replace(
-                point,
-                head=point.head + profile.pump_head,
-                pressure=point.pressure + weight * profile.pump_head,
-                pressure_upper=point.pressure_upper + weight * profile.pump_head_upper,
-            )
-            named.append(("after the pump", after))
+            named.append(("after the pump", profile.after_pump))
     return [
         (
             name,
@@ -215,13 +207,12 @@ def _side_by_side(result: Result) -> Iterator[tuple[str, ...]]:
         regimes = dict.fromkeys(element.regime for element in one.elements if element.regime)
         statuses = {check.status for check in one.checks}
         worst = next((mark for status, mark in reversed(MARK.items()) if status in statuses), "none stated")
-        weight = float(one.case.fluid.density) * STANDARD_GRAVITY
         yield (
             name,
             _number(one.totals.head_loss),
             _number(one.totals.head_loss_upper),
             _number(one.profile.pump_head_upper),
-            _number(weight * one.profile.pump_head_upper, "kPa"),
+            _number(one.profile.pump_pressure_upper, "kPa"),
             " / ".join(REGIME_IN_SHORT.get(regime, regime) for regime in regimes),
             worst,
         )
@@ -351,10 +342,11 @@ def _totals(result: Result) -> Iterator[tuple[str, ...]]:
     required = (_number(figure, "kPa") for figure in (totals.pressure_required, totals.pressure_required_upper))
     yield "pressure required", *required, "kPa"
     if result.profile.slack_upper and result.profile.slack_upper.share:
-        heads = (result.profile.pump_head, result.profile.pump_head_upper)
-        weight = float(result.case.fluid.density) * STANDARD_GRAVITY
+        profile = result.profile
+        heads = (profile.pump_head, profile.pump_head_upper)
+        pressures = (profile.pump_pressure, profile.pump_pressure_upper)
         yield "PUMP HEAD, slack flow", *(_number(head) for head in heads), "m of slurry"
-        yield "PUMP PRESSURE, slack flow", *(_number(weight * head, "kPa") for head in heads), "kPa"
+        yield "PUMP PRESSURE, slack flow", *(_number(pressure, "kPa") for pressure in pressures), "kPa"
 
 
 def _number(value: float | None, unit: str | None = None, digits: int = 4) -> str:

@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from dataclasses import replace
 
 from pipeflow.case.model import Case
+from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.line.profile import GradeLine, Profile, profile
 from pipeflow.line.route import LineFlow
 from pipeflow.line.site import SEA_LEVEL_PRESSURE, standard_atmosphere
@@ -33,12 +35,18 @@ def profile_of(case: Case, line: LineFlow) -> ProfileResult:
     impossible = found.central.slack is None and _lowest(case, found) < -SEA_LEVEL_PRESSURE
     if impossible:
         found = _read(case, line, atmosphere or SEA_LEVEL_PRESSURE, vapour or 0.0)
+    points, before_pump = tuple(_points(found)), 2 * pump_position(case) + 1
+    heads = (float(found.central.pump_head[DESIGN]), float(found.upper.pump_head[DESIGN]))
+    pressures = tuple(float(case.fluid.density) * STANDARD_GRAVITY * head for head in heads)
     return ProfileResult(
-        points=tuple(_points(found)),
+        points=points,
         pump_after=case.restart.pump_after,
-        before_pump=2 * pump_position(case) + 1,
-        pump_head=float(found.central.pump_head[DESIGN]),
-        pump_head_upper=float(found.upper.pump_head[DESIGN]),
+        before_pump=before_pump,
+        after_pump=_raised(points[before_pump], heads, pressures),
+        pump_head=heads[0],
+        pump_head_upper=heads[1],
+        pump_pressure=pressures[0],
+        pump_pressure_upper=pressures[1],
         highest_point=str(found.nodes[int(found.highest_point[DESIGN])]),
         lowest_point=str(found.nodes[int(found.lowest_point[DESIGN])]),
         lowest_pressure=_lowest(case, found),
@@ -81,6 +89,17 @@ def _points(found: Profile) -> Iterator[ProfilePoint]:
             pressure=_without_rounding(found.central.pressure[DESIGN, index]),
             pressure_upper=_without_rounding(found.upper.pressure[DESIGN, index]),
         )
+
+
+def _raised(point: ProfilePoint, heads: tuple[float, ...], pressures: tuple[float, ...]) -> ProfilePoint:
+    """The point with the central and upper head of the pump, m, and its pressure, Pa, added."""
+    return replace(
+        point,
+        head=point.head + heads[0],
+        head_upper=point.head_upper + heads[1],
+        pressure=point.pressure + pressures[0],
+        pressure_upper=point.pressure_upper + pressures[1],
+    )
 
 
 def _without_rounding(pressure: float) -> float:

@@ -115,16 +115,20 @@ class ProfileResult:
     """The line along its route, with its high and low points.
 
     ``pump_after`` names the element before the pump, None is the start of the route; ``before_pump`` is the index of
-    its point. ``pump_head`` is what it must give, m: the total head, or more where a high point governs. ``slack`` is
-    None where it could not be checked; ``needed_for_slack`` names the keys it needs. ``slack_by_vacuum`` tells that it
-    was checked against a vacuum at sea level for want of them. Pressures in Pa, gauge.
+    its point, ``after_pump`` the same place past it, before the entrance of the next element. ``pump_head`` is what it
+    must give, m: the total head, or more where a high point governs; ``pump_pressure`` the same, Pa. ``slack`` is None
+    where it could not be checked; ``needed_for_slack`` names the keys it needs. ``slack_by_vacuum`` tells that it was
+    checked against a vacuum at sea level for want of them. Pressures in Pa, gauge.
     """
 
     points: tuple[ProfilePoint, ...]
     pump_after: str | None
     before_pump: int
+    after_pump: ProfilePoint
     pump_head: float
     pump_head_upper: float
+    pump_pressure: float
+    pump_pressure_upper: float
     highest_point: str
     lowest_point: str
     lowest_pressure: float
