@@ -6,9 +6,11 @@ import sys
 from collections.abc import Iterator
 from pathlib import Path
 
+from pages import write_or_compare
+
 from pipeflow.study.methods import Section, method_sections
 
-DOCS = Path(__file__).parent
+PAGE = Path(__file__).parent / "methods.md"
 CONFIDENCE = {
     "exact": "a derivation, checked by computation",
     "high": "standard textbook material, checked numerically; recalled from memory of the source",
@@ -45,21 +47,5 @@ def _section(section: Section) -> Iterator[str]:
         yield f"| `{source.key}` | {source.title} | {source.citation} | {ranges} | {source.confidence} | {notes} |"
 
 
-PAGES = {"methods.md": methods_page}
-
-
-def main() -> int:
-    """Write or compare every page."""
-    stale = []
-    for name, page in PAGES.items():
-        path, text = DOCS / name, page()
-        if not path.exists() or path.read_text(encoding="utf-8") != text:
-            stale.append(name)
-            if "--check" not in sys.argv:
-                path.write_text(text, encoding="utf-8")
-    print(f"{'stale' if '--check' in sys.argv else 'written'}: {', '.join(stale) or 'nothing'}")
-    return 1 if stale and "--check" in sys.argv else 0
-
-
 if __name__ == "__main__":
-    sys.exit(main())
+    sys.exit(write_or_compare(PAGE, methods_page()))

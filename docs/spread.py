@@ -10,6 +10,7 @@ from collections.abc import Iterator
 from pathlib import Path
 
 import numpy as np
+from pages import write_or_compare
 
 from pipeflow.arrays import Array
 from pipeflow.friction import Regime, solve_pipes
@@ -128,16 +129,5 @@ def _quantiles(ratios: Array) -> str:
     return f"{middle:+.0f} [{low:+.0f} .. {high:+.0f}]"
 
 
-def main() -> int:
-    """Write the page, or compare."""
-    text = page()
-    fresh = PAGE.exists() and PAGE.read_text(encoding="utf-8") == text
-    if "--check" in sys.argv:
-        print("method-spread.md is " + ("fresh" if fresh else "stale"))
-        return 0 if fresh else 1
-    PAGE.write_text(text, encoding="utf-8")
-    return 0
-
-
 if __name__ == "__main__":
-    sys.exit(main())
+    sys.exit(write_or_compare(PAGE, page()))
