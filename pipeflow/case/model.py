@@ -140,14 +140,110 @@ class Site:
 
 
 @dataclass(frozen=True)
+class Reciprocating:
+    """A pump of pistons: number of cylinders, and the constant k of the acceleration head."""
+
+    cylinders: int
+    constant: float
+
+
+@dataclass(frozen=True)
+class PumpTable:
+    """Columns of a pump's curve, SI, each of one length: flow in m³/s, head in m or pressure in Pa; empty if not given."""
+
+    flow: tuple[float, ...]
+    head: tuple[float, ...] = ()
+    pressure: tuple[float, ...] = ()
+    efficiency: tuple[float, ...] = ()
+    npsh_required: tuple[float, ...] = ()
+
+
+@dataclass(frozen=True)
 class Pump:
-    """A candidate pump: speeds in rad/s, ``curve`` the path of its water curve as written in the case."""
+    """A candidate pump, SI; None where the case does not say.
+
+    Attributes
+    ----------
+    kind : str
+        ``centrifugal`` or ``positive-displacement``.
+    curve : str
+        Path of its curve as written in the case.
+    table : PumpTable
+        The curve read.
+    speed, curve_speed : float or None
+        Running speed and that of the curve, rad/s.
+    speed_minimum, speed_maximum : float or None
+        Ends of a variable speed, rad/s.
+    number : int
+        Pumps of this kind that run together, ``arrangement`` tells how: ``series`` or ``parallel``.
+    stages : int
+        Impellers in one pump, which the curve holds all of.
+    impeller_diameter, trimmed_diameter, outlet_width : float or None
+        Of the curve, as it will be cut, and the width of the passage at the outlet, m.
+    inlet : str
+        ``end`` or ``side``.
+    motor_power, motor_margin : float or None, float
+        Rated power of a motor that is there, W, and the share kept spare.
+    relief_pressure : float or None
+        Setting of the relief valve, Pa.
+    torque_limit : float or None
+        N m.
+    test_viscosity : float or None
+        Of the liquid of a positive-displacement pump's curve, Pa s.
+    """
 
     name: str
     kind: str
     curve: str
+    table: PumpTable = PumpTable(())
     speed: float | None = None
     curve_speed: float | None = None
+    speed_minimum: float | None = None
+    speed_maximum: float | None = None
+    number: int = 1
+    arrangement: str = "parallel"
+    stages: int = 1
+    impeller_diameter: float | None = None
+    trimmed_diameter: float | None = None
+    outlet_width: float | None = None
+    inlet: str = "end"
+    motor_power: float | None = None
+    motor_margin: float = 0.15
+    relief_pressure: float | None = None
+    torque_limit: float | None = None
+    test_viscosity: float | None = None
+    reciprocating: Reciprocating | None = None
+
+
+@dataclass(frozen=True)
+class PumpPlace:
+    """Where the pump stands in the route: its name, and the number of elements before it."""
+
+    name: str
+    position: int
+
+
+@dataclass(frozen=True)
+class Job:
+    """What the design file says of the document; empty where the case does not."""
+
+    project: str = ""
+    client: str = ""
+    number: str = ""
+    prepared_by: str = ""
+    checked_by: str = ""
+    approved_by: str = ""
+    date: str = ""
+
+
+@dataclass(frozen=True)
+class Uncertain:
+    """An input that is not known exactly: its key path and its distribution in SI."""
+
+    path: str
+    kind: str
+    low: float
+    high: float
 
 
 @dataclass(frozen=True)
@@ -178,6 +274,14 @@ class Case:
         Of the fluid, J/(kg K).
     hold_times : dict of str to float
         Least residence time of the fastest particle, s, by the name of the pipe that is a hold tube.
+    pump_place : PumpPlace, optional
+        Where the pump stands; at the source without one.
+    uncertainty : tuple of Uncertain
+        Inputs that are not known exactly.
+    lowest_level : float, optional
+        Of the liquid in the source above the route's start, m: what suction is judged at.
+    job : Job
+        What the design file says of the document.
     density_is_mixed : bool
         The density of the fluid is worked out from solids and liquid.
     assumed : tuple of str
@@ -208,6 +312,10 @@ class Case:
     sheets: tuple[FitResult, ...] = ()
     followed: tuple[Followed, ...] = ()
     pumps: tuple[Pump, ...] = ()
+    pump_place: PumpPlace | None = None
+    uncertainty: tuple[Uncertain, ...] = ()
+    lowest_level: float | None = None
+    job: Job = Job()
     solids: Solids | None = None
     liquid: Liquid | None = None
     site: Site | None = None

@@ -247,6 +247,7 @@ class CasePart(Part):
     sizing: SizingPart | None = None
     methods: MethodsPart = MethodsPart()
     pumps: Annotated[list[PumpPart], Field(max_length=MAX_PUMPS)] = Field(default_factory=list)
+    uncertainty: Any = None
     scenarios: Any = None
 
     @check("fluid")

@@ -38,6 +38,8 @@ def dry_solids_flow(case: Case) -> float | None:
 
 def pump_position(case: Case) -> int:
     """Number of elements before the pump."""
+    if case.pump_place is not None:
+        return case.pump_place.position
     names = [element.name for element in case.route]
     after = case.restart.pump_after
     return 0 if after is None else names.index(after) + 1
