@@ -149,7 +149,7 @@ class Reciprocating:
 
 @dataclass(frozen=True)
 class PumpTable:
-    """Columns of a pump's curve, SI, each of one length: flow in m³/s, head in m or pressure in Pa; empty if not given."""
+    """Columns of a pump's curve, SI, of one length: flow in m³/s, head in m or pressure in Pa; empty if not given."""
 
     flow: tuple[float, ...]
     head: tuple[float, ...] = ()

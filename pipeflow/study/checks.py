@@ -7,6 +7,7 @@ from collections.abc import Iterator
 import numpy as np
 
 from pipeflow.case.model import Case
+from pipeflow.case.model import Solids as CaseSolids
 from pipeflow.friction import Status
 from pipeflow.line.catalogue import find_size
 from pipeflow.line.elements import Vessel
@@ -111,19 +112,17 @@ def _solids(case: Case, state: LineState) -> Iterator[Check]:
     solids, liquid = case.solids, case.liquid
     if solids is None:
         return
-    size, of_size = (solids.d85, "d85") if solids.d85 is not None else (solids.d50, "d50")
+    size, of_size = _size(solids)
     viscosity = liquid.viscosity if liquid else None
     needs = {"fluid.solids.d85": size, "fluid.liquid.viscosity": viscosity}
     lacking = tuple(key for key, value in needs.items() if value is None)
-    density = liquid.density if liquid and liquid.density else None
-    if density is None:
-        density = float(mixture.liquid_density(solids.volume_fraction, solids.density, state.density))
+    density = _carrier_density(case, solids)
     if solids.density <= density:
         return
-    if size is None or viscosity is None:
+    carried = carried_solids(case)
+    if carried is None:
         yield not_checked("deposition", lacking, "m/s", "velocity at minimum flow against deposition")
     else:
-        carried = Solids(size, solids.density / density, solids.volume_fraction, viscosity / density)
         yield deposition_check(state, carried, of_size, case.methods.deposition)
     if size is None:
         return
@@ -131,6 +130,28 @@ def _solids(case: Case, state: LineState) -> Iterator[Check]:
     if transport is not None:
         yield transport
     yield static_suspension_check(_static_yield_stress(case), size, of_size, (solids.density, density))
+
+
+def _size(solids: CaseSolids) -> tuple[float | None, str]:
+    """Size that solids are judged by, m, and its name."""
+    return (solids.d85, "d85") if solids.d85 is not None else (solids.d50, "d50")
+
+
+def _carrier_density(case: Case, solids: CaseSolids) -> float:
+    if case.liquid and case.liquid.density:
+        return case.liquid.density
+    return float(mixture.liquid_density(solids.volume_fraction, solids.density, float(case.fluid.density)))
+
+
+def carried_solids(case: Case) -> Solids | None:
+    """Solids as the formulas of deposition take them; None where they do not sink, or something is not known."""
+    solids, viscosity = case.solids, case.liquid.viscosity if case.liquid else None
+    if solids is None or viscosity is None:
+        return None
+    size, density = _size(solids)[0], _carrier_density(case, solids)
+    if size is None or solids.density <= density:
+        return None
+    return Solids(size, solids.density / density, solids.volume_fraction, viscosity / density)
 
 
 def _static_yield_stress(case: Case) -> float:

@@ -60,7 +60,7 @@ class SystemCurve:
 
 @dataclass(frozen=True)
 class DrawnCurve:
-    """A pump's curve as drawn; columns of one length, ``established`` False where a figure is shown but not credited."""
+    """A pump's curve as drawn, columns of one length; where ``established`` is False a figure is not credited."""
 
     flow: tuple[float, ...]
     head: tuple[float, ...]

@@ -4,14 +4,31 @@ from __future__ import annotations
 
 from dataclasses import fields
 
+from pipeflow.arrays import FloatOrArray
 from pipeflow.case.model import Case
 from pipeflow.friction import PipeFlow
+from pipeflow.line import route
 from pipeflow.line.elements import Pipe
 from pipeflow.line.route import LineFlow
 from pipeflow.rheology import mixture
 
 DESIGN, MINIMUM, MAXIMUM = 0, 1, 2
 FLOW_NAMES = ("design flow", "minimum flow", "maximum flow")
+
+
+def line_at(case: Case, flow: FloatOrArray) -> LineFlow:
+    """Solve the line of a case at these flows, m³/s."""
+    return route.solve(
+        flow,
+        case.fluid,
+        case.route,
+        case.source,
+        case.destination,
+        turbulent=case.methods.turbulent,
+        critical=case.methods.critical,
+        fittings=case.methods.fittings,
+        particle_size=case.particle_size,
+    )
 
 
 def distinct_flows(case: Case) -> tuple[str, ...]:

@@ -15,7 +15,6 @@ from pipeflow.friction.laminar import BUCKINGHAM_REINER, HAGEN_POISEUILLE, METZN
 from pipeflow.friction.methods import critical_criterion, turbulent_method
 from pipeflow.friction.solver import critical_velocities
 from pipeflow.friction.transition import TRANSITION_LINE
-from pipeflow.line import route
 from pipeflow.line.elements import Equipment, Pipe
 from pipeflow.line.fittings import DEFAULT_METHOD, EXIT, METHODS, fittings
 from pipeflow.line.kinetics import KINETIC_FACTORS
@@ -25,7 +24,7 @@ from pipeflow.rheology import Rheology
 from pipeflow.sources import Source
 from pipeflow.study.cautions import cautions
 from pipeflow.study.checks import checks
-from pipeflow.study.flows import DESIGN, one_pipe, pipes_of
+from pipeflow.study.flows import DESIGN, line_at, one_pipe, pipes_of
 from pipeflow.study.profile import profile_of
 from pipeflow.study.result import ElementResult, MethodSpread, MethodUse, Result, Totals
 from pipeflow.study.rheology_answers import rheology_answers, rheology_cautions, rheology_checks, rheology_methods
@@ -44,17 +43,7 @@ def solve(case: Case) -> Result:
         Elements and totals at design flow; checks and cautions over the minimum, design and maximum flow.
     """
     flows = (case.flow.design, case.flow.minimum, case.flow.maximum)
-    line = route.solve(
-        np.array(flows),
-        case.fluid,
-        case.route,
-        case.source,
-        case.destination,
-        turbulent=case.methods.turbulent,
-        critical=case.methods.critical,
-        fittings=case.methods.fittings,
-        particle_size=case.particle_size,
-    )
+    line = line_at(case, np.array(flows))
     elements = tuple(_elements(case, line))
     profile = profile_of(case, line)
     rheology = rheology_answers(case, line, flows)
