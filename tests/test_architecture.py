@@ -50,7 +50,7 @@ MAY_IMPORT: dict[str, tuple[str, ...]] = {
         "rheology",
         "units",
     ),
-    "record": ("record", "study", "case"),
+    "record": ("record", "study", "case", "sizing", "line.route", *INPUTS),
     "report": ("report", "record", "study", "case.model", "units", "friction.turbulent", *INPUTS),
     "cli": ("cli", "report", "record", "study", "case"),
 }
