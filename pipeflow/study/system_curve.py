@@ -70,7 +70,8 @@ def _edges(case: Case) -> Array:
     line = line_at(case, case.flow.design or case.flow.maximum or 1e-3)
     area = np.pi / 4.0 * np.array([pipe.diameter for pipe in pipes]) ** 2
     both = [line.pipes.critical_velocity * area, line.pipes.turbulent_velocity * area]
-    return np.asarray(np.stack(both, axis=-1).ravel())
+    edges: Array = np.stack(both, axis=-1).ravel()
+    return edges
 
 
 def system_curve(case: Case, flow: Array) -> SystemCurve:
