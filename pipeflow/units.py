@@ -266,6 +266,22 @@ def format_value(value: float, unit_or_dimension: str, digits: int = 4) -> str:
     return f"{significant(to_display(value, unit), digits)} {unit}"
 
 
+def format_si(value: float, unit: str) -> str:
+    """Write a figure given in an SI unit, none or one of the table, in the unit an engineer reads it in.
+
+    Examples
+    --------
+    >>> format_si(310_000.0, "Pa"), format_si(12.0, "Pa"), format_si(0.0389, "m3/s"), format_si(0.5, "")
+    ('310.0 kPa', '12.00 Pa', '140.0 m3/h', '0.5000')
+    """
+    if unit == "Pa/m":
+        return f"{significant(value / 1e3)} kPa/m"
+    if unit == "Pa" and abs(value) < 1e3:
+        return format_value(value, unit)
+    read_in = {"Pa": "kPa", "m3/s": "m3/h", "W": "kW"}.get(unit, unit)
+    return format_value(value, read_in) if unit else significant(value)
+
+
 def significant(value: float, digits: int = 4) -> str:
     """Write a number to so many significant digits, without an exponent between 1e-5 and 1e7."""
     if not math.isfinite(value):

@@ -7,7 +7,7 @@ from pathlib import PurePath
 from typing import TYPE_CHECKING
 
 from pipeflow.case.model import Followed, shown_condition
-from pipeflow.report.text import PARAMETER_UNITS, WIDTH, paragraph, table, underlined
+from pipeflow.report.text import PARAMETER_UNITS, WIDTH, heading, paragraph, table
 from pipeflow.study.result import Result
 from pipeflow.study.rheology_result import BeyondTested, LawLoss
 from pipeflow.units import format_value, significant
@@ -25,33 +25,28 @@ def rheology_lines(result: Result, width: int = WIDTH) -> Iterator[str]:
 def _sections(result: Result, width: int) -> Iterator[str]:
     case, answers = result.case, result.rheology
     if case.fitted is not None:
-        yield from _heading("Rheology from readings", width)
+        yield from heading("Rheology from readings", width)
         yield from _fit(case.fitted, case.readings[0], width)
     elif case.sheets:
-        yield from _heading("Rheology from readings", width)
+        yield from heading("Rheology from readings", width)
         yield from (paragraph(_sheet(*each), width, "- ") for each in zip(case.readings, case.sheets, strict=True))
     if case.followed:
-        yield from _heading("Parameters by solids or temperature", width)
+        yield from heading("Parameters by solids or temperature", width)
         heads = ("", "law", "value", "", "at", "tested")
         yield from table(heads, [_followed_row(followed) for followed in case.followed], (0, 1, 3), width)
     if answers.by_law:
-        yield from _heading("Laws the readings do not tell apart, at design flow", width)
+        yield from heading("Laws the readings do not tell apart, at design flow", width)
         columns = ("", "loss\nkPa", "upper\nkPa", "difference\nkPa")
         yield from table(columns, [_law_row(law, answers.by_law[0]) for law in answers.by_law], width=width)
         if answers.for_design:
             yield paragraph(f"For design take {answers.for_design.model}, the highest loss.", width, "  ")
     if answers.beyond:
-        yield from _heading("Wall shear rates far beyond those tested", width)
+        yield from heading("Wall shear rates far beyond those tested", width)
         heads = ("", "highest\n1/s", "loss\nkPa", "upper\nkPa", "by tangent\nkPa", "upper\nkPa")
         yield from table(heads, [_beyond_row(beyond) for beyond in answers.beyond], width=width)
         tested = significant(answers.highest_tested)
         note = f"Tested to {tested} 1/s. The tangent carries the law straight on from there; either answer is a guess."
         yield paragraph(note, width, "  ")
-
-
-def _heading(text: str, width: int) -> Iterator[str]:
-    yield ""
-    yield underlined(text, width)
 
 
 def _fit(fitted: FitResult, file: str, width: int) -> Iterator[str]:

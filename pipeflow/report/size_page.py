@@ -5,11 +5,11 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator
 
-from pipeflow.report.text import paragraph, table, underlined
+from pipeflow.report.text import heading, paragraph, table
 from pipeflow.study.result import SAFETY_NOTICE
-from pipeflow.study.sizing import Candidate, SizingResult, shown
+from pipeflow.study.sizing import Candidate, SizingResult
 from pipeflow.study.solve_for import Answer
-from pipeflow.units import format_value, significant, to_display
+from pipeflow.units import format_si, format_value, significant, to_display
 
 WIDTH = 80
 COLUMNS = (
@@ -39,7 +39,7 @@ def _page(result: SizingResult) -> Iterator[str]:
     yield case.file
     over = result.series or "a free bore"
     yield paragraph(f"Sizing of {', '.join(result.pipes)} over {over}.")
-    yield from _heading(f"Sizes at design flow, {format_value(case.flow.design, 'volume flow')}; head loss at maximum")
+    yield from heading(f"Sizes at design flow, {format_value(case.flow.design, 'volume flow')}; head loss at maximum")
     near = _near(result)
     yield from table(COLUMNS, [_row(one) for one in near], words=(0, 8, 9))
     extras = [extra for extra in EXTRAS if any(getattr(one, extra[0]) is not None for one in near)]
@@ -49,17 +49,12 @@ def _page(result: SizingResult) -> Iterator[str]:
         yield from table(("size", *(head for _, head, _ in extras)), rows)
     if len(near) < len(result.candidates):
         yield paragraph(f"{len(result.candidates)} sizes were tried; those not shown fail by more.")
-    yield from _heading("Why sizes fail")
+    yield from heading("Why sizes fail")
     yield from _reasons(result)
-    yield from _heading("Size to choose")
+    yield from heading("Size to choose")
     yield from _choice(result)
-    yield from _heading("Before relying on this")
+    yield from heading("Before relying on this")
     yield paragraph(SAFETY_NOTICE)
-
-
-def _heading(text: str) -> Iterator[str]:
-    yield ""
-    yield underlined(text)
 
 
 def _row(one: Candidate) -> tuple[str, ...]:
@@ -149,7 +144,7 @@ def answer_page(answer: Answer) -> str:
 def _answer(answer: Answer) -> Iterator[str]:
     yield paragraph(answer.case.title)
     yield answer.case.file
-    yield from _heading(f"The most {answer.quantity.replace('-', ' ')} the line takes")
+    yield from heading(f"The most {answer.quantity.replace('-', ' ')} the line takes")
     limit = answer.limit.replace("_", " ")
     if answer.value is None:
         yield paragraph(f"None: {limit} is not met at any ({answer.scenario}).")
@@ -161,7 +156,7 @@ def _answer(answer: Answer) -> Iterator[str]:
     yield ""
     rows = [(name.replace("_", " "), _met_at(answer, value)) for name, value in answer.each.items()]
     yield from table(("limit reached at", ""), rows)
-    yield from _heading("Before relying on this")
+    yield from heading("Before relying on this")
     yield paragraph(SAFETY_NOTICE)
 
 
@@ -172,5 +167,4 @@ def _met_at(answer: Answer, value: float) -> str:
 
 
 def _quantity(answer: Answer, value: float) -> str:
-    units = {"m3/s": "m3/h", "Pa": "stress"}
-    return shown(value, units.get(answer.unit, answer.unit))
+    return format_si(value, answer.unit)

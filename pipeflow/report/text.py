@@ -42,6 +42,12 @@ def underlined(title: str, width: int = WIDTH) -> str:
     return f"{title}\n{'-' * min(len(title), width)}"
 
 
+def heading(title: str, width: int = WIDTH) -> Iterator[str]:
+    """Give an empty line, a title, and a line under it."""
+    yield ""
+    yield underlined(title, width)
+
+
 def table(
     columns: Sequence[str], rows: Sequence[Sequence[str]], words: Container[int] = (0,), width: int = WIDTH
 ) -> Iterator[str]:

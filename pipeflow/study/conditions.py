@@ -66,7 +66,7 @@ def restart_pressure(case: Case) -> float | None:
 
 
 def hardest_restart(case: Case) -> Case | None:
-    """Of case and scenarios the one whose gel asks for most, at rest, its yield stress the static one with its factor."""
+    """Of case and scenarios the one whose gel asks for most, with the static yield stress and its factor."""
     asked = [(pressure, one) for one in (case, *case.scenarios.values()) if (pressure := restart_pressure(one))]
     if not asked:
         return None

@@ -183,11 +183,16 @@ class Condition:
 
 @dataclass(frozen=True)
 class Ranked:
-    """A candidate in its rank: whether it holds in every condition, its power in the case itself, why it is out."""
+    """A candidate in its rank: whether it holds in every condition, and why not.
+
+    ``shaft_power`` is that of the case itself, ``standard_motor`` the size that covers every condition with the margin,
+    W.
+    """
 
     name: str
     holds: bool
     shaft_power: float | None
+    standard_motor: float | None
     reasons: tuple[str, ...]
 
 

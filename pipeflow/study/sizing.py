@@ -20,7 +20,7 @@ from pipeflow.line.route import LineFlow
 from pipeflow.study.checks import checks, stopped_line
 from pipeflow.study.economy import Bore, Economy, cost_per_year, economy
 from pipeflow.study.flows import DESIGN, MAXIMUM, MINIMUM, pipes_of
-from pipeflow.units import format_value, significant
+from pipeflow.units import format_si, format_value
 from pipeflow.verdict import Check
 
 OWN = "the case"
@@ -330,18 +330,12 @@ def _said(name: str, check: Check) -> str:
     """``head_loss 75.2 m, at most 60 m (thick)``."""
     if check.value is None or check.limit is None:
         return f"{check.name}: {check.basis}{_in(name)}"
-    return f"{check.name} {shown(check.value, check.unit)}, {check.sense} {shown(check.limit, check.unit)}{_in(name)}"
+    value, limit = (format_si(figure, check.unit) for figure in (check.value, check.limit))
+    return f"{check.name} {value}, {check.sense} {limit}{_in(name)}"
 
 
 def _in(name: str) -> str:
     return "" if name == OWN else f" ({name})"
-
-
-def shown(value: float, unit: str) -> str:
-    """Write an SI figure of a check in the unit an engineer reads it in."""
-    if unit == "Pa/m":
-        return f"{significant(value / 1e3)} kPa/m"
-    return format_value(value, "kPa" if unit == "Pa" and abs(value) >= 1e3 else unit) if unit else significant(value)
 
 
 def _on_the_central_figure(candidates: Sequence[Candidate]) -> Iterator[str]:

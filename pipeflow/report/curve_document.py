@@ -1,0 +1,106 @@
+"""System curves and their pumps as a JSON document: SI numbers, the unit at the end of each key, null for no value."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import fields, is_dataclass
+from typing import Any
+
+from pipeflow.study.curve_result import Condition, CurveResult, SystemCurve
+from pipeflow.study.result import SAFETY_NOTICE
+
+_UNITS = {
+    "flow": "m3_s",
+    "flow_from": "m3_s",
+    "flow_to": "m3_s",
+    "laminar_until": "m3_s",
+    "turbulent_from": "m3_s",
+    "deposition_flow": "m3_s",
+    "total_head": "m",
+    "total_head_upper": "m",
+    "pump_head": "m",
+    "pump_head_upper": "m",
+    "static_head": "m",
+    "head": "m",
+    "npsh_available": "m",
+    "npsh_required": "m",
+    "shaft_power": "W",
+    "motor_power": "W",
+    "standard_motor": "W",
+    "speed": "rad_s",
+    "viscosity_head": "Pa_s",
+    "viscosity_efficiency": "Pa_s",
+    "shear_rate": "1_s",
+    "velocity": "m_s",
+    "volume": "m3",
+    "time": "s",
+}
+_COLUMNS = ("flow", "total_head", "total_head_upper", "pump_head", "pump_head_upper", "static_head", "regime")
+
+
+def curve_document(result: CurveResult) -> dict[str, Any]:
+    """Lay the system curves of a case and its pumps out as the document that ``curve --json`` prints."""
+    case, own = result.case, result.own
+    laid_out: dict[str, Any] = {
+        "title": case.title,
+        "revision": case.revision,
+        "file": case.file,
+        "density_kg_m3": float(case.fluid.density),
+        "flow_m3_s": case.flow.design,
+        "flow_minimum_m3_s": case.flow.minimum,
+        "flow_maximum_m3_s": case.flow.maximum,
+        **_condition(own),
+        "envelope": {
+            "flow_m3_s": list(own.system.flow),
+            "low_m": list(result.envelope_low),
+            "high_m": list(result.envelope_high),
+        },
+        "ranking": [laid_out_fields(one) for one in result.ranking],
+        "selected": next((one.name for one in result.ranking if one.holds), None),
+        "cautions": [*result.cautions, *own.cautions],
+        "methods": [
+            {"key": use.source.key, "citation": use.source.citation, "used_for": use.used_for} for use in result.methods
+        ],
+        "safety_notice": SAFETY_NOTICE,
+    }
+    if len(result.conditions) > 1:
+        laid_out["scenarios"] = {
+            one.name: {**_condition(one), "cautions": list(one.cautions)} for one in result.conditions[1:]
+        }
+    return laid_out
+
+
+def _condition(one: Condition) -> dict[str, Any]:
+    system = one.system
+    return {
+        "kind": one.kind,
+        "system": _rows(system),
+        "boundaries": {
+            _key(name): getattr(system, name) for name in ("laminar_until", "turbulent_from", "deposition_flow")
+        },
+        "flat_bands": [laid_out_fields(band) for band in system.flat_bands],
+        "pumps": [laid_out_fields(pump) for pump in one.pumps],
+        "flushes": [laid_out_fields(flush) for flush in one.flushes],
+    }
+
+
+def _rows(system: SystemCurve) -> list[dict[str, Any]]:
+    columns = zip(*(getattr(system, name) for name in _COLUMNS), strict=True)
+    return [{_key(name): _plain(value) for name, value in zip(_COLUMNS, row, strict=True)} for row in columns]
+
+
+def laid_out_fields(item: Any) -> dict[str, Any]:
+    """Lay a dataclass out, and those in it."""
+    return {_key(field.name): _plain(getattr(item, field.name)) for field in fields(item)}
+
+
+def _key(name: str) -> str:
+    return f"{name}_{_UNITS[name]}" if name in _UNITS else name
+
+
+def _plain(value: Any) -> Any:
+    if is_dataclass(value) and not isinstance(value, type):
+        return laid_out_fields(value)
+    if isinstance(value, tuple):
+        return [_plain(one) for one in value]
+    return None if isinstance(value, float) and not math.isfinite(value) else value

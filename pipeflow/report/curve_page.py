@@ -1,0 +1,210 @@
+"""The page of a system curve and its pumps in a terminal: 80 columns of plain text."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+
+import numpy as np
+
+from pipeflow.case.model import FlowRange
+from pipeflow.report.text import heading, paragraph, table
+from pipeflow.study.curve_result import Condition, CurveResult, DutyPoint, PumpOnLine, Ranked, SystemCurve
+from pipeflow.study.ranking import worded
+from pipeflow.study.result import SAFETY_NOTICE
+from pipeflow.units import format_value, significant, to_display
+
+ROWS = 14
+"""Rows of evenly spaced flows that the page shows of a system curve, beside those stated."""
+MARK = {"ok": "ok", "not checked": "not checked", "caution": "caution", "fail": "FAIL"}
+
+
+def curve_page(result: CurveResult) -> str:
+    """Write the page."""
+    return "\n".join(_page(result)) + "\n"
+
+
+def _page(result: CurveResult) -> Iterator[str]:
+    case = result.case
+    yield paragraph(case.title + (f", revision {case.revision}" if case.revision else ""))
+    yield case.file
+    yield from heading("System curve")
+    yield from _system(result)
+    yield from heading("Chart")
+    from pipeflow.report.charts import terminal_chart
+
+    yield terminal_chart(result).rstrip("\n")
+    for index, pump in enumerate(result.own.pumps):
+        yield from heading(f"Pump: {pump.name}")
+        yield from _pump(pump, [(one, one.pumps[index]) for one in result.conditions])
+    if result.own.pumps:
+        yield from _conditions(result)
+        yield from heading("Ranking")
+        yield from _ranking(result.ranking)
+    if result.cautions:
+        yield from heading("Cautions")
+        yield from (paragraph(caution, mark="! ") for caution in result.cautions)
+    yield from heading("Methods")
+    yield from (
+        paragraph(f"{use.source.key}: {use.used_for}. {use.source.citation}.", mark="- ") for use in result.methods
+    )
+    yield from heading("Before relying on this")
+    yield paragraph(SAFETY_NOTICE)
+
+
+def _system(result: CurveResult) -> Iterator[str]:
+    own, system = result.own, result.own.system
+    columns = ["flow\nm3/h", "static\nm", "central\nm", "upper\nm", "regime", ""]
+    spread = any(one.kind == "scenario" for one in result.conditions)
+    if spread:
+        columns[4:4] = ["lowest of\nscenarios", "highest of\nscenarios"]
+    rows = []
+    for at in _rows_shown(system, own.case.flow):
+        row = [_number(system.flow[at], "m3/h"), _number(system.static_head[at])]
+        row += [_number(system.pump_head[at]), _number(system.pump_head_upper[at])]
+        row += [_number(result.envelope_low[at]), _number(result.envelope_high[at])] if spread else []
+        rows.append([*row, system.regime[at], _stated(system.flow[at], own.case.flow)])
+    yield from table(columns, rows, words=(len(columns) - 2, len(columns) - 1))
+    yield ""
+    for text in _boundaries(own):
+        yield paragraph(text, mark="  ")
+
+
+def _rows_shown(system: SystemCurve, flows: FlowRange) -> list[int]:
+    """Places of evenly spaced flows, of those stated, and of the boundaries of the regimes."""
+    every = np.array(system.flow)
+    wanted = [*np.linspace(0.0, every[-1], ROWS), flows.minimum, flows.design, flows.maximum]
+    wanted += [edge for edge in (system.laminar_until, system.turbulent_from) if edge]
+    return sorted({int(np.abs(every - flow).argmin()) for flow in wanted})
+
+
+def _stated(flow: float, flows: FlowRange) -> str:
+    names = [name for name in ("design", "minimum", "maximum") if np.isclose(flow, getattr(flows, name), rtol=1e-9)]
+    return names[0] if names else ""
+
+
+def _boundaries(one: Condition) -> Iterator[str]:
+    system = one.system
+    if system.laminar_until:
+        yield f"Laminar in every pipe up to {format_value(system.laminar_until, 'm3/h')}."
+    if system.turbulent_from:
+        yield f"Turbulent in every pipe from {format_value(system.turbulent_from, 'm3/h')}."
+    if system.deposition_flow:
+        deposition = format_value(system.deposition_flow, "m3/h")
+        yield f"Solids may settle out below {deposition}, by a formula for turbulent flow; in laminar flow at any."
+    for band in system.flat_bands:
+        ends = " to ".join(format_value(flow, "m3/h") for flow in (band.flow_from, band.flow_to))
+        yield f"Flat from {ends} in {band.pipe}: there a small error in head is a large one in flow."
+
+
+def _pump(pump: PumpOnLine, everywhere: Sequence[tuple[Condition, PumpOnLine]]) -> Iterator[str]:
+    speed = f", {format_value(pump.speed, 'rpm')}" if pump.speed else ""
+    yield paragraph(f"{pump.kind}{speed}")
+    columns = (
+        "condition",
+        "flow\nm3/h",
+        "head\nm",
+        "eff.\n%",
+        "shaft\nkW",
+        "of best\nflow %",
+        "NPSH\nhas m",
+        "NPSH\nasks m",
+        "",
+    )
+    rows = [row for condition, one in everywhere for row in _duties(condition.name, one)]
+    yield from table(columns, rows, words=(0, 8))
+    if pump.correction:
+        yield paragraph(_correction(pump), mark="  ")
+    yield from _findings(everywhere)
+
+
+def _duties(condition: str, pump: PumpOnLine) -> Iterator[tuple[str, ...]]:
+    worst = next((s for s in ("fail", "caution", "not checked") if any(c.status == s for c in pump.checks)), "ok")
+    if pump.duty is None and pump.duty_upper is None:
+        yield condition, *("-",) * 7, MARK[worst]
+        return
+    if pump.duty is not None:
+        yield condition, *_figures(pump.duty), MARK[worst]
+    if pump.duty_upper is not None and pump.duty_upper != pump.duty:
+        yield "  upper figure", *_figures(pump.duty_upper), ""
+    for other in pump.others:
+        kind = "stable" if other.stable else "unstable"
+        yield f"  also, {kind}", *_figures(other), ""
+
+
+def _figures(duty: DutyPoint) -> Iterator[str]:
+    yield _number(duty.flow, "m3/h")
+    yield _number(duty.head)
+    yield _number(duty.efficiency, percent=True)
+    yield _number(duty.shaft_power, "kW")
+    yield _number(duty.best_efficiency_share, percent=True)
+    yield _number(duty.npsh_available, digits=3)
+    yield _number(duty.npsh_required, digits=3)
+
+
+def _correction(pump: PumpOnLine) -> str:
+    found = pump.correction
+    assert found is not None
+    if found.head_factor is None:
+        return found.note or "Not corrected."
+    factors = f"head x {found.head_factor:.3f}, flow x {found.flow_factor:.3f}"
+    if found.efficiency_factor is not None:
+        factors += f", efficiency x {found.efficiency_factor:.3f}"
+    viscosities = ""
+    if found.viscosity_head is not None and found.viscosity_efficiency is not None:
+        head, efficiency = (format_value(v, "mPa.s") for v in (found.viscosity_head, found.viscosity_efficiency))
+        viscosities = f"; for the head by tau/gamma, {head}, for the efficiency by dtau/dgamma, {efficiency}"
+        if found.shear_rate is not None:
+            viscosities += f", at {significant(found.shear_rate, 3)} 1/s"
+    note = f" {found.note}" if found.note else ""
+    return f"Corrected by {found.method}: {factors}{viscosities}.{note}"
+
+
+def _findings(everywhere: Sequence[tuple[Condition, PumpOnLine]]) -> Iterator[str]:
+    """Checks that call for thought, and cautions; what several conditions have alike is said once."""
+    said: dict[tuple[str, str], list[str]] = {}
+    for condition, pump in everywhere:
+        for check in pump.checks:
+            if check.status != "ok":
+                said.setdefault((MARK[check.status], worded(check)), []).append(condition.name)
+        for caution in pump.cautions:
+            said.setdefault(("!", caution), []).append(condition.name)
+    for (mark, text), names in said.items():
+        where = "" if len(names) == len(everywhere) else f" ({', '.join(names)})"
+        yield paragraph(f"{text}{where}", mark=f"{mark:<12}")
+
+
+def _conditions(result: CurveResult) -> Iterator[str]:
+    flushes = [(one, flush) for one in result.conditions for flush in one.flushes]
+    if not flushes and not any(one.cautions for one in result.conditions):
+        return
+    yield from heading("Start-up, flush and restart")
+    for one, flush in flushes:
+        velocity, volume, time = (
+            significant(flush.velocity, 3),
+            significant(flush.volume, 3),
+            significant(flush.time / 60, 3),
+        )
+        yield paragraph(
+            f"{flush.pump} on {one.name}: {velocity} m/s in the slowest pipe; the line holds {volume} m3, displaced "
+            f"once in {time} min.",
+            mark="- ",
+        )
+    for one in result.conditions:
+        yield from (paragraph(f"{one.name}: {caution}", mark="! ") for caution in one.cautions)
+
+
+def _ranking(ranking: Sequence[Ranked]) -> Iterator[str]:
+    for place, one in enumerate(ranking, 1):
+        power = f", {format_value(one.shaft_power, 'kW')} at the shaft" if one.shaft_power else ""
+        motor = f", motor {format_value(one.standard_motor, 'kW', 3)}" if one.standard_motor else ""
+        verdict = "holds in every condition" if one.holds else "out"
+        yield paragraph(f"{one.name}: {verdict}{power}{motor}", mark=f"{place}. ")
+        yield from (paragraph(reason, mark="   - ") for reason in one.reasons)
+
+
+def _number(value: float | None, unit: str = "", digits: int = 4, percent: bool = False) -> str:
+    if value is None:
+        return "-"
+    if percent:
+        return significant(100.0 * value, 3)
+    return significant(to_display(value, unit) if unit else value, digits)

@@ -1,0 +1,47 @@
+"""Candidate pumps in their order: those that hold in every condition first, then by power."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator, Sequence
+
+from pipeflow.study.curve_result import Condition, PumpOnLine, Ranked
+from pipeflow.units import format_si
+from pipeflow.verdict import Check
+
+
+def ranked(conditions: Sequence[Condition]) -> tuple[Ranked, ...]:
+    """Rank the candidates; the first condition is the case itself, whose power settles between those that hold."""
+    every = [_ranked(index, conditions) for index in range(len(conditions[0].pumps))]
+    return tuple(sorted(every, key=_order))
+
+
+def _order(one: Ranked) -> tuple[bool, float]:
+    return not one.holds, math.inf if one.shaft_power is None else one.shaft_power
+
+
+def _ranked(index: int, conditions: Sequence[Condition]) -> Ranked:
+    own = conditions[0].pumps[index]
+    reasons = tuple(reason for condition in conditions for reason in _reasons(condition.name, condition.pumps[index]))
+    duty = own.duty_upper or own.duty
+    return Ranked(own.name, not reasons, duty.shaft_power if duty else None, _motor(index, conditions), reasons)
+
+
+def _motor(index: int, conditions: Sequence[Condition]) -> float | None:
+    """Give the largest of the standard motors that the duties ask for, W."""
+    pumps = [condition.pumps[index] for condition in conditions]
+    duties = [duty for pump in pumps for duty in (pump.duty, pump.duty_upper) if duty]
+    return max((duty.standard_motor for duty in duties if duty.standard_motor), default=None)
+
+
+def _reasons(condition: str, pump: PumpOnLine) -> Iterator[str]:
+    yield from (f"{condition}: {worded(check)}" for check in pump.checks if check.status == "fail")
+
+
+def worded(check: Check) -> str:
+    """Word a check that fails: what it found against what it asks for."""
+    name = check.name.replace("_", " ")
+    if check.value is None or check.limit is None:
+        return f"{name}, {check.basis}"
+    value = check.value if check.value_upper is None else check.value_upper
+    return f"{name} {format_si(value, check.unit)}, {check.sense} {format_si(check.limit, check.unit)}; {check.basis}"
