@@ -44,6 +44,12 @@ class GeneralRheology(Rheology):
         turned = np.asarray(rate) * np.exp(1j * COMPLEX_STEP)
         return np.asarray(np.angle(self.excess(turned)) / COMPLEX_STEP)
 
+    def differential_viscosity(self, shear_rate: FloatOrArray) -> Array:
+        """Slope of the curve, ``d tau/d rate`` [Pa.s], at a shear rate [1/s] above zero."""
+        rate = not_negative(shear_rate)
+        with np.errstate(divide="ignore", invalid="ignore"):
+            return np.asarray(self.log_slope(rate) * self.excess(rate) / rate)
+
     def is_rising(self) -> NDArray[np.bool_]:
         """Whether the stress rises with the rate from 1e-10 to 1e12 1/s; in the shape of the parameters."""
         with np.errstate(all="ignore"):
@@ -189,6 +195,13 @@ class Ellis(Rheology):
             start = log_rate + np.log(law.zero_shear_viscosity)
             stress = np.exp(find_root(_ellis_residual, start, np.ones_like(start), (law, log_rate)))
         return np.where(rate == 0, 0.0, stress).reshape(shape)
+
+    def differential_viscosity(self, shear_rate: FloatOrArray) -> Array:
+        """Slope of the curve, ``d tau/d rate`` [Pa.s], at a shear rate [1/s]."""
+        stress = self.shear_stress(shear_rate)
+        alpha = np.asarray(self.exponent)
+        thinning = (stress / self.half_stress) ** (alpha - 1.0)
+        return np.asarray(self.zero_shear_viscosity / (1.0 + alpha * thinning))
 
     def _viscosity_at_rest(self) -> Array:
         alpha, viscosity = np.asarray(self.exponent), np.asarray(self.zero_shear_viscosity)

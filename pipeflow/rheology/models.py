@@ -40,6 +40,10 @@ class Rheology(ABC):
         return np.where(rate > 0, quotient, self._viscosity_at_rest() + 0.0 * rate)
 
     @abstractmethod
+    def differential_viscosity(self, shear_rate: FloatOrArray) -> Array:
+        """Slope of the curve, ``d tau/d rate`` [Pa.s], at a shear rate [1/s] above zero."""
+
+    @abstractmethod
     def _viscosity_at_rest(self) -> Array:
         """Give the limit of the apparent viscosity as the shear rate goes to zero."""
 
@@ -70,6 +74,13 @@ class GeneralizedPowerLaw(Rheology):
         law = self.as_herschel_bulkley()
         excess = np.maximum(not_negative(shear_stress) - law.yield_stress, 0.0)
         return np.asarray((excess / law.consistency) ** (1.0 / np.asarray(law.flow_index)))
+
+    def differential_viscosity(self, shear_rate: FloatOrArray) -> Array:
+        """``n K rate**(n-1)`` [Pa.s] at a shear rate [1/s]."""
+        law = self.as_herschel_bulkley()
+        n = np.asarray(law.flow_index)
+        with np.errstate(divide="ignore"):
+            return np.asarray(n * law.consistency * not_negative(shear_rate) ** (n - 1.0))
 
     def _viscosity_at_rest(self) -> Array:
         law = self.as_herschel_bulkley()
@@ -157,6 +168,10 @@ class Casson(Rheology):
             np.sqrt(stress) + np.sqrt(self.yield_stress), np.finfo(float).tiny
         )
         return np.asarray(root**2 / self.casson_viscosity)
+
+    def differential_viscosity(self, shear_rate: FloatOrArray) -> Array:
+        """``sqrt(mu_c tau/rate)`` [Pa.s] at a shear rate [1/s]."""
+        return np.asarray(np.sqrt(self.casson_viscosity * self.apparent_viscosity(shear_rate)))
 
     def _viscosity_at_rest(self) -> Array:
         return np.where(np.asarray(self.yield_stress) > 0, np.inf, self.casson_viscosity)
