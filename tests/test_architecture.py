@@ -25,6 +25,8 @@ INPUTS = (
     "friction.methods",
     "friction.criteria",
     "operability.pressures",
+    "pumping.curve",
+    "pumping.faults",
 )
 """The input dataclasses of the rooms below ``study``, and the keys and records of methods."""
 MAY_IMPORT: dict[str, tuple[str, ...]] = {

@@ -15,18 +15,21 @@ from pipeflow.case.model import (
     Cost,
     FlowRange,
     Followed,
+    Job,
     Limits,
     Liquid,
     Methods,
     Pump,
+    Reciprocating,
     Restart,
     Site,
     Sizing,
     Solids,
 )
 from pipeflow.case.part import ASSUMED, InputPart
-from pipeflow.case.route_part import EquipmentPart, PipePart
-from pipeflow.case.schema import CasePart, FlowPart, VesselPart
+from pipeflow.case.pumps_part import PumpPart
+from pipeflow.case.route_part import EquipmentPart, PipePart, PumpPlacePart
+from pipeflow.case.schema import CasePart, FlowPart, VesselPart, pump_place
 from pipeflow.case.sizing_part import CostPart, SizingPart
 from pipeflow.line.catalogue import INCH, MATERIALS
 from pipeflow.line.elements import Element, Equipment, Fluid, Pipe, Vessel
@@ -49,7 +52,7 @@ def build_case(part: CasePart, file: str) -> Case:
         flow=_flow_range(part.flow, density, solids),
         source=_vessel(part.source),
         destination=_vessel(part.destination),
-        route=tuple(_element(element, density) for element in part.route),
+        route=tuple(_element(element, density) for element in part.route if not isinstance(element, PumpPlacePart)),
         limits=_limits(part.limits),
         restart=Restart(**_inputs(part.restart)) if part.restart else Restart(),
         pipe_wall=WallInputs(**_inputs(part.pipe_wall)) if part.pipe_wall else None,
@@ -62,7 +65,10 @@ def build_case(part: CasePart, file: str) -> Case:
         readings=rheology.files if isinstance(rheology, FlowCurvePart) else (),
         sheets=sheets,
         followed=tuple(_followed(part.fluid)),
-        pumps=tuple(Pump(**pump.model_dump()) for pump in part.pumps),
+        pumps=tuple(_pump(pump) for pump in part.pumps),
+        pump_place=pump_place(part.route),
+        lowest_level=part.source.lowest_level if part.source else None,
+        job=Job(**part.job.model_dump(exclude_none=True)),
         solids=solids,
         liquid=_liquid(part.fluid, solids),
         site=Site(**_inputs(part.site)) if part.site else None,
@@ -94,6 +100,7 @@ def _inputs_by_path(part: CasePart) -> Iterator[tuple[str, InputPart]]:
         "pipe_wall": part.pipe_wall,
         "sizing.cost": part.sizing and part.sizing.cost,
         **{f"route[{element.name}]": element for element in part.route},
+        **{f"pumps[{pump.name}]": pump for pump in part.pumps},
     }
     yield from ((path, inputs) for path, inputs in named.items() if isinstance(inputs, InputPart))
 
@@ -144,7 +151,26 @@ def _flow_range(flow: FlowPart | FlowValue, density: float, solids: Solids | Non
 
 
 def _vessel(part: VesselPart | None) -> Vessel | None:
-    return None if part is None else Vessel(**_inputs(part))
+    return None if part is None else Vessel(**part.model_dump(exclude={"status", "lowest_level"}))
+
+
+def _pump(part: PumpPart) -> Pump:
+    speeds, impeller, motor = part.variable_speed, part.impeller, part.motor
+    stated = {"variable_speed", "impeller", "motor", "reciprocating", "status", "speed", "curve_speed"}
+    return Pump(
+        table=part.table,
+        speed=part.running_speed,
+        curve_speed=part.curve_speed or part.speed,
+        speed_minimum=speeds.minimum if speeds else None,
+        speed_maximum=speeds.maximum if speeds else None,
+        impeller_diameter=impeller.diameter if impeller else None,
+        trimmed_diameter=impeller.trimmed_to if impeller else None,
+        outlet_width=impeller.outlet_width if impeller else None,
+        motor_power=motor.power if motor else None,
+        motor_margin=motor.margin if motor else Pump.motor_margin,
+        reciprocating=Reciprocating(**part.reciprocating.model_dump()) if part.reciprocating else None,
+        **part.model_dump(exclude=stated),
+    )
 
 
 def _element(part: PipePart | EquipmentPart, density: float) -> Element:

@@ -13,7 +13,7 @@ from dataclasses import dataclass
 from functools import cache
 from typing import Annotated
 
-from pydantic import BeforeValidator, Field, PlainValidator
+from pydantic import BeforeValidator, Field, PlainValidator, ValidationError
 from pydantic_core import PydanticCustomError
 
 from pipeflow import units
@@ -47,7 +47,14 @@ def said(message: str, *below: str | int) -> PydanticCustomError:
     return PydanticCustomError("said", "{message}", {"message": message, "below": below})
 
 
-def at_odds(message: str, *below: str) -> PydanticCustomError:
+def several(messages: Sequence[str]) -> ValidationError:
+    """Make an error of several faults of one value, each with its complete message."""
+    return ValidationError.from_exception_data(
+        "several", [{"type": said(message), "input": None} for message in messages]
+    )
+
+
+def at_odds(message: str, *below: str | int) -> PydanticCustomError:
     """Make an error for a value that does not go with another; what was found is put before it.
 
     ``below`` leads to the value where the error is raised for the map around it.
@@ -176,6 +183,14 @@ def read_number(value: object) -> float:
     return number
 
 
+def read_whole(value: object) -> int:
+    """Read a whole number."""
+    number = read_number(value)
+    if number != int(number):
+        raise said(f"found {units.echo(_scalar(value, 'a whole number').text)}; a whole number is needed")
+    return int(number)
+
+
 @dataclass(frozen=True)
 class Words:
     """Reads a text of bounded length."""
@@ -245,6 +260,7 @@ read_name = Words(NAME_LENGTH, "a name")
 Name = Annotated[str, BeforeValidator(read_name)]
 Text = Annotated[str, BeforeValidator(Words(TEXT_LENGTH, "a text", "\n\t"))]
 Number = Annotated[float, BeforeValidator(read_number)]
+Whole = Annotated[int, BeforeValidator(read_whole)]
 Count = Annotated[float, Field(ge=0, le=10_000), BeforeValidator(read_number)]
 FlowIndex = Annotated[float, Field(gt=0, le=2), BeforeValidator(read_number)]
 Exponent = Annotated[float, Field(gt=0, le=10), BeforeValidator(read_number)]
@@ -273,6 +289,8 @@ Pressure = Annotated[float, quantity("pressure")]
 AbsolutePressure = Annotated[float, Field(gt=0), quantity("absolute pressure")]
 Velocity = Annotated[float, Field(ge=0), quantity("velocity")]
 Speed = Annotated[float, Field(gt=0), quantity("rotational speed")]
+Power = Annotated[float, Field(gt=0), quantity("power")]
+Torque = Annotated[float, Field(gt=0), quantity("torque")]
 Temperature = Annotated[float, quantity("temperature")]
 TemperatureDifference = Annotated[float, Field(gt=0), quantity("temperature difference")]
 SpecificHeat = Annotated[float, Field(gt=0), quantity("specific heat")]

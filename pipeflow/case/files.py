@@ -50,6 +50,15 @@ def why_no_file(path: Path) -> str:
     return "" if stat.S_ISREG(status.st_mode) else "not a regular file"
 
 
+def file_state(path: str) -> tuple[int, int]:
+    """Size and time of a file, by which a change of it shows; a file that is none is told when it is read."""
+    try:
+        status = Path(path).stat()
+    except (OSError, ValueError):
+        return (0, 0)
+    return status.st_size, status.st_mtime_ns
+
+
 def refusal(path: Path | str, message: str, line: int | None = None, column: int | None = None) -> InputError:
     """Make the error that refuses a file."""
     return InputError([Problem(printable(str(path)), line, column, "", message)])

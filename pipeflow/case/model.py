@@ -167,7 +167,7 @@ class Pump:
     kind : str
         ``centrifugal`` or ``positive-displacement``.
     curve : str
-        Path of its curve as written in the case.
+        Path of its curve.
     table : PumpTable
         The curve read.
     speed, curve_speed : float or None

@@ -16,7 +16,7 @@ import yaml
 from pipeflow.units import echo, number_advice
 
 MAX_DEPTH = 12
-NAME_KEYS = ("pipe", "equipment", "name")
+NAME_KEYS = ("pipe", "equipment", "pump", "name")
 _CORE_TAG = "tag:yaml.org,2002:"
 _DIGITS = re.compile(r"[+-]?[0-9]*(,[0-9]+)*")
 _REST = re.compile(r"[0-9][^_]*", re.DOTALL)

@@ -9,17 +9,18 @@ from pipeflow.case.flow_curve_part import FlowCurvePart, UsePart
 from pipeflow.case.fluid_part import FluidPart, LiquidPart, SolidsPart
 from pipeflow.case.limits_part import LimitsPart, PipeWallPart, RestartPart, VelocityPart
 from pipeflow.case.part import Part
+from pipeflow.case.pumps_part import ImpellerPart, MotorPart, PumpPart, ReciprocatingPart, SpeedsPart
 from pipeflow.case.rheology_part import RHEOLOGY_PARTS
-from pipeflow.case.route_part import EquipmentPart, PipePart
+from pipeflow.case.route_part import EquipmentPart, PipePart, PumpPlacePart
 from pipeflow.case.schema import (
     CasePart,
     DestinationPart,
     DrySolidsPart,
     FlowPart,
+    JobPart,
     MethodsPart,
-    PumpPart,
     SitePart,
-    VesselPart,
+    SourcePart,
 )
 from pipeflow.case.sizing_part import BoresPart, CostPart, PricePart, SizingPart
 
@@ -32,6 +33,7 @@ _FOLLOWING: Final = [
 
 PARTS_AT: Final[dict[tuple[str, ...], type[Part]]] = {
     (): CasePart,
+    ("job",): JobPart,
     ("fluid",): FluidPart,
     **{("fluid", "rheology", f"<{model}>"): part for model, part in RHEOLOGY_PARTS.items()},
     **{
@@ -46,10 +48,11 @@ PARTS_AT: Final[dict[tuple[str, ...], type[Part]]] = {
     ("flow", "<map>"): FlowPart,
     ("flow", "<map>", "dry_solids", "<map>"): DrySolidsPart,
     ("site",): SitePart,
-    ("source",): VesselPart,
+    ("source",): SourcePart,
     ("destination",): DestinationPart,
     ("route", "<pipe>"): PipePart,
     ("route", "<equipment>"): EquipmentPart,
+    ("route", "<pump>"): PumpPlacePart,
     ("limits",): LimitsPart,
     ("limits", "velocity"): VelocityPart,
     ("restart",): RestartPart,
@@ -60,6 +63,10 @@ PARTS_AT: Final[dict[tuple[str, ...], type[Part]]] = {
     ("sizing", "cost", "prices"): PricePart,
     ("methods",): MethodsPart,
     ("pumps",): PumpPart,
+    ("pumps", "variable_speed"): SpeedsPart,
+    ("pumps", "impeller"): ImpellerPart,
+    ("pumps", "motor"): MotorPart,
+    ("pumps", "reciprocating"): ReciprocatingPart,
 }
 """The part of the schema at a place of the file, the numbers of list items left out."""
 
@@ -80,6 +87,8 @@ REASONS: Final[dict[str, str]] = {
     "coefficient_y": "it is 0.4 for ductile metals",
     "hours_per_year": "a year has no more",
     "restart.factor": "1.2 to 1.5 are usual",
+    "pumps.motor.margin": "a fraction, not a percentage",
+    "pumps.reciprocating.constant": "1.4 is that of water without gas, 2.5 that of compressible liquids",
 }
 """Why a number has its upper bound, by key or by the place of one."""
 
@@ -120,6 +129,13 @@ EXAMPLES: Final[dict[str, str]] = {
     "name": "candidate A",
     "kind": "centrifugal",
     "curve": "candidate-a.csv",
+    "pumps.variable_speed.minimum": "900 rpm",
+    "pumps.variable_speed.maximum": "1500 rpm",
+    "pumps.impeller.diameter": "390 mm",
+    "pumps.motor.power": "55 kW",
+    "cylinders": "3",
+    "constant": "1.5",
+    "pump": "feed pump",
     "sizing.bores.minimum": "50 mm",
     "sizing.bores.maximum": "400 mm",
     "sizing.cost.prices.size": "NPS 6 Sch 40",

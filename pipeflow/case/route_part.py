@@ -1,8 +1,8 @@
-"""The elements of a route: pipes with their fittings, and equipment."""
+"""The elements of a route: pipes with their fittings, equipment, and the place of the pump."""
 
 from __future__ import annotations
 
-from typing import Annotated
+from typing import Annotated, Final
 
 from pydantic import AfterValidator, Discriminator, Field, Tag, ValidationInfo
 from pydantic import field_validator as check
@@ -25,11 +25,13 @@ from pipeflow.case.fields import (
     needs,
     wrong_choice,
 )
-from pipeflow.case.part import FAILED, InputPart
+from pipeflow.case.part import FAILED, InputPart, Part
 from pipeflow.line.catalogue import MATERIALS, PipeSize
 from pipeflow.units import echo
 
 RELATIVE_ROUGHNESS_MAX = 0.1
+ELEMENT_KEYS: Final = ("pipe", "equipment", "pump")
+"""The keys an element starts with."""
 
 
 def _new(name: str, info: ValidationInfo) -> str:
@@ -143,13 +145,26 @@ class EquipmentPart(InputPart):
         return self.equipment
 
 
+class PumpPlacePart(Part):
+    """Where the pump stands: it parts suction and discharge, and loses nothing."""
+
+    pump: NewName
+
+    @property
+    def name(self) -> str:
+        """The name of the element."""
+        return self.pump
+
+
 def _element_tag(value: object) -> str | None:
     if not isinstance(value, dict):
         return None
-    return next((f"<{key}>" for key in value if key in ("pipe", "equipment")), None)
+    return next((f"<{key}>" for key in value if key in ELEMENT_KEYS), None)
 
 
 ElementPart = Annotated[
-    Annotated[PipePart, Tag("<pipe>")] | Annotated[EquipmentPart, Tag("<equipment>")],
+    Annotated[PipePart, Tag("<pipe>")]
+    | Annotated[EquipmentPart, Tag("<equipment>")]
+    | Annotated[PumpPlacePart, Tag("<pump>")],
     Discriminator(_element_tag),
 ]

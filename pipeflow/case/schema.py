@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from pathlib import Path
+from collections.abc import Sequence
 from typing import Annotated, Any, Final
 
 from pydantic import Discriminator, Field, Tag, ValidationInfo
@@ -16,7 +16,6 @@ from pipeflow.case.fields import (
     Name,
     Pressure,
     Rise,
-    Speed,
     Text,
     at_odds,
     choice,
@@ -24,11 +23,12 @@ from pipeflow.case.fields import (
     needs,
     said,
 )
-from pipeflow.case.files import why_no_file
 from pipeflow.case.fluid_part import FluidPart
 from pipeflow.case.limits_part import LimitsPart, PipeWallPart, RestartPart
+from pipeflow.case.model import PumpPlace
 from pipeflow.case.part import FAILED, InputPart, Part
-from pipeflow.case.route_part import ElementPart, EquipmentPart, NewName
+from pipeflow.case.pumps_part import MAX_PUMPS, PumpPart
+from pipeflow.case.route_part import ElementPart, PipePart, PumpPlacePart
 from pipeflow.case.sizing_part import SizingPart
 from pipeflow.friction.criteria import CRITERIA
 from pipeflow.friction.methods import TURBULENT
@@ -44,10 +44,8 @@ METHOD_KEYS: Final[dict[str, tuple[str, ...]]] = {
 }
 """The methods a case may ask for, by the key it asks with."""
 
-PUMP_KINDS: Final = ("centrifugal", "positive-displacement")
 DISCHARGES: Final = ("submerged", "free")
 MAX_ELEMENTS = 500
-MAX_PUMPS = 20
 MAX_SCENARIOS = 50
 VACUUM: Final = -101_325.0 * 1.1
 """Gauge pressure below which no place on earth has a vacuum, Pa."""
@@ -145,6 +143,20 @@ class VesselPart(InputPart):
         return value
 
 
+class SourcePart(VesselPart):
+    """The end the line flows from."""
+
+    lowest_level: Rise | None = None
+
+    @check("lowest_level")
+    @classmethod
+    def _not_above_the_usual(cls, value: float | None, info: ValidationInfo) -> float | None:
+        level = info.data.get("level")
+        if value is not None and level is not None and value > level:
+            raise at_odds(f"above 'level', {level:g} m")
+        return value
+
+
 class DestinationPart(VesselPart):
     """The end the line flows to."""
 
@@ -211,22 +223,22 @@ class MethodsPart(Part):
         return value
 
 
-class PumpPart(Part):
-    """A candidate pump."""
+class JobPart(Part):
+    """What the design file says of the document."""
 
-    name: NewName
-    kind: Annotated[str, choice("kind of pump", lambda: PUMP_KINDS)]
-    speed: Speed | None = None
-    curve_speed: Speed | None = None
-    curve: Name
+    project: Name | None = None
+    client: Name | None = None
+    number: Name | None = None
+    prepared_by: Name | None = None
+    checked_by: Name | None = None
+    approved_by: Name | None = None
+    date: Name | None = None
 
-    @check("curve")
-    @classmethod
-    def _is_there(cls, value: str, info: ValidationInfo) -> str:
-        why = why_no_file((info.context or {}).get("folder", Path()) / value)
-        if why:
-            raise at_odds(f"{why}; the path of a file is needed, from the folder of the case file")
-        return value
+
+def pump_place(route: Sequence[ElementPart]) -> PumpPlace | None:
+    """Where the route says its pump stands; None if it does not."""
+    places = (PumpPlace(part.name, index) for index, part in enumerate(route) if isinstance(part, PumpPlacePart))
+    return next(places, None)
 
 
 class CasePart(Part):
@@ -235,10 +247,11 @@ class CasePart(Part):
     title: Name
     revision: Name | None = None
     notes: Text | None = None
+    job: JobPart = JobPart()
     fluid: FluidPart
     flow: FlowOrPart
     site: SitePart | None = None
-    source: VesselPart | None = None
+    source: SourcePart | None = None
     destination: DestinationPart | None = None
     route: Annotated[list[ElementPart], Field(min_length=1, max_length=MAX_ELEMENTS)]
     limits: LimitsPart = LimitsPart()
@@ -257,19 +270,38 @@ class CasePart(Part):
             info.context["fluid"] = value
         return value
 
+    @check("route")
+    @classmethod
+    def _with_one_pump(cls, value: list[ElementPart]) -> list[ElementPart]:
+        pumps = [index for index, element in enumerate(value) if isinstance(element, PumpPlacePart)]
+        if len(pumps) > 1:
+            named = echo(value[pumps[0]].name)
+            raise at_odds(f"the pump is {named}; several that run in series stand under 'pumps'", pumps[1], "pump")
+        if len(pumps) == len(value):
+            raise at_odds("a pump alone; a pipe or equipment is needed", 0, "pump")
+        return value
+
     @check("restart")
     @classmethod
     def _pump_on_the_route(cls, value: RestartPart | None, info: ValidationInfo) -> RestartPart | None:
-        names = [element.name for element in info.data.get("route", ())]
-        if value is not None and value.pump_after is not None and names and value.pump_after not in names:
-            raise at_odds(f"no element of the route is named {echo(value.pump_after)}", "pump_after")
+        route: list[ElementPart] = info.data.get("route", [])
+        after = value.pump_after if value else None
+        if after is None or not route:
+            return value
+        place, names = pump_place(route), [element.name for element in route]
+        before = names[place.position - 1] if place and place.position else None
+        if place is not None and after != before:
+            where = f"after {echo(before)}" if before else "at its start"
+            raise at_odds(f"but the route has its pump, {echo(place.name)}, {where}", "pump_after")
+        if after not in names:
+            raise at_odds(f"no element of the route is named {echo(after)}", "pump_after")
         return value
 
     @check("sizing")
     @classmethod
     def _pipes_of_the_route(cls, value: SizingPart | None, info: ValidationInfo) -> SizingPart | None:
         elements = info.data.get("route", ())
-        names = [element.name for element in elements if not isinstance(element, EquipmentPart)]
+        names = [element.name for element in elements if isinstance(element, PipePart)]
         unknown = [name for name in (value and value.pipes) or () if name not in names]
         if unknown and elements:
             raise at_odds(f"no pipe of the route is named {echo(unknown[0])}", "pipes")

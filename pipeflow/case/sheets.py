@@ -6,10 +6,10 @@ Apart from the schema, since a case with given parameters needs none of the fitt
 from __future__ import annotations
 
 from functools import lru_cache
-from pathlib import Path
 from typing import Final
 
 from pipeflow.case.fields import said
+from pipeflow.case.files import file_state
 from pipeflow.case.viscometer import load_readings
 from pipeflow.errors import InputError
 from pipeflow.rheology.series import FluidSeries, fluid_series
@@ -20,16 +20,7 @@ _SHEETS_KEPT: Final = 64
 
 def fitted(path: str, use: tuple[float, float] | None, model: str | None) -> FitResult:
     """Fit a sheet, or remember the fit."""
-    return _fit(path, _state(path), use, model)
-
-
-def _state(path: str) -> tuple[int, int]:
-    """Size and time of a file, by which a change of it shows; a file that is none is told when it is read."""
-    try:
-        status = Path(path).stat()
-    except (OSError, ValueError):
-        return (0, 0)
-    return status.st_size, status.st_mtime_ns
+    return _fit(path, file_state(path), use, model)
 
 
 def joined(results: tuple[FitResult, ...], model: str | None) -> FluidSeries:

@@ -34,10 +34,11 @@ _NAMES = {",": "commas", ";": "semicolons", "\t": "tabs"}
 
 @dataclass(frozen=True)
 class Column:
-    """What a column may hold: numbers of these dimensions (none: bare numbers), or words of a list."""
+    """What a column may hold: numbers of these dimensions (none: bare ones, or per cents too), or words of a list."""
 
     dimensions: tuple[str, ...] = ()
     words: tuple[str, ...] = ()
+    per_cent: bool = False
 
 
 @dataclass(frozen=True)
@@ -60,6 +61,8 @@ class Table:
         The side block: key to value and place; repeated keys keep every value.
     numbers : dict
         Columns of numbers in SI units, by name.
+    units : dict
+        The unit of each, as written; empty for bare numbers.
     words : dict
         Columns of words.
     cells : dict
@@ -74,6 +77,7 @@ class Table:
     file: str
     keys: dict[str, list[Cell]]
     numbers: dict[str, Array]
+    units: dict[str, str]
     words: dict[str, list[str]]
     cells: dict[str, list[Cell]]
     lines: Array
@@ -91,9 +95,10 @@ class Table:
 
 @dataclass
 class _Reader:
-    """Collects the problems of one file."""
+    """Collects the problems of one file; ``refused`` says what unknown columns are told, None lets them pass."""
 
     file: str
+    refused: Mapping[str, str] | None = None
     problems: list[Problem] = field(default_factory=list)
 
     def fault(self, line: int | None, column: int | None, name: str, message: str) -> None:
@@ -108,7 +113,12 @@ class _Reader:
         return InputError(ordered)
 
 
-def read_table(path: str | Path, columns: Mapping[str, Column], keys: tuple[str, ...] = ()) -> Table:
+def read_table(
+    path: str | Path,
+    columns: Mapping[str, Column],
+    keys: tuple[str, ...] = (),
+    refused: Mapping[str, str] | None = None,
+) -> Table:
     """Read a CSV file.
 
     Parameters
@@ -116,21 +126,30 @@ def read_table(path: str | Path, columns: Mapping[str, Column], keys: tuple[str,
     path : str or Path
         A regular file, UTF-8, at most :data:`MAX_BYTES`.
     columns : mapping
-        What the columns may be, by name; others are left unread and named in ``unused``.
+        What the columns may be, by name.
     keys : tuple of str
         What the side block may say.
+    refused : mapping or None
+        None leaves other columns unread and names them in ``unused``; else they are refused, those named here with
+        these words.
 
     Raises
     ------
     InputError
         With every problem of the file.
     """
-    return read_text(read_text_file(Path(path), MAX_BYTES, "a table"), str(path), columns, keys)
+    return read_text(read_text_file(Path(path), MAX_BYTES, "a table"), str(path), columns, keys, refused)
 
 
-def read_text(text: str, file: str, columns: Mapping[str, Column], keys: tuple[str, ...] = ()) -> Table:
+def read_text(
+    text: str,
+    file: str,
+    columns: Mapping[str, Column],
+    keys: tuple[str, ...] = (),
+    refused: Mapping[str, str] | None = None,
+) -> Table:
     """Read the text of a CSV file like :func:`read_table`."""
-    reader = _Reader(file)
+    reader = _Reader(file, refused)
     lines = text.splitlines()
     header_line = next((number for number, line in enumerate(lines, 1) if _is_row(line)), None)
     side = dict[str, list[Cell]]()
@@ -198,7 +217,8 @@ def _read_rows(
     words = {name: [_word(reader, name, cell, columns[name].words) for cell in cells[name]] for name in header.words}
     plain = {name: [_plain(cell, decimal_comma) for cell in column] for name, column in cells.items()}
     place = np.array([row[0].line for row in rows])
-    return Table(reader.file, {}, numbers, words, plain, place, header.unused, header_line)
+    written = {name: unit for name, (unit, _) in header.units.items()}
+    return Table(reader.file, {}, numbers, written, words, plain, place, header.unused, header_line)
 
 
 def _plain(cell: Cell, decimal_comma: bool) -> Cell:
@@ -225,7 +245,9 @@ class _Header:
             if name in names:
                 reader.fault(number, place, name, "this column is there twice")
             elif name in columns and not columns[name].words:
-                _take_unit(reader, units, (number, place), name, unit, columns[name].dimensions)
+                _take_unit(reader, units, (number, place), name, unit, columns[name])
+            elif name not in columns and reader.refused is not None:
+                reader.fault(number, place, name, _unknown_column(name, columns, reader.refused))
             names.append(name)
             place += len(text) + 1
         known = [name for name in names if name in columns]
@@ -239,19 +261,31 @@ def _parts(text: str) -> tuple[str, str | None]:
     return re.sub(r"[\s-]+", "_", name.strip().casefold()), unit
 
 
+def _unknown_column(name: str, columns: Mapping[str, Column], refused: Mapping[str, str]) -> str:
+    if name in refused:
+        return refused[name]
+    near = get_close_matches(name[:40], columns, n=1, cutoff=0.6)
+    meant = f"did you mean {near[0]}? " if near else ""
+    return f"unknown column; {meant}accepted: {', '.join(columns)}"
+
+
 def _take_unit(
     reader: _Reader,
     units: dict[str, tuple[str, str]],
     place: tuple[int, int],
     name: str,
     unit: str | None,
-    dimensions: tuple[str, ...],
+    column: Column,
 ) -> None:
+    dimensions = column.dimensions
     if not dimensions:
         if unit in (None, "-", "1", ""):
             units[name] = ("", "")
+        elif unit == "%" and column.per_cent:
+            units[name] = ("%", "")
         else:
-            reader.fault(*place, name, f"found the unit {echo(unit or '')}; the column has none, write [-]")
+            needed = "[-] or [%] is needed" if column.per_cent else "the column has none, write [-]"
+            reader.fault(*place, name, f"found the unit {echo(unit or '')}; {needed}")
     elif not unit:
         example = accepted(*dimensions)
         reader.fault(*place, name, f"no unit; write it in brackets, as '{name} [{example.split(',')[0]}]': {example}")
@@ -324,7 +358,7 @@ def _number(reader: _Reader, name: str, cell: Cell, unit: tuple[str, str], decim
         reader.fault(cell.line, cell.column, name, _no_number(cell.text))
         return np.nan
     try:
-        value = parse(f"{text} {unit[0]}", unit[1]) if unit[1] else float(text)
+        value = parse(f"{text} {unit[0]}", unit[1]) if unit[1] else float(text) / (100.0 if unit[0] else 1.0)
     except UnitError:
         value = np.inf
     if value != 0 and not SMALLEST <= abs(value) <= LARGEST:

@@ -13,6 +13,7 @@ from pydantic_core import ErrorDetails
 from pipeflow.case.nodes import Finding, Mapping, Node, Scalar, Sequence, join, kind, label
 from pipeflow.case.places import EXAMPLES, PARTS_AT, REASONS, at_place
 from pipeflow.case.rheology_part import BESIDE_PARAMETERS, RHEOLOGY_PARTS
+from pipeflow.case.route_part import ELEMENT_KEYS
 from pipeflow.units import ECHO_LENGTH, echo
 
 MAX_SUGGESTIONS = 100
@@ -116,7 +117,7 @@ def _question(fault: Fault) -> tuple[str, tuple[str, ...]]:
     if fault.kind == "choice":
         return fault.details["found"], tuple(fault.details["options"])
     if fault.kind == "union_tag_not_found":
-        return next(iter(_keys(fault.node)), ""), ("pipe", "equipment")
+        return next(iter(_keys(fault.node)), ""), ELEMENT_KEYS
     return fault.key, _accepted(fault.parts[:-1])
 
 
@@ -244,7 +245,7 @@ def _map_needed(fault: Fault) -> str:
 
 
 def _element(fault: Fault) -> str:
-    needed = "an element starts with 'pipe: its name' or 'equipment: its name'"
+    needed = "an element starts with 'pipe: its name', 'equipment: its name' or 'pump: its name'"
     first = next(iter(_keys(fault.node)), None)
     found = f"found the key {echo(first)}" if first else _found(fault)
     return f"{found}; {_did_you_mean(fault)}{needed}"

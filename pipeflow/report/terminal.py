@@ -298,8 +298,8 @@ def _parameters(rheology: Rheology) -> Iterator[tuple[str, str]]:
 
 def _route(result: Result) -> Iterator[tuple[str, ...]]:
     for element in result.elements:
-        if element.kind == "equipment":
-            yield element.name, "equipment", "", "", "", ""
+        if element.kind != "pipe":
+            yield element.name, element.kind, "", "", "", ""
         else:
             yield (
                 element.name,
@@ -312,8 +312,9 @@ def _route(result: Result) -> Iterator[tuple[str, ...]]:
 
 
 def _flow_row(element: ElementResult) -> tuple[str, ...]:
-    if element.kind == "equipment":
-        return element.name, "", "", "", "", "", "", _number(element.equipment_loss, "kPa")
+    if element.kind != "pipe":
+        loss = _number(element.equipment_loss, "kPa") if element.kind == "equipment" else ""
+        return element.name, "", "", "", "", "", "", loss
     return (
         element.name,
         _number(element.velocity, "m/s", 3),

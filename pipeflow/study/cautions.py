@@ -51,8 +51,6 @@ def _about_input(case: Case) -> Iterator[str]:
     if case.flow.design == 0:
         yield "at rest: the losses shown are the limit as the flow starts, what a yield stress holds back"
     yield from notes(sorted(named), case.methods.fittings or DEFAULT_METHOD)
-    if case.pumps:
-        yield "the pumps of the case are read, but not yet set against the system curve"
 
 
 def _about_profile(profile: ProfileResult) -> Iterator[str]:

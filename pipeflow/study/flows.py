@@ -60,3 +60,9 @@ def pump_position(case: Case) -> int:
     names = [element.name for element in case.route]
     after = case.restart.pump_after
     return 0 if after is None else names.index(after) + 1
+
+
+def element_before_pump(case: Case) -> str | None:
+    """Name of the element just before the pump; None where the pump stands at the start of the route."""
+    position = pump_position(case)
+    return case.route[position - 1].name if position else None

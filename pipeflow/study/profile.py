@@ -10,7 +10,7 @@ from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.line.profile import GradeLine, Profile, profile
 from pipeflow.line.route import LineFlow
 from pipeflow.line.site import SEA_LEVEL_PRESSURE, standard_atmosphere
-from pipeflow.study.flows import DESIGN, pump_position
+from pipeflow.study.flows import DESIGN, element_before_pump, pump_position
 from pipeflow.study.result import ProfilePoint, ProfileResult, SlackResult
 
 
@@ -40,7 +40,7 @@ def profile_of(case: Case, line: LineFlow) -> ProfileResult:
     pressures = tuple(float(case.fluid.density) * STANDARD_GRAVITY * head for head in heads)
     return ProfileResult(
         points=points,
-        pump_after=case.restart.pump_after,
+        pump_after=element_before_pump(case),
         before_pump=before_pump,
         after_pump=_raised(points[before_pump], heads, pressures),
         pump_head=heads[0],

@@ -65,11 +65,19 @@ def _elements(case: Case, line: LineFlow) -> Iterator[ElementResult]:
     band = _critical_band(case)
     pipe_indices = iter(range(line.velocity.shape[-1]))
     losses = iter(line.equipment_loss[DESIGN])
-    for element in case.route:
+    for index, element in enumerate(case.route):
+        yield from _pump(case, index)
         if isinstance(element, Equipment):
             yield ElementResult(element.name, "equipment", equipment_loss=float(next(losses)))
         else:
             yield _pipe(case, element, line, next(pipe_indices), band)
+    yield from _pump(case, len(case.route))
+
+
+def _pump(case: Case, index: int) -> Iterator[ElementResult]:
+    """The pump, where the route has it before the element of this index."""
+    if case.pump_place is not None and case.pump_place.position == index:
+        yield ElementResult(case.pump_place.name, "pump")
 
 
 def _critical_band(case: Case) -> Array:

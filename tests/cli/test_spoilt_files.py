@@ -140,7 +140,7 @@ def test_a_file_of_10_megabytes_is_not_read(tmp_path: Path) -> None:
 
 def test_the_largest_file_is_still_read(tmp_path: Path) -> None:
     good = (HERE / "good.yaml").read_bytes()
-    (tmp_path / "candidate-a.csv").touch()
+    (tmp_path / "candidate-a.csv").write_bytes((HERE / "candidate-a.csv").read_bytes())
     path = tmp_path / "large.yaml"
     path.write_bytes(good + b"#" * (MAX_BYTES - len(good)))
     assert load_case(path).title == "Thickener underflow to filter feed tank"
