@@ -143,6 +143,7 @@ class PumpOnLine:
     checks : tuple of Check
     cautions : tuple of str
         Reasons among them where there is no duty.
+    methods : tuple of MethodUse
     """
 
     name: str
@@ -156,6 +157,7 @@ class PumpOnLine:
     others: tuple[DutyPoint, ...]
     checks: tuple[Check, ...]
     cautions: tuple[str, ...]
+    methods: tuple[MethodUse, ...]
 
 
 @dataclass(frozen=True)
@@ -215,6 +217,11 @@ class CurveResult:
     def own(self) -> Condition:
         """The case itself."""
         return self.conditions[0]
+
+    @property
+    def case(self) -> Case:
+        """The case as the file gives it."""
+        return self.own.case
 
     @property
     def fails(self) -> bool:

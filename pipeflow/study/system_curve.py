@@ -9,14 +9,13 @@ import numpy as np
 from pipeflow.arrays import Array
 from pipeflow.case.model import Case
 from pipeflow.friction import Regime
-from pipeflow.line.profile import profile
 from pipeflow.line.route import LineFlow
 from pipeflow.operability.deposition import FORMULAS, default_formula
 from pipeflow.operability.transition import FLAT_SLOPE
 from pipeflow.study.checks import carried_solids
 from pipeflow.study.curve_result import FlatBand, SystemCurve
-from pipeflow.study.flows import line_at, pipes_of, pump_position
-from pipeflow.study.profile import atmospheric_pressure
+from pipeflow.study.demand import heads_along
+from pipeflow.study.flows import line_at, pipes_of
 
 BEYOND = 1.3
 """How far past the maximum flow a system curve is drawn."""
@@ -25,21 +24,6 @@ AROUND = np.array([0.85, 0.92, 0.96, 0.98, 0.99, 1.0, 1.01, 1.02, 1.04, 1.08, 1.
 """Where the curve is looked at around the edges of a transition, as shares of their flow."""
 WITHIN = np.linspace(0.1, 0.9, 9)
 """And between the edges."""
-
-
-def pump_heads(case: Case, line: LineFlow) -> tuple[Array, Array]:
-    """Head the line asks of its pump, central and upper, m: the total head, or more where a high point governs."""
-    found = profile(
-        line,
-        case.fluid,
-        case.route,
-        case.source,
-        case.destination,
-        pump_position=pump_position(case),
-        atmospheric_pressure=atmospheric_pressure(case),
-        vapour_pressure=case.liquid.vapour_pressure if case.liquid else None,
-    )
-    return found.central.pump_head, found.upper.pump_head
 
 
 def flows_of_interest(cases: Sequence[Case]) -> Array:
@@ -59,7 +43,8 @@ def flows_of_interest(cases: Sequence[Case]) -> Array:
 def _without_doubles(flows: Array, last: float) -> Array:
     """Sort, and leave out what rounding alone tells from the flow before."""
     every = np.unique(flows)
-    return every[np.concatenate([[True], np.diff(every) > 1e-9 * last])]
+    apart = np.diff(every, prepend=-last) > 1e-9 * last
+    return np.asarray(every[apart])
 
 
 def _edges(case: Case) -> Array:
@@ -77,15 +62,15 @@ def _edges(case: Case) -> Array:
 def system_curve(case: Case, flow: Array) -> SystemCurve:
     """Solve the line at every flow, m³/s, in one call."""
     line = line_at(case, flow)
-    central, upper = pump_heads(case, line)
+    found = heads_along(case, line)
     edges = _edges(case)
     first, last = edges[0::2], edges[1::2]
     return SystemCurve(
         flow=_plain(flow),
         total_head=_plain(line.total_head),
         total_head_upper=_plain(line.total_head_upper),
-        pump_head=_plain(central),
-        pump_head_upper=_plain(upper),
+        pump_head=_plain(found.central.pump_head),
+        pump_head_upper=_plain(found.upper.pump_head),
         static_head=_plain(line.static_head),
         regime=tuple(_regimes(line)),
         laminar_until=_within(first.min() if first.size else np.nan, flow),

@@ -1,0 +1,97 @@
+"""The system curve of a case in every condition, its pumps on it, and which of them to take."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import replace
+
+import numpy as np
+
+from pipeflow.arrays import Array
+from pipeflow.case.model import Case
+from pipeflow.study.conditions import conditions
+from pipeflow.study.curve_result import Condition, CurveResult, Flush, Kind, PumpOnLine
+from pipeflow.study.flows import pipes_of
+from pipeflow.study.ranking import ranked
+from pipeflow.study.result import MethodUse
+from pipeflow.study.solving import solve
+from pipeflow.study.system_curve import flows_of_interest, system_curve
+
+VENDOR = (
+    "The corrected curves are estimates: the correction of ANSI/HI 9.6.7 is made for Newtonian liquids and excludes "
+    "slurries. The vendor of the pump must confirm head, power and NPSH for this slurry."
+)
+
+
+def curve(case: Case) -> CurveResult:
+    """Draw the system curves of a case and set its pumps on them.
+
+    Parameters
+    ----------
+    case : Case
+
+    Returns
+    -------
+    CurveResult
+        Of the case, its scenarios and, where it names pumps, of the line full of water and set going after a stop.
+    """
+    every = list(conditions(case))
+    flow = flows_of_interest([one for _, _, one in every])
+    found = tuple(_condition(name, kind, one, flow) for name, kind, one in every)
+    low, high = _envelope([one for one in found if one.kind in ("case", "scenario")])
+    return CurveResult(
+        conditions=found,
+        envelope_low=low,
+        envelope_high=high,
+        ranking=ranked(found),
+        cautions=(VENDOR,) if case.pumps else (),
+        methods=tuple(_methods(found)),
+    )
+
+
+def _condition(name: str, kind: Kind, case: Case, flow: Array) -> Condition:
+    pumps: tuple[PumpOnLine, ...] = ()
+    if case.pumps:
+        from pipeflow.study.pumps import pumps_on_line
+
+        pumps = pumps_on_line(case, kind)
+    flushes = tuple(_flushes(case, pumps)) if kind == "water" else ()
+    return Condition(name, kind, case, system_curve(case, flow), pumps, flushes, tuple(_about(kind)))
+
+
+def _about(kind: Kind) -> Iterator[str]:
+    if kind == "water":
+        yield "at start-up, flush and test the line is full of water: a pump that runs out past its curve is throttled"
+    elif kind == "restart":
+        yield "the gel unbroken at every flow, which only its first figure is sure of: as the line moves, it thins"
+
+
+def _envelope(conditions: Sequence[Condition]) -> tuple[tuple[float, ...], tuple[float, ...]]:
+    low = np.min([one.system.pump_head for one in conditions], axis=0)
+    high = np.max([one.system.pump_head_upper for one in conditions], axis=0)
+    return tuple(low.tolist()), tuple(high.tolist())
+
+
+def _flushes(case: Case, pumps: Sequence[PumpOnLine]) -> Iterator[Flush]:
+    """Say what each pump makes of the line full of water."""
+    pipes = pipes_of(case)
+    if not pipes:
+        return
+    areas = np.pi / 4.0 * np.array([float(pipe.diameter) for pipe in pipes]) ** 2
+    volume = float(areas @ np.array([float(pipe.length) for pipe in pipes]))
+    for pump in pumps:
+        if pump.duty is not None and pump.duty.flow > 0:
+            flow = pump.duty.flow
+            yield Flush(pump.name, flow / float(areas.max()), volume, volume / flow)
+
+
+def _methods(conditions: Sequence[Condition]) -> Iterator[MethodUse]:
+    """Methods of the line in the case itself, and of its pumps in any condition, each once."""
+    yield from solve(replace(conditions[0].case, scenarios={})).methods
+    said: set[str] = set()
+    for condition in conditions:
+        for pump in condition.pumps:
+            for use in pump.methods:
+                if use.source.key not in said:
+                    said.add(use.source.key)
+                    yield use

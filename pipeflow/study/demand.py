@@ -1,0 +1,83 @@
+"""What a line asks of its pump at any flow, and what it leaves at the pump's inlet."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from pipeflow.arrays import Array
+from pipeflow.case.model import Case
+from pipeflow.constants import STANDARD_GRAVITY
+from pipeflow.line.profile import Profile, profile
+from pipeflow.line.route import LineFlow
+from pipeflow.study.flows import line_at, pump_position
+from pipeflow.study.profile import atmospheric_pressure
+
+
+def heads_along(case: Case, line: LineFlow) -> Profile:
+    """Read the line at its nodes, high points asking for what they need where air and vapour pressure are known."""
+    return profile(
+        line,
+        case.fluid,
+        case.route,
+        case.source,
+        case.destination,
+        pump_position=pump_position(case),
+        atmospheric_pressure=atmospheric_pressure(case),
+        vapour_pressure=case.liquid.vapour_pressure if case.liquid else None,
+    )
+
+
+@dataclass(frozen=True)
+class Heads:
+    """Heads at several flows, m: what the pump must give, central and upper, and the NPSH available by the upper."""
+
+    central: Array
+    upper: Array
+    npsh_available: Array
+
+
+@dataclass(frozen=True)
+class Demand:
+    """The line of a case as its pump sees it; what has been solved once is kept.
+
+    NPSH available is that of the lowest level of the source, nan where the pressure of air or vapour is not known.
+    """
+
+    case: Case
+    _kept: dict[bytes, Heads] = field(default_factory=dict)
+
+    def central(self, flow: Array) -> Array:
+        """Head asked for by the central method, m."""
+        return self.at(flow).central
+
+    def upper(self, flow: Array) -> Array:
+        """Head asked for by the highest method, m."""
+        return self.at(flow).upper
+
+    def at(self, flow: Array) -> Heads:
+        """Solve the line at flows, m³/s."""
+        flow = np.ascontiguousarray(flow, dtype=np.float64)
+        key = flow.tobytes()
+        if key not in self._kept:
+            self._kept[key] = self._solved(flow)
+        return self._kept[key]
+
+    def _solved(self, flow: Array) -> Heads:
+        found = heads_along(self.case, line_at(self.case, flow))
+        inlet = 2 * pump_position(self.case) + 1
+        above = found.upper.total_head[..., inlet] - found.elevation[..., inlet] - self._drawn_down()
+        return Heads(found.central.pump_head, found.upper.pump_head, above + self._air_over_vapour())
+
+    def _drawn_down(self) -> float:
+        """Fall of the source from its level to its lowest, m."""
+        if self.case.source is None or self.case.lowest_level is None:
+            return 0.0
+        return float(self.case.source.level) - self.case.lowest_level
+
+    def _air_over_vapour(self) -> float:
+        air, liquid = atmospheric_pressure(self.case), self.case.liquid
+        if air is None or liquid is None or liquid.vapour_pressure is None:
+            return np.nan
+        return (air - liquid.vapour_pressure) / (float(self.case.fluid.density) * STANDARD_GRAVITY)
