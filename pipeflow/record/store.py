@@ -1,0 +1,233 @@
+"""The record of a case on the disk: read with every reason why it cannot be used, written whole or not at all."""
+
+from __future__ import annotations
+
+import contextlib
+import hashlib
+import json
+import os
+import platform
+import stat
+import tempfile
+from collections.abc import Iterator
+from dataclasses import dataclass
+from functools import cache
+from importlib.metadata import version
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+
+from pipeflow import __version__
+from pipeflow.case.files import read_text_file, refusal
+from pipeflow.case.model import Case
+from pipeflow.errors import InputError
+from pipeflow.record.document import document
+from pipeflow.record.inputs import Json, digest, encoded, folded, unfolded
+from pipeflow.study.result import Result
+
+FORMAT = 1
+MAX_BYTES = 16 * 1024 * 1024
+SUFFIX = ".record.json"
+KEPT = ".kept"
+CHECKSUM = "sha256"
+
+
+@dataclass(frozen=True)
+class Record:
+    """What is stored of a case.
+
+    Attributes
+    ----------
+    program : dict of str to str
+        Versions by name: ``pipeflow``, ``python``, ``numpy``, ``scipy``.
+    digest : str
+        SHA-256 of the inputs.
+    methods : tuple of str
+        Keys of the methods that the results rest on.
+    inputs : Json
+        The case laid out by :mod:`pipeflow.record.inputs`.
+    results : dict
+        The document of :mod:`pipeflow.record.document`.
+    """
+
+    program: dict[str, str]
+    digest: str
+    methods: tuple[str, ...]
+    inputs: Json
+    results: dict[str, Any]
+
+
+class UnusableRecordError(Exception):
+    """A record that is there but cannot be used; the message says why."""
+
+
+def record_path(case_file: str | Path) -> Path:
+    """Where the record of a case file stands: ``line.record.json`` beside ``line.yaml``."""
+    return Path(case_file).with_suffix(SUFFIX)
+
+
+def record_of(case: Case, result: Result) -> Record:
+    """Make the record of a case solved with its files by name alone, as ``inputs.without_folder`` gives it."""
+    keys = {use.source.key for one in (result, *result.scenarios.values()) for use in one.methods}
+    inputs = encoded(case)
+    return Record(versions(), digest(inputs), tuple(sorted(keys)), inputs, document(result))
+
+
+@cache
+def versions() -> dict[str, str]:
+    """Versions of the program and of what its figures rest on; scipy is asked without loading it."""
+    return {
+        "pipeflow": __version__,
+        "python": platform.python_version(),
+        "numpy": np.__version__,
+        "scipy": version("scipy"),
+    }
+
+
+def written(record: Record) -> str:
+    """Give the text of a record, with a checksum that tells a record damaged or changed by hand."""
+    content = {
+        "format": FORMAT,
+        "program": record.program,
+        "inputs_sha256": record.digest,
+        "methods": list(record.methods),
+        "inputs": folded(record.inputs),
+        "results": record.results,
+    }
+    return json.dumps({**content, CHECKSUM: _checksum(content)}, indent=1, ensure_ascii=False, allow_nan=False) + "\n"
+
+
+def _checksum(content: dict[str, Any]) -> str:
+    text = json.dumps(content, sort_keys=True, separators=(",", ":"), ensure_ascii=True)
+    return hashlib.sha256(text.encode()).hexdigest()
+
+
+def read(path: Path) -> Record | None:
+    """Read a record; None where there is none.
+
+    Raises
+    ------
+    UnusableRecordError
+        It is there but cannot be read, is damaged, or is of another format.
+    """
+    if not os.path.lexists(path):
+        return None
+    try:
+        return _understood(_loaded(read_text_file(path, MAX_BYTES, "a record")))
+    except InputError as refused:
+        raise UnusableRecordError("; ".join(problem.message for problem in refused.problems)) from None
+
+
+def _loaded(text: str) -> dict[str, Any]:
+    try:
+        content = json.loads(text, parse_constant=_refuse_constant)
+    except (ValueError, RecursionError):
+        raise UnusableRecordError("damaged: it is no JSON document") from None
+    if not isinstance(content, dict) or "format" not in content:
+        raise UnusableRecordError("damaged: it is no record of this program")
+    return content
+
+
+def _refuse_constant(name: str) -> None:
+    raise ValueError(name)
+
+
+def _understood(content: dict[str, Any]) -> Record:
+    found = content["format"]
+    if found != FORMAT or isinstance(found, bool):
+        age = "a newer" if isinstance(found, int | float) and found > FORMAT else "another"
+        raise UnusableRecordError(f"of {age} format, {str(found)[:20]}; this version writes format {FORMAT}")
+    checksum = content.pop(CHECKSUM, None)
+    if checksum != _checksum(content):
+        raise UnusableRecordError("damaged, or changed by hand: its checksum does not fit")
+    try:
+        return Record(
+            program={str(name): str(one) for name, one in content["program"].items()},
+            digest=str(content["inputs_sha256"]),
+            methods=tuple(str(key) for key in content["methods"]),
+            inputs=unfolded(content["inputs"]),
+            results=dict(content["results"]),
+        )
+    except (KeyError, TypeError, ValueError, AttributeError) as error:
+        raise UnusableRecordError(f"damaged: {type(error).__name__}: {error}") from None
+
+
+def write(path: Path, text: str) -> None:
+    """Write a record so that at every moment the old one or the new one is there, whole.
+
+    The text goes to a file of its own beside the record, is forced to the disk, and takes the record's place in one
+    step; two at once each have their own file. A symbolic link is followed, permissions are kept.
+
+    Raises
+    ------
+    InputError
+        The folder cannot be written, the disk is full, or what stands there is no file.
+    """
+    try:
+        _replace(Path(os.path.realpath(path)), text)
+    except OSError as error:
+        raise refusal(path, f"the record can't be written: {error.strerror or error}") from None
+
+
+def _replace(path: Path, text: str) -> None:
+    mode = _mode(path)
+    with _beside(path) as (handle, temporary):
+        with os.fdopen(handle, "w", encoding="utf-8", newline="\n") as file:
+            file.write(text)
+            file.flush()
+            os.fchmod(file.fileno(), mode)
+            os.fsync(file.fileno())
+        temporary.replace(path)
+    folder = os.open(path.parent, os.O_RDONLY)
+    try:
+        os.fsync(folder)
+    finally:
+        os.close(folder)
+
+
+def _mode(path: Path) -> int:
+    """Permissions of the file that is there, or those that a new file gets."""
+    try:
+        status = path.stat()
+    except FileNotFoundError:
+        mask = os.umask(0)
+        os.umask(mask)
+        return 0o666 & ~mask
+    if not stat.S_ISREG(status.st_mode):
+        raise OSError(None, "what stands in its place is no regular file")
+    return stat.S_IMODE(status.st_mode)
+
+
+@contextlib.contextmanager
+def _beside(path: Path) -> Iterator[tuple[int, Path]]:
+    """Open a file of a name of its own in the same folder, hidden; it is gone afterwards unless it was moved."""
+    handle, name = tempfile.mkstemp(prefix=".record-", suffix=".tmp", dir=path.parent)
+    try:
+        yield handle, Path(name)
+    except BaseException:
+        with contextlib.suppress(OSError):
+            Path(name).unlink()
+        raise
+
+
+def keep_aside(path: Path) -> Path:
+    """Copy a record that cannot be used to a name that is free, and give that name.
+
+    Raises
+    ------
+    InputError
+        It cannot be read or copied.
+    """
+    try:
+        _mode(path)
+        content = path.read_bytes()
+        for number in range(1, 1000):
+            aside = path.with_name(f"{path.name}{KEPT}{'' if number == 1 else f'-{number}'}")
+            with contextlib.suppress(FileExistsError), aside.open("xb") as file:
+                file.write(content)
+                return aside
+        raise OSError(None, "too many copies are there already")
+    except OSError as error:
+        message = f"the record can't be used, and can't be kept aside: {error.strerror or error}"
+        raise refusal(path, message) from None

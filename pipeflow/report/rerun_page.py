@@ -1,0 +1,215 @@
+"""The pages of cases run again: what moved, by how much and why; a case that did not is one quiet line."""
+
+from __future__ import annotations
+
+import math
+from collections import Counter
+from collections.abc import Iterator, Sequence
+
+from pipeflow.record.comparison import TOTALS, Change, CheckChange, LineComparison
+from pipeflow.record.explanation import Explanation
+from pipeflow.record.rerun import Rerun
+from pipeflow.report.text import WIDTH, paragraph, table
+from pipeflow.units import significant, to_display
+
+SHOWN = {
+    "head_loss_m": ("head loss", "m"),
+    "head_loss_upper_m": ("head loss, upper", "m"),
+    "total_head_m": ("total head", "m"),
+    "total_head_upper_m": ("total head, upper", "m"),
+    "pressure_required_Pa": ("pressure required", "kPa"),
+    "pressure_required_upper_Pa": ("pressure required, upper", "kPa"),
+}
+"""The words and the unit for each total."""
+CENTRAL = {key.replace("_upper", ""): key for key in TOTALS if "_upper" in key}
+STATUS = {"ok": "ok", "not checked": "not checked", "caution": "CAUTION", "fail": "FAIL", None: "none"}
+OUTCOMES = {
+    "moved": "moved",
+    "unmoved": "as before",
+    "no record": "without a record",
+    "unusable record": "with a record that can't be used",
+    "refused": "can't be read",
+}
+LEAST_OF_A_PART = 5e-4
+"""A part below this fraction of the largest is not shown as one."""
+
+
+def rerun_pages(
+    runs: Sequence[Rerun], gone: Sequence[str], skipped: Sequence[str], tolerance: float, width: int = WIDTH
+) -> str:
+    """Lay all cases out, and count them.
+
+    Parameters
+    ----------
+    runs : sequence of Rerun
+    gone : sequence of str
+        Cases that were there before.
+    skipped : sequence of str
+        YAML files that are no cases.
+    tolerance : float
+        Fraction.
+    width : int
+        Columns.
+    """
+    pages = [rerun_page(one, tolerance, width) for one in runs if one.outcome != "refused"]
+    notes = [paragraph(f"{file}: gone since then", width) for file in gone]
+    if skipped:
+        notes.append(paragraph(f"No cases, passed over: {', '.join(skipped)}.", width))
+    return "".join((*pages, *(f"{line}\n" for line in (*notes, "", summary_line(runs, tolerance)))))
+
+
+def rerun_page(found: Rerun, tolerance: float, width: int = WIDTH) -> str:
+    """Lay one case out; one line for a case that did not move."""
+    if found.comparison is None:
+        return paragraph(_headline(found, *found.said), width) + "\n"
+    if not found.moved:
+        return paragraph(_headline(found, "nothing moved", *_beside(found)), width) + "\n"
+    return "\n".join(_moved(found, tolerance, width)) + "\n"
+
+
+def summary_line(runs: Sequence[Rerun], tolerance: float) -> str:
+    """Count the cases by what became of them."""
+    counts = Counter("moved" if one.moved else "unmoved" if one.comparison else one.outcome for one in runs)
+    parts = [f"{counts[key]} {words}" for key, words in OUTCOMES.items() if counts[key]]
+    cases = "1 case" if len(runs) == 1 else f"{len(runs)} cases"
+    return paragraph(f"{cases}: {', '.join(parts)}; tolerance {100 * tolerance:g} %.")
+
+
+def explained(change: Change, explanation: Explanation) -> str:
+    """Say in one sentence what a total moved by and which input by how much.
+
+    As ``head loss 41.2 → 47.9 m: yield stress +4.1, flow +3.0, density −0.4``.
+    """
+    words, unit = SHOWN[change.name]
+    before, after = (to_display(figure or 0.0, unit) for figure in (change.before, change.after))
+    parts = {
+        group: to_display(float(part), unit)
+        for group, part in zip(explanation.groups, explanation.parts[:, TOTALS.index(change.name)], strict=True)
+    }
+    largest = max(abs(part) for part in parts.values())
+    shown = {group: part for group, part in parts.items() if abs(part) > LEAST_OF_A_PART * largest}
+    said = sorted(shown.items(), key=lambda item: -abs(item[1]))
+    digits = _decimals(largest)
+    moves = ", ".join(f"{group} {_signed(part, digits)}" for group, part in said)
+    return f"{words} {before:.{digits}f} → {after:.{digits}f} {unit}: {moves}"
+
+
+def _decimals(largest: float) -> int:
+    """Decimals that give the largest part three significant digits, within reason."""
+    if not largest:
+        return 1
+    return min(max(2 - math.floor(math.log10(largest)), 0), 9)
+
+
+def _signed(value: float, digits: int) -> str:
+    return f"{value:+.{digits}f}".replace("-", "−")
+
+
+def _headline(found: Rerun, *said: str) -> str:
+    fails = f"fails: {', '.join(name.replace('_', ' ') for name in found.fails)}" if found.fails else ""
+    return f"{found.file}: {'; '.join(part for part in (*said, fails) if part)}"
+
+
+def _beside(found: Rerun) -> Iterator[str]:
+    """What is said of a case beside its figures."""
+    yield from found.said
+    if found.without_effect:
+        yield f"changed, no effect on head: {', '.join(found.without_effect)}"
+
+
+def _moved(found: Rerun, tolerance: float, width: int) -> Iterator[str]:
+    comparison = found.comparison
+    assert comparison is not None
+    yield ""
+    yield paragraph(_headline(found, "moved"), width)
+    yield paragraph(found.title, width, "  ")
+    for names, what in ((comparison.scenarios_added, "new"), (comparison.scenarios_gone, "gone")):
+        if names:
+            yield paragraph(f"Scenarios {what}: {', '.join(names)}.", width, "  ")
+    for line in comparison.lines:
+        yield ""
+        if line.is_beyond(tolerance):
+            yield from _line(line, found, tolerance, width)
+        else:
+            yield f"  {line.scenario or 'the case itself'}: nothing moved"
+    if found.program:
+        versions = ", ".join(f"{name} {old} → {new}" for name, (old, new) in found.program.items())
+        yield paragraph(f"Program: {versions}.", width, "  ")
+    for text in _beside(found):
+        yield paragraph(f"{text[:1].upper()}{text[1:]}.", width, "  ")
+
+
+def _line(line: LineComparison, found: Rerun, tolerance: float, width: int) -> Iterator[str]:
+    columns = (line.scenario or "the case itself", "before", "after", "change", "then", "now")
+    rows = [*_totals(line), *_checks(line, tolerance)]
+    yield from (f"  {text}" for text in table(columns, rows, words=(0, 4, 5), width=width - 2))
+    explanation = found.explanations.get(line.scenario)
+    if explanation is None:
+        why = found.unexplained.get(line.scenario)
+        if why:
+            yield paragraph(f"Not explained: {why}.", width, "  ")
+        return
+    for change in _different(line):
+        if change.is_beyond(tolerance):
+            yield paragraph(explained(change, explanation), width, "  ")
+    if explanation.orders:
+        count = len(explanation.groups) - 1
+        yield paragraph(
+            f"{count} groups of inputs changed: a mean over {explanation.orders} of the orders.", width, "  "
+        )
+
+
+def _different(line: LineComparison) -> Iterator[Change]:
+    """The totals, without an upper figure that is the central one before and after."""
+    by_name = {total.name: total for total in line.totals}
+    repeated = {
+        upper
+        for central, upper in CENTRAL.items()
+        if (by_name[central].before, by_name[central].after) == (by_name[upper].before, by_name[upper].after)
+    }
+    yield from (total for total in line.totals if total.name not in repeated)
+
+
+def _totals(line: LineComparison) -> Iterator[tuple[str, ...]]:
+    for total in _different(line):
+        words, unit = SHOWN[total.name]
+        yield (f"{words}, {unit}", _figure(total.before, unit), _figure(total.after, unit), _percent(total), "", "")
+
+
+def _checks(line: LineComparison, tolerance: float) -> Iterator[tuple[str, ...]]:
+    """The checks that moved or fail: the figure judged, and the limit where that is a figure that moved."""
+    for check in line.checks:
+        if check.is_beyond(tolerance) or check.after == "fail":
+            unit = "kPa" if check.unit == "Pa" else check.unit
+            judged = _judged(check)
+            name = f"{check.name.replace('_', ' ')}{', ' if unit else ''}{unit}"
+            figures = (_figure(judged.before, unit), _figure(judged.after, unit), _percent(judged))
+            yield (f"check: {name}", *figures, STATUS.get(check.before, ""), STATUS.get(check.after, ""))
+            if check.limit.is_beyond(tolerance):
+                figures = (_figure(check.limit.before, unit), _figure(check.limit.after, unit), _percent(check.limit))
+                yield ("  its limit", *figures, "", "")
+
+
+def _judged(check: CheckChange) -> Change:
+    """The figure that the limit is held against: the upper one where there is one."""
+    before, after = (
+        upper if upper is not None else central
+        for central, upper in (
+            (check.value.before, check.value_upper.before),
+            (check.value.after, check.value_upper.after),
+        )
+    )
+    return Change("value", before, after)
+
+
+def _figure(value: float | None, unit: str) -> str:
+    if value is None:
+        return ""
+    return significant(to_display(value, unit) if unit == "kPa" else value)
+
+
+def _percent(change: Change) -> str:
+    relative = change.relative
+    if relative is None:
+        return ""
+    return f"{100 * relative:+.3g} %".replace("-", "−") if relative else "0 %"
