@@ -119,18 +119,18 @@ class WaterCurve:
 
     @cached_property
     def _head(self) -> Callable[[Array], Array]:
-        return _interpolant(self.flow, self.head)
+        return interpolant(self.flow, self.head)
 
     @cached_property
     def _efficiency(self) -> Callable[[Array], Array]:
-        return _interpolant(self.flow, self.efficiency)
+        return interpolant(self.flow, self.efficiency)
 
     @cached_property
     def _npsh_required(self) -> Callable[[Array], Array]:
-        return _interpolant(self.flow, self.npsh_required)
+        return interpolant(self.flow, self.npsh_required)
 
 
-def _interpolant(x: Array, y: Array | None) -> Callable[[Array], Array]:
+def interpolant(x: Array, y: Array | None) -> Callable[[Array], Array]:
     """Monotone cubic through the points, nan outside; nan everywhere where there are none."""
     if y is None:
         return lambda at: np.full(np.shape(at), np.nan)

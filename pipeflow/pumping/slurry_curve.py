@@ -311,7 +311,8 @@ class SlurryCurve:
     @property
     def _flow_at_best(self) -> Array:
         """The same, that on water where it is nan."""
-        return np.where(np.isfinite(self._best_slurry_flow), self._best_slurry_flow, self.water.best_flow)
+        found = self._best_slurry_flow
+        return np.where(np.isfinite(found), found, self.water.best_flow or np.nan)
 
     def _from_water(self, on_water: Array) -> Array:
         """Flow of the slurry in one pump where it is this on water, m³/s; nan where B is past the method's end."""
@@ -322,7 +323,9 @@ class SlurryCurve:
         with np.errstate(divide="ignore"):
             target = np.log(on_water)
         root = find_root(self._excess, target, np.ones_like(target), (target,))
-        return np.where(on_water > 0, np.exp(root), on_water)
+        with np.errstate(invalid="ignore"):
+            is_met = np.abs(self._excess(root, target)[0]) < 1e-9  # and not the edge of the figures
+        return np.where(on_water > 0, np.where(is_met, np.exp(root), np.nan), on_water)
 
     def _excess(self, log_flow: Array, target: Array) -> tuple[Array, None]:
         viscosity = self._viscosity(np.exp(log_flow))
