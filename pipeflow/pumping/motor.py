@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
 from pipeflow.arrays import Array, FloatOrArray
@@ -27,27 +25,23 @@ RATED_OUTPUTS = 1e3 * np.array(
 """W."""
 
 
-@dataclass(frozen=True)
-class Motor:
-    """What a motor must give with its margin, W, and the next standard output, W: None above the largest."""
-
-    needed: float
-    rated: float | None
-
-
 def shaft_power(flow: FloatOrArray, head: FloatOrArray, density: FloatOrArray, efficiency: FloatOrArray) -> Array:
     """``rho g Q H/efficiency`` [W]; flow in m³/s, head in m of the fluid, density in kg/m³."""
     return np.asarray(density) * STANDARD_GRAVITY * flow * head / np.asarray(efficiency)
 
 
-def motor_for(power: float, margin: float) -> Motor:
-    """Choose the motor for a shaft power [W] with a margin on it (a fraction).
+def motor_power(power: FloatOrArray, margin: float) -> Array:
+    """Power the motor must have [W] for a shaft power [W], with a margin on it (a fraction)."""
+    return np.asarray(power) * (1.0 + margin)
+
+
+def standard_motor(power: float) -> float | None:
+    """Next rated output [W] from a power [W] up; None above the largest, or for nan.
 
     Examples
     --------
-    >>> motor_for(20e3, 0.25)
-    Motor(needed=25000.0, rated=30000.0)
+    >>> standard_motor(float(motor_power(20e3, 0.25)))
+    30000.0
     """
-    needed = power * (1.0 + margin)
-    enough = RATED_OUTPUTS[needed * (1.0 - 1e-12) <= RATED_OUTPUTS]
-    return Motor(needed, float(enough[0]) if enough.size else None)
+    enough = RATED_OUTPUTS[power * (1.0 - 1e-12) <= RATED_OUTPUTS]
+    return float(enough[0]) if enough.size else None

@@ -92,8 +92,8 @@ def level_for_npsh(
     return npsh - npsh_of_vessel(surface_pressure, vapour_pressure, density, 0.0, head_loss)
 
 
-def npsh_needed(npsh_required: FloatOrArray) -> Array:
-    """NPSH required and its margin, ``NPSHr + max(1 m, 0.3 NPSHr)`` [m]."""
+def npsh_asked(npsh_required: FloatOrArray) -> Array:
+    """NPSH asked for: that required and its margin, ``NPSHr + max(1 m, 0.3 NPSHr)`` [m]."""
     required = np.asarray(npsh_required, dtype=np.float64)
     return required + np.maximum(LEAST_MARGIN, MARGIN_SHARE * required)
 
