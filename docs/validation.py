@@ -46,6 +46,7 @@ TOPICS = {
     "06_flow_curve_fitting": "Fitting of flow curves",
     "07_fittings": "Fittings, changes of bore, velocity profiles",
     "07_fittings_more": "Draining of a tank, laminar fittings",
+    "08_pumps": "Pumps",
     "10_pipe_dimensions": "Pipe dimensions",
     "11_experimental": "Measured friction",
 }

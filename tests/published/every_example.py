@@ -4,6 +4,7 @@ import flow_curve_examples
 import laminar_examples
 import line_examples
 import measured_friction
+import pump_examples
 import transition_examples
 import turbulent_examples
 
@@ -12,6 +13,7 @@ __all__ = [
     "laminar_examples",
     "line_examples",
     "measured_friction",
+    "pump_examples",
     "transition_examples",
     "turbulent_examples",
 ]
