@@ -238,6 +238,22 @@ def parse_range(text: str, dimension: str) -> tuple[float, float]:
     return ends
 
 
+def parse_number(text: str) -> float:
+    """Read a number without a unit, as ``0.52``.
+
+    Raises
+    ------
+    UnitError
+        The text is none.
+    """
+    if not re.fullmatch(NUMBER, text.strip(" ")):
+        raise UnitError(f"found {echo(text)}; a bare number is needed")
+    number = float(text)
+    if not math.isfinite(number):
+        raise UnitError(f"found {echo(text)}; the number is too large")
+    return number
+
+
 def to_display(value: float, unit: str) -> float:
     """Convert an SI value to a unit of the table.
 

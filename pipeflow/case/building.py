@@ -76,6 +76,8 @@ def build_case(part: CasePart, file: str) -> Case:
         specific_heat=part.fluid.specific_heat,
         hold_times={pipe.pipe: pipe.hold_time for pipe in pipes if pipe.hold_time},
         density_is_mixed=part.fluid.density is None,
+        flow_given_as=_flow_given_as(part.flow),
+        at_mass_flow=tuple(_at_mass_flow(part)),
         assumed=tuple(path for path, inputs in _inputs_by_path(part) if inputs.status == ASSUMED),
     )
 
@@ -110,7 +112,8 @@ def _solids(fluid: FluidPart) -> Solids | None:
         return None
     # a density stated a little off the mixed one must not make the two fractions contradict each other
     density = fluid.mixed_density or fluid.slurry_density
-    fractions = {
+    fractions: dict[str, float | str] = {
+        "fraction_given_by": "" if fluid.solids.volume_fraction is None else "volume",
         "mass_fraction": fluid.solids.of_the_mass(density),
         "volume_fraction": fluid.solids.of_the_volume(density),
     }
@@ -148,6 +151,19 @@ def _flow_range(flow: FlowPart | FlowValue, density: float, solids: Solids | Non
     share = solids.mass_fraction if dry is not None and solids is not None else 1.0
     ends = given.minimum or given.design, given.design, given.maximum or given.design
     return FlowRange(*(end.volume(density * share) for end in ends if end))
+
+
+def _flow_given_as(flow: FlowPart | FlowValue) -> str:
+    if isinstance(flow, FlowValue):
+        return "mass" if flow.is_mass else ""
+    if flow.dry_solids is not None:
+        return "dry solids"
+    return "mass" if flow.design is not None and flow.design.is_mass else ""
+
+
+def _at_mass_flow(part: CasePart) -> Iterator[str]:
+    equipment = (element for element in part.route if isinstance(element, EquipmentPart))
+    yield from (element.name for element in equipment if element.at_flow is not None and element.at_flow.is_mass)
 
 
 def _vessel(part: VesselPart | None) -> Vessel | None:

@@ -108,7 +108,8 @@ class Followed:
 class Solids:
     """The solids of a slurry: density in kg/m³, fractions of the whole, sizes in m; None where not given.
 
-    The fraction not given is worked out with the density of the slurry.
+    The fraction not given is worked out with the density of the slurry; ``fraction_given_by`` is ``volume``, or empty
+    for the mass.
     """
 
     density: float
@@ -117,6 +118,7 @@ class Solids:
     d50: float | None = None
     d85: float | None = None
     fraction_below_45um: float | None = None
+    fraction_given_by: str = ""
 
 
 @dataclass(frozen=True)
@@ -284,6 +286,10 @@ class Case:
         What the design file says of the document.
     density_is_mixed : bool
         The density of the fluid is worked out from solids and liquid.
+    flow_given_as : str
+        ``mass`` or ``dry solids`` where the case gives its flow so; empty for a volume flow of the slurry.
+    at_mass_flow : tuple of str
+        Equipment whose loss is stated at a mass flow of the slurry.
     assumed : tuple of str
         Key paths of the maps whose inputs the case says are assumed, in file order of the keys.
     scenarios : dict of str to Case
@@ -323,6 +329,8 @@ class Case:
     specific_heat: float | None = None
     hold_times: dict[str, float] = field(default_factory=dict)
     density_is_mixed: bool = False
+    flow_given_as: str = ""
+    at_mass_flow: tuple[str, ...] = ()
     assumed: tuple[str, ...] = ()
     scenarios: dict[str, Case] = field(default_factory=dict)
 

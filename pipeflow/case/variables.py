@@ -1,0 +1,245 @@
+"""The inputs of a case that may be varied, each by the key path a case file writes: the closed table of them.
+
+:func:`pipeflow.case.varying.varied` puts arrays in their place.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator
+from dataclasses import dataclass, fields
+from difflib import get_close_matches
+from typing import Final
+
+import numpy as np
+from numpy.typing import NDArray
+
+from pipeflow import units
+from pipeflow.arrays import FloatOrArray
+from pipeflow.case.model import Case, Liquid, Solids
+from pipeflow.line.elements import Pipe, Vessel
+
+
+class VariableError(ValueError):
+    """A key path that cannot be varied, or a value that it cannot have; the message says what can."""
+
+
+@dataclass(frozen=True)
+class Bounds:
+    """Values that are possible, SI; the lower end belongs to them where ``with_lower``, the upper where ``with_upper``.
+
+    An end at infinity is none.
+    """
+
+    lower: float = -math.inf
+    upper: float = math.inf
+    with_lower: bool = False
+    with_upper: bool = False
+
+    def hold(self, values: FloatOrArray) -> NDArray[np.bool_]:
+        """Whether each value is possible."""
+        given = np.asarray(values, dtype=np.float64)
+        above = given >= self.lower if self.with_lower else given > self.lower
+        below = given <= self.upper if self.with_upper else given < self.upper
+        return np.asarray(above & below)
+
+    def __str__(self) -> str:
+        """``above 0``, ``0 or more``, ``above 0 and at most 2``."""
+        lower = f"{self.lower:g} or more" if self.with_lower else f"above {self.lower:g}"
+        upper = f"{'at most' if self.with_upper else 'below'} {self.upper:g}"
+        ends = [text for text, end in ((lower, self.lower), (upper, self.upper)) if math.isfinite(end)]
+        return " and ".join(ends) or "any number"
+
+
+ANY: Final = Bounds()
+POSITIVE: Final = Bounds(0.0)
+NOT_NEGATIVE: Final = Bounds(0.0, with_lower=True)
+FRACTION: Final = Bounds(0.0, 1.0)
+INDEX: Final = Bounds(0.0, 2.0, with_upper=True)
+EXPONENT: Final = Bounds(0.0, 10.0, with_upper=True)
+ELLIS: Final = Bounds(1.0, 10.0, with_lower=True, with_upper=True)
+
+PARAMETERS: Final[dict[str, tuple[str, Bounds]]] = {
+    "viscosity": ("viscosity", POSITIVE),
+    "plastic_viscosity": ("viscosity", POSITIVE),
+    "casson_viscosity": ("viscosity", POSITIVE),
+    "zero_shear_viscosity": ("viscosity", POSITIVE),
+    "infinite_shear_viscosity": ("viscosity", NOT_NEGATIVE),
+    "consistency": ("consistency", POSITIVE),
+    "yield_stress": ("stress", NOT_NEGATIVE),
+    "half_stress": ("stress", POSITIVE),
+    "rate_offset": ("shear rate", NOT_NEGATIVE),
+    "time_constant": ("time", POSITIVE),
+    "flow_index": ("", INDEX),
+    "exponent": ("", EXPONENT),
+    "transition_exponent": ("", EXPONENT),
+}
+"""Dimension and possible values of each parameter of a rheology."""
+
+
+@dataclass(frozen=True)
+class Variable:
+    """An input that may be varied.
+
+    Attributes
+    ----------
+    path : str
+        Its key path.
+    dimension : str
+        A dimension of :mod:`pipeflow.units`; empty for a bare number.
+    value : float
+        What the case gives, SI; nan where it gives nothing.
+    bounds : Bounds
+        What is possible, SI.
+    """
+
+    path: str
+    dimension: str
+    value: float
+    bounds: Bounds = POSITIVE
+
+    def read(self, text: str) -> float:
+        """Read a value of this input, as ``14 Pa`` or, of a bare number, ``0.52``.
+
+        Raises
+        ------
+        VariableError
+            The text is none, or the value is not possible.
+        """
+        try:
+            value = units.parse(text, self.dimension) if self.dimension else units.parse_number(text)
+        except units.UnitError as error:
+            raise VariableError(str(error)) from None
+        if not self.bounds.hold(value):
+            raise VariableError(f"found {units.echo(text)}; must be {self.bounds}")
+        return value
+
+    def shown(self, value: float, digits: int = 4) -> str:
+        """Write a value of this input for a reader."""
+        if not self.dimension:
+            return units.significant(value, digits)
+        return units.format_value(value, self.dimension, digits)
+
+
+def variables(case: Case) -> dict[str, Variable]:
+    """Give every input of a case that may be varied, by key path.
+
+    A route in proportion has the path ``flow``; its ends have one each where they differ. A flow given by mass or by
+    its dry solids is varied as it was given.
+    """
+    every = (*_of_fluid(case), *_of_flow(case), *_of_vessels(case), *_of_route(case), *_of_restart(case))
+    return {variable.path: variable for variable in every}
+
+
+def variable(case: Case, path: str) -> Variable:
+    """Look one input up.
+
+    Raises
+    ------
+    VariableError
+        The path leads to nothing that can be varied; the message says what was meant, or what can be.
+    """
+    known = variables(case)
+    if path not in known:
+        raise VariableError(_why_not(case, path, known))
+    return known[path]
+
+
+def _of_fluid(case: Case) -> Iterator[Variable]:
+    yield Variable("fluid.density", "density", float(case.fluid.density))
+    law = case.fluid.rheology
+    for field in fields(law):  # type: ignore[arg-type]
+        dimension, bounds = PARAMETERS[field.name]
+        bounds = ELLIS if law.key == "ellis" and field.name == "exponent" else bounds
+        yield Variable(f"fluid.rheology.{field.name}", dimension, float(getattr(law, field.name)), bounds)
+    if case.temperature is not None and any(one.law.variable == "temperature" for one in case.followed):
+        yield Variable("fluid.temperature", "temperature", case.temperature)
+    if case.solids is not None:
+        yield from _of_solids(case, case.solids)
+
+
+def _of_solids(case: Case, solids: Solids) -> Iterator[Variable]:
+    yield Variable("fluid.solids.mass_fraction", "", solids.mass_fraction, FRACTION)
+    yield Variable("fluid.solids.volume_fraction", "", solids.volume_fraction, FRACTION)
+    liquid = case.liquid or Liquid()
+    for key, dimension, value in (
+        ("solids.density", "density", solids.density),
+        ("solids.d50", "length", solids.d50),
+        ("solids.d85", "length", solids.d85),
+        ("liquid.density", "density", liquid.density),
+        ("liquid.viscosity", "viscosity", liquid.viscosity),
+    ):
+        if value is not None:
+            yield Variable(f"fluid.{key}", dimension, value)
+
+
+def flow_path(case: Case) -> str:
+    """Key path of the flow as the case gives it."""
+    return "flow.dry_solids" if case.flow_given_as == "dry solids" else "flow"
+
+
+def _of_flow(case: Case) -> Iterator[Variable]:
+    flow, path = case.flow, flow_path(case)
+    dimension = "mass flow" if case.flow_given_as else "volume flow"
+    share = case.solids.mass_fraction if case.flow_given_as == "dry solids" and case.solids else 1.0
+    unit = float(case.fluid.density) * share if case.flow_given_as else 1.0
+    if flow.design > 0:
+        yield Variable(path, dimension, flow.design * unit)
+    if not flow.minimum == flow.design == flow.maximum:
+        for key in ("minimum", "design", "maximum"):
+            yield Variable(f"{path}.{key}", dimension, getattr(flow, key) * unit, NOT_NEGATIVE)
+
+
+def _of_vessels(case: Case) -> Iterator[Variable]:
+    for name, vessel in (("source", case.source or Vessel()), ("destination", case.destination or Vessel())):
+        yield Variable(f"{name}.pressure", "pressure", float(vessel.pressure), ANY)
+        yield Variable(f"{name}.level", "length", float(vessel.level), ANY)
+
+
+def _of_route(case: Case) -> Iterator[Variable]:
+    for element in case.route:
+        home = f"route[{element.name}]"
+        if isinstance(element, Pipe):
+            yield Variable(f"{home}.diameter", "length", float(element.diameter))
+            yield Variable(f"{home}.length", "length", float(element.length))
+            yield Variable(f"{home}.rise", "length", float(element.rise), ANY)
+            yield Variable(f"{home}.roughness", "length", float(element.roughness), NOT_NEGATIVE)
+            yield Variable(f"{home}.loss_coefficient", "", float(element.loss_coefficient), NOT_NEGATIVE)
+        else:
+            yield Variable(f"{home}.pressure_loss", "pressure", float(element.pressure_loss), NOT_NEGATIVE)
+
+
+def _of_restart(case: Case) -> Iterator[Variable]:
+    measured = case.restart.static_yield_stress
+    yield Variable("restart.static_yield_stress", "stress", math.nan if measured is None else measured)
+
+
+def _why_not(case: Case, path: str, known: dict[str, Variable]) -> str:
+    found = f"found {units.echo(path)}"
+    home, _, key = path.rpartition(".")
+    if key == "size" and f"{home}.diameter" in known:
+        return f"{found}; a size is a name, no number: vary {home}.diameter, the inside diameter"
+    if path == "fluid.temperature" and case.temperature is not None:
+        return f"{found}; nothing in the case follows the temperature"
+    if path.startswith(("fluid.solids.", "fluid.liquid.")) and case.solids is None:
+        return f"{found}; the case gives no solids, 'fluid.solids'"
+    if path.split(".")[0] == "flow" and flow_path(case) in known:
+        return f"{found}; the case gives its flow as {flow_path(case)}: {_listed(_near_kin(flow_path(case), known))}"
+    near = get_close_matches(path[: units.ECHO_LENGTH * 3], list(known), n=1, cutoff=0.6)
+    meant = f"did you mean {near[0]}? " if near else ""
+    return f"{found}; this cannot be varied; {meant}what can: {_offered(known)}"
+
+
+def _near_kin(home: str, known: dict[str, Variable]) -> list[str]:
+    return [path for path in known if path == home or path.startswith(f"{home}.")]
+
+
+def _listed(paths: list[str]) -> str:
+    return ", ".join(paths)
+
+
+def _offered(known: dict[str, Variable]) -> str:
+    """List the paths, those of the route by their kinds."""
+    plain = [path for path in known if not path.startswith("route[")]
+    kinds = dict.fromkeys(path.rpartition(".")[2] for path in known if path.startswith("route["))
+    return _listed([*plain, f"route[NAME].{'|'.join(kinds)}"])
