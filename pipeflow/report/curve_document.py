@@ -28,6 +28,7 @@ _UNITS = {
     "motor_power": "W",
     "standard_motor": "W",
     "speed": "rad_s",
+    "speed_upper": "rad_s",
     "viscosity_head": "Pa_s",
     "viscosity_efficiency": "Pa_s",
     "shear_rate": "1_s",

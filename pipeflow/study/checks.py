@@ -33,7 +33,7 @@ from pipeflow.operability.settling import COARSE, laminar_transport_check, stati
 from pipeflow.operability.state import LineState
 from pipeflow.operability.transition import margin_check
 from pipeflow.rheology import mixture
-from pipeflow.study.flows import MAXIMUM, MINIMUM, pump_position
+from pipeflow.study.flows import MAXIMUM, MINIMUM, pipes_of, pump_position
 from pipeflow.study.profile import atmospheric_pressure
 from pipeflow.verdict import Check
 
@@ -116,7 +116,7 @@ def _solids(case: Case, state: LineState) -> Iterator[Check]:
     viscosity = liquid.viscosity if liquid else None
     needs = {"fluid.solids.d85": size, "fluid.liquid.viscosity": viscosity}
     lacking = tuple(key for key, value in needs.items() if value is None)
-    density = _carrier_density(case, solids)
+    density = carrier_density(case, solids)
     if solids.density <= density:
         return
     carried = carried_solids(case)
@@ -137,7 +137,8 @@ def _size(solids: CaseSolids) -> tuple[float | None, str]:
     return (solids.d85, "d85") if solids.d85 is not None else (solids.d50, "d50")
 
 
-def _carrier_density(case: Case, solids: CaseSolids) -> float:
+def carrier_density(case: Case, solids: CaseSolids) -> float:
+    """Density of the liquid that carries the solids, kg/m³: as given, else what they leave."""
     if case.liquid and case.liquid.density:
         return case.liquid.density
     return float(mixture.liquid_density(solids.volume_fraction, solids.density, float(case.fluid.density)))
@@ -148,7 +149,7 @@ def carried_solids(case: Case) -> Solids | None:
     solids, viscosity = case.solids, case.liquid.viscosity if case.liquid else None
     if solids is None or viscosity is None:
         return None
-    size, density = _size(solids)[0], _carrier_density(case, solids)
+    size, density = _size(solids)[0], carrier_density(case, solids)
     if size is None or solids.density <= density:
         return None
     return Solids(size, solids.density / density, solids.volume_fraction, viscosity / density)
@@ -207,5 +208,18 @@ def _pressures(case: Case, state: LineState) -> Iterator[Check]:
 
 def walls_of(case: Case, state: LineState) -> tuple[Wall, ...]:
     """Walls of the pipes that are given by size."""
-    sizes = [find_size(case.sizes[name]) if name in case.sizes else None for name in state.names]
-    return tuple(Wall(size.material, size.outside_diameter, size.wall) if size else Wall() for size in sizes)
+    return tuple(wall_of(case.sizes.get(name)) for name in state.names)
+
+
+def wall_of(size: str | None) -> Wall:
+    """Wall of a size of the catalogue; one of which nothing is known without."""
+    found = find_size(size) if size else None
+    return Wall(found.material, found.outside_diameter, found.wall) if found else Wall()
+
+
+def allowed_pressures(case: Case) -> dict[str, float]:
+    """Pressure that the wall of each pipe holds, Pa, nan where the case lacks what it takes; none without walls."""
+    if case.pipe_wall is None:
+        return {}
+    sizes = {pipe.name: case.sizes.get(pipe.name) for pipe in pipes_of(case)}
+    return {name: case.pipe_wall.allowed(name, wall_of(size))[0] for name, size in sizes.items()}

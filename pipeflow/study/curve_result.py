@@ -132,8 +132,9 @@ class PumpOnLine:
 
     Attributes
     ----------
-    speed : float or None
-        The speed it runs at, rad/s: where it may vary, the one that gives the design flow.
+    speed, speed_upper : float or None
+        The speeds it runs at on the central and the upper system curve, rad/s: where it may vary, those that give the
+        design flow.
     water, drawn : DrawnCurve or None
         Its curve on water at that speed, and as corrected for what flows.
     duty, duty_upper : DutyPoint or None
@@ -149,6 +150,7 @@ class PumpOnLine:
     name: str
     kind: str
     speed: float | None
+    speed_upper: float | None
     water: DrawnCurve | None
     drawn: DrawnCurve | None
     correction: CorrectionResult | None

@@ -2,15 +2,23 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import replace
 
+import numpy as np
+
+from pipeflow.arrays import Array
 from pipeflow.case.model import Case, Pump
 from pipeflow.operability.limits import at_least, at_most, not_checked
+from pipeflow.study.checks import allowed_pressures
+from pipeflow.study.conditions import restart_pressure
 from pipeflow.study.curve_result import DutyPoint
+from pipeflow.study.flows import pump_position
+from pipeflow.study.profile import atmospheric_pressure
 from pipeflow.units import format_si
 from pipeflow.verdict import Check
 
+SystemHead = Callable[[Array], Array]
 PREFERRED = (0.7, 1.2)
 """Share of the best-efficiency flow within which a rotodynamic pump runs well (ANSI/HI 9.6.3, from memory)."""
 CREDITED = 0.8
@@ -72,17 +80,21 @@ def motor_check(pump: Pump, duties: Sequence[DutyPoint]) -> Check | None:
     return at_most("motor_power", value, value, pump.motor_power, "W", basis)
 
 
-def npsh_check(pump: Pump, worst: DutyPoint | None, needs: tuple[str, ...], asked: float | None) -> Check:
-    """Hold NPSH available against what is asked for with its margin, at the highest flow and the lowest level."""
+def needs_of_npsh(case: Case) -> dict[str, bool]:
+    """Case keys that NPSH available rests on, and whether the case gives them."""
+    vapour = case.liquid is not None and case.liquid.vapour_pressure is not None
+    return {"site": atmospheric_pressure(case) is not None, "fluid.liquid.vapour_pressure": vapour}
+
+
+def npsh_check(available: float | None, asked: float, flow: float, needs: tuple[str, ...]) -> Check:
+    """Hold NPSH available against what is asked for with its margin, m, at the highest flow and the lowest level."""
     basis = (
-        "at the pump's inlet, lowest level and highest flow, upper figure; asked: NPSH required + max(1 m, 0.3 of it)"
+        f"at the inlet at {format_si(flow, 'm3/s')} and the lowest level, upper figure, against NPSH required + "
+        "max(1 m, 0.3 of it) (common practice)"
     )
-    available = worst.npsh_available if worst else None
-    if worst is not None and worst.npsh_required is None:
-        needs = (*needs, f"npsh_required in {pump.curve}")
-    if needs or worst is None or available is None or asked is None:
-        return not_checked("npsh", needs, "m", "NPSH available against required", available)
-    return at_least("npsh", available, asked, "m", f"{basis} (common practice); the maker states the margin")
+    if needs or available is None:
+        return not_checked("npsh", needs, "m", basis, available)
+    return at_least("npsh", available, asked, "m", basis)
 
 
 def torque_check(pump: Pump, torque: float | None) -> Check | None:
@@ -114,3 +126,10 @@ def relief_checks(pump: Pump, restart: float | None, allowed: float | None) -> I
     else:
         basis = "setting, below what the weakest pipe holds"
         yield at_most("relief_below_rating", pump.relief_pressure, pump.relief_pressure, allowed, "Pa", basis)
+
+
+def pressures_around(case: Case) -> tuple[float | None, float | None]:
+    """Pressure the pump adds at a restart, and what the weakest pipe after it holds, Pa; None where not known."""
+    names = {element.name for element in case.route[pump_position(case) :]}
+    held = [limit for name, limit in allowed_pressures(case).items() if name in names]
+    return restart_pressure(case), min(held) if held and not any(np.isnan(held)) else None

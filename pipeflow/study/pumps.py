@@ -1,0 +1,269 @@
+"""Candidate pumps set on one system curve: where they run there, and what speaks against it."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+import numpy as np
+
+from pipeflow.arrays import Array
+from pipeflow.case.model import Case, Pump
+from pipeflow.constants import STANDARD_GRAVITY
+from pipeflow.operability.validity import range_cautions
+from pipeflow.pumping.curve import AFFINITY, INTERPOLATION, TRIM
+from pipeflow.pumping.displacement import ACCELERATION, DEAD_HEAD, SLIP, DisplacementPump, acceleration_head
+from pipeflow.pumping.duty import Duties, Intersection, duties
+from pipeflow.pumping.faults import faults
+from pipeflow.pumping.motor import STANDARD_MOTORS, motor_power, standard_motor
+from pipeflow.pumping.slurry_curve import ESTABLISHED_SHARE, SlurryCurve
+from pipeflow.pumping.suction import NPSH, NPSH_MARGIN, npsh_asked
+from pipeflow.sources import Source
+from pipeflow.study import pump_checks
+from pipeflow.study.conditions import restart_pressure
+from pipeflow.study.curve_result import CorrectionResult, DrawnCurve, DutyPoint, Kind, PumpOnLine
+from pipeflow.study.demand import Demand
+from pipeflow.study.flows import pipes_of, pump_position
+from pipeflow.study.machines import CENTRIFUGAL, Machine, all_on_water, at_low_flow, made, settled_speeds, water_curve
+from pipeflow.study.result import MethodUse
+from pipeflow.units import format_value
+from pipeflow.verdict import Check
+
+DRAWN_POINTS = 81
+
+
+def pumps_on_line(case: Case, kind: Kind) -> tuple[PumpOnLine, ...]:
+    """Set every pump of a case on its line; ``kind`` says what the case stands for, and so what is asked of a pump."""
+    demand = Demand(case)
+    return tuple(_Candidate(pump, case, kind, demand).on_line() for pump in case.pumps)
+
+
+@dataclass(frozen=True)
+class _Candidate:
+    """One pump on one line."""
+
+    pump: Pump
+    case: Case
+    kind: Kind
+    demand: Demand
+
+    def on_line(self) -> PumpOnLine:
+        """Find where the pump runs, and hold it against what is asked."""
+        speed, speed_upper = settled_speeds(self.pump, self.case, self.demand)
+        machine, upper = made(self.pump, self.case, speed), made(self.pump, self.case, speed_upper)
+        refusal = self._refusal(machine)
+        found = Duties((), refusal) if refusal else self._meets(machine, self.demand.central)
+        found_upper = Duties((), refusal) if refusal else self._meets(upper, self.demand.upper)
+        duty, duty_upper = self._duty(machine, found.duty), self._duty(upper, found_upper.duty)
+        others = (self._duty(machine, one) for one in found.intersections if one is not found.duty)
+        reason = found_upper.reason or found.reason
+        return PumpOnLine(
+            name=self.pump.name,
+            kind=self.pump.kind,
+            speed=speed,
+            speed_upper=speed_upper,
+            water=None if self.pump.kind != CENTRIFUGAL else _drawn_on_water(self.pump, speed),
+            drawn=None if refusal else _drawn(machine),
+            correction=_correction(machine, duty, refusal) if isinstance(machine, SlurryCurve) else None,
+            duty=duty,
+            duty_upper=duty_upper,
+            others=tuple(one for one in others if one is not None),
+            checks=tuple(self._checks(upper, duty, duty_upper, reason)),
+            cautions=tuple(self._cautions(machine, duty, found, found_upper)),
+            methods=tuple(self._methods(machine)),
+        )
+
+    def _refusal(self, machine: Machine) -> str:
+        if isinstance(machine, DisplacementPump) or not machine.refusal:
+            return ""
+        return "its speed is not given, which the correction needs" if self.pump.speed is None else machine.refusal
+
+    def _meets(self, machine: Machine, system_head: pump_checks.SystemHead) -> Duties:
+        return duties(machine.flow_and_head, machine.ends, system_head)
+
+    def _duty(self, machine: Machine, crossing: Intersection | None) -> DutyPoint | None:
+        if crossing is None:
+            return None
+        state = machine.state(np.array([crossing.parameter]))
+        lower, power = _known(state.efficiency_lower), _known(state.shaft_power_upper)
+        motor = None if power is None else float(motor_power(power / self.pump.number, self.pump.motor_margin))
+        best = machine.best_flow if isinstance(machine, SlurryCurve) else None
+        return DutyPoint(
+            flow=crossing.flow,
+            head=crossing.head,
+            efficiency=_known(state.efficiency),
+            shaft_power=_known(state.shaft_power),
+            efficiency_for_motor=lower,
+            motor_power=motor,
+            standard_motor=None if motor is None else standard_motor(motor),
+            best_efficiency_share=crossing.flow / best if best else None,
+            npsh_available=self._npsh_available(machine, crossing.flow),
+            npsh_required=_known(state.npsh_required),
+            stable=crossing.is_stable,
+            established=bool(state.established[0]),
+        )
+
+    def _npsh_available(self, machine: Machine, flow: float) -> float | None:
+        available = self.demand.at(np.array([flow])).npsh_available
+        return _known(available - self._acceleration(machine, flow))
+
+    def _acceleration(self, machine: Machine, flow: float) -> float:
+        """Head that the strokes of a pump of pistons take from the suction line, m."""
+        strokes, speed = self.pump.reciprocating, getattr(machine, "speed", None)
+        if strokes is None or speed is None:
+            return 0.0
+        names = [element.name for element in self.case.route[: pump_position(self.case)]]
+        suction = [pipe for pipe in pipes_of(self.case) if pipe.name in names]
+        heads = (
+            acceleration_head(
+                pipe.length, flow / (np.pi / 4.0 * pipe.diameter**2), speed, strokes.cylinders, strokes.constant
+            )
+            for pipe in suction
+        )
+        return float(sum(heads, start=np.zeros(())))
+
+    def _checks(
+        self, machine: Machine, duty: DutyPoint | None, upper: DutyPoint | None, reason: str
+    ) -> Iterator[Check]:
+        both = [one for one in (duty, upper) if one is not None]
+        if self.kind == "restart":
+            yield from self._restart(machine)
+            return
+        if self.kind != "water":
+            yield pump_checks.flow_check(self.case, duty, upper, reason)
+            yield from filter(None, [pump_checks.established_check(both), pump_checks.share_check(both)])
+        if both:
+            yield self._npsh(machine, both)
+            yield from filter(None, [pump_checks.motor_check(self.pump, both), self._torque(machine, both)])
+        if self.kind == "case" and isinstance(machine, DisplacementPump):
+            yield from pump_checks.relief_checks(self.pump, *pump_checks.pressures_around(self.case))
+
+    def _npsh(self, machine: Machine, both: list[DutyPoint]) -> Check:
+        """At the highest flow of a duty, or at maximum flow where the pump's curve reaches it."""
+        needs = tuple(key for key, known in pump_checks.needs_of_npsh(self.case).items() if not known)
+        if not self.pump.table.npsh_required:
+            needs = (*needs, f"npsh_required in {self.pump.curve}")
+        flow = max(one.flow for one in both)
+        required = max((one.npsh_required or 0.0 for one in both), default=0.0)
+        if isinstance(machine, SlurryCurve) and flow < self.case.flow.maximum <= machine.ends[1]:
+            flow = self.case.flow.maximum
+            required = _known(machine.state(np.array([flow])).npsh_required) or required
+        available = self._npsh_available(machine, flow)
+        return pump_checks.npsh_check(available, float(npsh_asked(required)), flow, needs)
+
+    def _torque(self, machine: Machine, both: list[DutyPoint]) -> Check | None:
+        if not isinstance(machine, DisplacementPump):
+            return None
+        weight = machine.density * STANDARD_GRAVITY
+        return pump_checks.torque_check(self.pump, _known(machine.torque(weight * max(one.head for one in both))))
+
+    def _restart(self, machine: Machine) -> Iterator[Check]:
+        """Hold the head that sets the line going against what the pump may be credited with at low flow."""
+        pressure = restart_pressure(self.case)
+        weight = float(self.case.fluid.density) * STANDARD_GRAVITY
+        if pressure is None:
+            return
+        if isinstance(machine, DisplacementPump):
+            limit = self.pump.relief_pressure
+            basis = "against the relief setting"
+            yield pump_checks.restart_check(pressure / weight, None if limit is None else limit / weight, basis)
+            return
+        basis = "against 80 % of the least corrected head from 0 to 40 % of best-efficiency flow"
+        yield pump_checks.restart_check(pressure / weight, _credit(at_low_flow(machine)), basis)
+
+    def _cautions(self, machine: Machine, duty: DutyPoint | None, found: Duties, upper: Duties) -> Iterator[str]:
+        if self.kind in ("water", "restart"):
+            yield from filter(None, [found.reason])
+            return
+        yield from filter(None, dict.fromkeys([found.reason, upper.reason]))
+        if found.is_ambiguous:
+            yield (
+                f"the curves cross {len(found.intersections)} times: how the pump is started decides where it runs; "
+                "where the line's curve falls past the pump's the flow does not hold"
+            )
+        flows = self.case.flow
+        if duty is not None and duty.flow > flows.maximum * (1.0 + 1e-6) > 0:
+            yield f"it gives more than maximum flow, {format_value(flows.maximum, 'm3/h')}: throttle, trim or slow it"
+        if isinstance(machine, DisplacementPump):
+            yield DEAD_HEAD
+            return
+        yield from (fault.message for fault in faults(water_curve(self.pump)) if fault.is_caution)
+        for source in machine.sources:
+            yield from range_cautions(source, machine.values_in_range)
+
+    def _methods(self, machine: Machine) -> Iterator[MethodUse]:
+        for source in self._sources(machine):
+            yield MethodUse(source, f"pump {self.pump.name}")
+
+    def _sources(self, machine: Machine) -> Iterator[Source]:
+        if isinstance(machine, SlurryCurve):
+            yield INTERPOLATION
+            yield from machine.sources
+            if self.pump.curve_speed is not None and self.pump.curve_speed != self.pump.speed:
+                yield AFFINITY
+            if self.pump.trimmed_diameter is not None:
+                yield TRIM
+        else:
+            yield SLIP
+        if self.pump.reciprocating is not None:
+            yield ACCELERATION
+        yield from (NPSH, NPSH_MARGIN, STANDARD_MOTORS)
+
+
+def _known(value: Array) -> float | None:
+    figure = float(np.asarray(value).ravel()[0])
+    return figure if np.isfinite(figure) else None
+
+
+def _credit(machine: SlurryCurve) -> float | None:
+    """Head that a restart may count on, m; None without a best-efficiency flow or a figure at every low flow."""
+    if machine.best_flow is None:
+        return None
+    head = machine.state(np.linspace(machine.ends[0], ESTABLISHED_SHARE * machine.best_flow, DRAWN_POINTS)).head
+    return _known(pump_checks.CREDITED * head.min())
+
+
+def _correction(machine: SlurryCurve, duty: DutyPoint | None, refusal: str) -> CorrectionResult:
+    flow = duty.flow if duty is not None else machine.best_flow
+    if refusal or flow is None:
+        return CorrectionResult("none", None, None, None, note=refusal or machine.derating.reason)
+    found = machine.correction(np.array([flow]))
+    viscous = machine.method != "none"
+    return CorrectionResult(
+        method=machine.method,
+        head_factor=_known(found.head_factor),
+        flow_factor=_known(found.flow_factor),
+        efficiency_factor=_known(found.efficiency_factor),
+        efficiency_factor_for_motor=_known(found.efficiency_factor_lower),
+        parameter_head=_known(found.b_head),
+        parameter_efficiency=_known(found.b_efficiency),
+        viscosity_head=_known(found.viscosity.apparent * machine.density),
+        viscosity_efficiency=_known(found.viscosity.differential * machine.density),
+        shear_rate=_known(found.viscosity.shear_rate),
+        note=machine.derating.reason if viscous else "",
+    )
+
+
+def _drawn(machine: Machine) -> DrawnCurve:
+    """The pump's curve in what the line holds, by rising flow; points without a figure are left out."""
+    state = machine.state(np.linspace(*machine.ends, DRAWN_POINTS))
+    order = [at for at in np.argsort(state.flow) if np.isfinite(state.head[at])]
+    return DrawnCurve(
+        flow=tuple(float(state.flow[at]) for at in order),
+        head=tuple(float(state.head[at]) for at in order),
+        efficiency=tuple(_known(state.efficiency[at]) for at in order),
+        npsh_required=tuple(_known(state.npsh_required[at]) for at in order),
+        established=tuple(bool(state.established[at]) for at in order),
+    )
+
+
+def _drawn_on_water(pump: Pump, speed: float | None) -> DrawnCurve:
+    curve = all_on_water(pump, speed)
+    flow = np.linspace(*curve.ends, DRAWN_POINTS)
+    return DrawnCurve(
+        flow=tuple(flow.tolist()),
+        head=tuple(curve.head_at(flow).tolist()),
+        efficiency=tuple(_known(value) for value in curve.efficiency_at(flow)),
+        npsh_required=tuple(_known(value) for value in curve.npsh_required_at(flow)),
+        established=(True,) * flow.size,
+    )
