@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import replace
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from pipeflow.case.fields import FlowValue
 from pipeflow.case.flow_curve_part import FlowCurvePart
@@ -27,14 +27,16 @@ from pipeflow.case.model import (
     Solids,
 )
 from pipeflow.case.part import ASSUMED, InputPart
-from pipeflow.case.pumps_part import PumpPart
 from pipeflow.case.route_part import EquipmentPart, PipePart, PumpPlacePart
 from pipeflow.case.schema import CasePart, FlowPart, VesselPart, pump_place
-from pipeflow.case.sizing_part import CostPart, SizingPart
 from pipeflow.line.catalogue import INCH, MATERIALS
 from pipeflow.line.elements import Element, Equipment, Fluid, Pipe, Vessel
 from pipeflow.operability.pressures import WallInputs
 from pipeflow.rheology import mixture
+
+if TYPE_CHECKING:
+    from pipeflow.case.pumps_part import PumpPart
+    from pipeflow.case.sizing_part import CostPart, SizingPart
 
 
 def build_case(part: CasePart, file: str) -> Case:
@@ -68,7 +70,7 @@ def build_case(part: CasePart, file: str) -> Case:
         pumps=tuple(_pump(pump) for pump in part.pumps),
         pump_place=pump_place(part.route),
         lowest_level=part.source.lowest_level if part.source else None,
-        job=Job(**part.job.model_dump(exclude_none=True)),
+        job=Job(**part.job.model_dump(exclude_none=True)) if part.job else Job(),
         solids=solids,
         liquid=_liquid(part.fluid, solids),
         site=Site(**_inputs(part.site)) if part.site else None,

@@ -9,7 +9,6 @@ from pydantic import ValidationError
 
 from pipeflow.case.nodes import Finding, Mapping, Node, Sequence
 from pipeflow.case.schema import CasePart
-from pipeflow.case.wording import findings
 
 
 def examine(tree: Node, folder: Path = Path()) -> tuple[CasePart | None, list[Finding]]:
@@ -17,6 +16,8 @@ def examine(tree: Node, folder: Path = Path()) -> tuple[CasePart | None, list[Fi
     try:
         return CasePart.model_validate(_plain(tree), context=_context(folder)), []
     except ValidationError as error:
+        from pipeflow.case.wording import findings
+
         return None, findings(tree, error.errors(include_url=False, include_input=False))
 
 

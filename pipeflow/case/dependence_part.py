@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import Annotated, Any, Final
+from typing import TYPE_CHECKING, Annotated, Any, Final, Union
 
 import numpy as np
 from pydantic import ConfigDict, Discriminator, Field, Tag
@@ -24,6 +24,7 @@ from pipeflow.case.fields import (
     at_odds,
     choice,
 )
+from pipeflow.case.later import later
 from pipeflow.case.model import shown_condition
 from pipeflow.case.nodes import Scalar
 from pipeflow.case.part import Part
@@ -222,29 +223,24 @@ def _tag(value: Any) -> str:
     return f"<{name}>" if name in LAWS else "<other>"
 
 
-_Unknown = Annotated[UnknownLawPart, Tag("<other>")]
+def _or_law(value: Any, dimension: str) -> Any:
+    """Give the type of a parameter that may be a value or a law."""
+    parts = LAW_PARTS[dimension].items()
+    return Annotated[
+        Union[
+            Annotated[value, Tag("<one>")],
+            *(Annotated[later("dependence_part", part.__name__), Tag(f"<{law}>")] for law, part in parts),
+            Annotated[UnknownLawPart, Tag("<other>")],
+        ],
+        Discriminator(_tag),
+    ]
 
-YieldStressOrLaw = Annotated[
-    Annotated[YieldStress, Tag("<one>")]
-    | Annotated[StressPowerPart, Tag("<power>")]
-    | Annotated[StressExponentialPart, Tag("<exponential>")]
-    | Annotated[StressArrheniusPart, Tag("<arrhenius>")]
-    | _Unknown,
-    Discriminator(_tag),
-]
-ViscosityOrLaw = Annotated[
-    Annotated[Viscosity, Tag("<one>")]
-    | Annotated[ViscosityPowerPart, Tag("<power>")]
-    | Annotated[ViscosityExponentialPart, Tag("<exponential>")]
-    | Annotated[ViscosityArrheniusPart, Tag("<arrhenius>")]
-    | _Unknown,
-    Discriminator(_tag),
-]
-ConsistencyOrLaw = Annotated[
-    Annotated[Consistency, Tag("<one>")]
-    | Annotated[ConsistencyPowerPart, Tag("<power>")]
-    | Annotated[ConsistencyExponentialPart, Tag("<exponential>")]
-    | Annotated[ConsistencyArrheniusPart, Tag("<arrhenius>")]
-    | _Unknown,
-    Discriminator(_tag),
-]
+
+if TYPE_CHECKING:
+    YieldStressOrLaw = float | LawPart
+    ViscosityOrLaw = float | LawPart
+    ConsistencyOrLaw = float | LawPart
+else:
+    YieldStressOrLaw = _or_law(YieldStress, "stress")
+    ViscosityOrLaw = _or_law(Viscosity, "viscosity")
+    ConsistencyOrLaw = _or_law(Consistency, "consistency")

@@ -31,8 +31,10 @@ from pipeflow.case.fields import (
     read_fractions,
     read_number,
     read_size,
+    read_whole,
 )
 from pipeflow.case.fluid_part import FluidPart, SolidsPart
+from pipeflow.case.later import Later
 from pipeflow.case.part import Part
 from pipeflow.case.places import EXAMPLES, PARTS_AT, at_place
 from pipeflow.case.rheology_part import RHEOLOGY_PARTS, UnknownModelPart
@@ -154,8 +156,10 @@ class Writer:
                 return {"enum": list(reader.options())}
             case RangeReader():
                 return self._range(reader)
-        if reader is read_number:
-            return {"type": "number", **bounds}
+            case Later():
+                return self._of(reader.part, [])
+        if reader in (read_number, read_whole):
+            return {"type": "number" if reader is read_number else "integer", **bounds}
         if reader is read_answer:
             return {"type": "boolean"}
         if reader is read_fractions:

@@ -50,7 +50,7 @@ class LimitsPart(Part):
 
     head_loss: Length | None = None
     pressure_loss: PositivePressure | None = None
-    velocity: VelocityPart = VelocityPart()
+    velocity: VelocityPart = Field(default_factory=VelocityPart.model_construct)
     wall_shear_rate: Annotated[ShearRate, Field(gt=0)] | None = None
     wall_shear_stress: Stress | None = None
     temperature_rise: TemperatureDifference | None = None

@@ -169,7 +169,7 @@ class Pump:
     kind : str
         ``centrifugal`` or ``positive-displacement``.
     curve : str
-        Path of its curve.
+        Path of its curve as written in the case.
     table : PumpTable
         The curve read.
     speed, curve_speed : float or None

@@ -21,7 +21,7 @@ class Part(BaseModel):
     them, so that each fault is found whatever else is wrong.
     """
 
-    model_config = ConfigDict(extra="forbid", frozen=True, arbitrary_types_allowed=True)
+    model_config = ConfigDict(extra="forbid", frozen=True, arbitrary_types_allowed=True, defer_build=True)
 
 
 class InputPart(Part):

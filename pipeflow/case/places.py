@@ -7,6 +7,7 @@ from typing import Final
 from pipeflow.case.dependence_part import FOLLOWING, LAW_PARTS
 from pipeflow.case.flow_curve_part import FlowCurvePart, UsePart
 from pipeflow.case.fluid_part import FluidPart, LiquidPart, SolidsPart
+from pipeflow.case.job_part import JobPart
 from pipeflow.case.limits_part import LimitsPart, PipeWallPart, RestartPart, VelocityPart
 from pipeflow.case.part import Part
 from pipeflow.case.pumps_part import ImpellerPart, MotorPart, PumpPart, ReciprocatingPart, SpeedsPart
@@ -17,7 +18,6 @@ from pipeflow.case.schema import (
     DestinationPart,
     DrySolidsPart,
     FlowPart,
-    JobPart,
     MethodsPart,
     SitePart,
     SourcePart,

@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING, Annotated, Any, Final
 
-from pydantic import Field, ValidationInfo
+from pydantic import Field, PrivateAttr, ValidationInfo
 from pydantic import field_validator as check
 
 from pipeflow.case.fields import (
@@ -36,7 +36,6 @@ POSITIVE: Final = "positive-displacement"
 PUMP_KINDS: Final = (CENTRIFUGAL, POSITIVE)
 ARRANGEMENTS: Final = ("series", "parallel")
 INLETS: Final = ("end", "side")
-MAX_PUMPS = 20
 MAX_TOGETHER = 20
 MAX_STAGES = 50
 
@@ -105,6 +104,11 @@ class PumpPart(InputPart):
     torque_limit: Torque | None = None
     test_viscosity: Viscosity | None = None
     reciprocating: ReciprocatingPart | None = None
+    _path: str = PrivateAttr("")
+
+    def model_post_init(self, context: dict[str, Any] | None) -> None:
+        """Remember where the curve lies."""
+        self._path = str(_folder(context) / self.curve)
 
     @check("stages", "impeller", "inlet")
     @classmethod
@@ -119,8 +123,8 @@ class PumpPart(InputPart):
     @check("curve")
     @classmethod
     def _read(cls, value: str, info: ValidationInfo) -> str:
-        """Read the curve beside the case, so that every fault of it is told; give its path."""
-        path = (info.context or {}).get("folder", Path()) / value
+        """Read the curve beside the case, so that every fault of it is told."""
+        path = _folder(info.context) / value
         why = why_no_file(path)
         if why:
             raise at_odds(f"{why}; the path of a file is needed, from the folder of the case file")
@@ -130,7 +134,7 @@ class PumpPart(InputPart):
             found = faults_of(str(path), info.data["kind"])
             if found:
                 raise several([str(problem) for problem in found])
-        return str(path)
+        return value
 
     @check("speed")
     @classmethod
@@ -162,7 +166,7 @@ class PumpPart(InputPart):
         """The curve, remembered from when the case was checked."""
         from pipeflow.case.pump_curves import read_curve
 
-        return read_curve(self.curve, self.kind)
+        return read_curve(self._path, self.kind)
 
     @property
     def running_speed(self) -> float | None:
@@ -171,6 +175,12 @@ class PumpPart(InputPart):
         if self.speed is not None or of_curve is None:
             return self.speed
         return of_curve if speeds is None or speeds.minimum <= of_curve <= speeds.maximum else None
+
+
+def _folder(context: dict[str, Any] | None) -> Path:
+    """Where paths of the case start from."""
+    folder: Path = (context or {}).get("folder", Path())
+    return folder
 
 
 def _only_of(kind: str, value: Any, info: ValidationInfo) -> Any:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import Annotated, ClassVar, Final, Self
+from typing import TYPE_CHECKING, Annotated, ClassVar, Final, Self, Union
 
 from pydantic import BeforeValidator, ConfigDict, Discriminator, Field, Tag, ValidationInfo, model_validator
 from pydantic import field_validator as check
@@ -23,6 +23,7 @@ from pipeflow.case.fields import (
     read_number,
 )
 from pipeflow.case.flow_curve_part import FlowCurvePart
+from pipeflow.case.later import later
 from pipeflow.case.nodes import Scalar
 from pipeflow.case.part import InputPart
 from pipeflow.rheology import (
@@ -226,18 +227,17 @@ def _tag(value: object) -> str:
     return f"<{name}>" if name in RHEOLOGY_PARTS else "<other>"
 
 
-RheologyPart = Annotated[
-    Annotated[NewtonianPart, Tag("<newtonian>")]
-    | Annotated[PowerLawPart, Tag("<power-law>")]
-    | Annotated[BinghamPart, Tag("<bingham>")]
-    | Annotated[HerschelBulkleyPart, Tag("<herschel-bulkley>")]
-    | Annotated[CassonPart, Tag("<casson>")]
-    | Annotated[RobertsonStiffPart, Tag("<robertson-stiff>")]
-    | Annotated[CrossPart, Tag("<cross>")]
-    | Annotated[CarreauPart, Tag("<carreau>")]
-    | Annotated[SiskoPart, Tag("<sisko>")]
-    | Annotated[EllisPart, Tag("<ellis>")]
-    | Annotated[FlowCurvePart, Tag("<flow_curve>")]
-    | Annotated[UnknownModelPart, Tag("<other>")],
-    Discriminator(_tag),
-]
+if TYPE_CHECKING:
+    RheologyPart = ModelPart | FlowCurvePart
+else:
+    RheologyPart = Annotated[
+        Union[
+            *(
+                Annotated[later("rheology_part", part.__name__), Tag(f"<{key}>")]
+                for key, part in RHEOLOGY_PARTS.items()
+            ),
+            Annotated[later("flow_curve_part", "FlowCurvePart"), Tag("<flow_curve>")],
+            Annotated[UnknownModelPart, Tag("<other>")],
+        ],
+        Discriminator(_tag),
+    ]

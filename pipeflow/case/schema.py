@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from typing import Annotated, Any, Final
+from typing import TYPE_CHECKING, Annotated, Any, Final
 
 from pydantic import Discriminator, Field, Tag, ValidationInfo
 from pydantic import field_validator as check
@@ -24,16 +24,27 @@ from pipeflow.case.fields import (
     said,
 )
 from pipeflow.case.fluid_part import FluidPart
-from pipeflow.case.limits_part import LimitsPart, PipeWallPart, RestartPart
+from pipeflow.case.later import later
+from pipeflow.case.limits_part import LimitsPart
 from pipeflow.case.model import PumpPlace
 from pipeflow.case.part import FAILED, InputPart, Part
-from pipeflow.case.pumps_part import MAX_PUMPS, PumpPart
 from pipeflow.case.route_part import ElementPart, PipePart, PumpPlacePart
-from pipeflow.case.sizing_part import SizingPart
 from pipeflow.friction.criteria import CRITERIA
 from pipeflow.friction.methods import TURBULENT
 from pipeflow.line.fittings import METHODS as FITTING_METHODS
 from pipeflow.units import echo
+
+if TYPE_CHECKING:
+    from pipeflow.case.job_part import JobPart
+    from pipeflow.case.limits_part import PipeWallPart, RestartPart
+    from pipeflow.case.pumps_part import PumpPart
+    from pipeflow.case.sizing_part import SizingPart
+else:
+    JobPart = later("job_part", "JobPart")
+    PipeWallPart = later("limits_part", "PipeWallPart")
+    RestartPart = later("limits_part", "RestartPart")
+    PumpPart = later("pumps_part", "PumpPart")
+    SizingPart = later("sizing_part", "SizingPart")
 
 DEPOSITION: Final = ("durand", "wasp", "oroskar-turian", "thomas-sublayer")
 METHOD_KEYS: Final[dict[str, tuple[str, ...]]] = {
@@ -46,6 +57,7 @@ METHOD_KEYS: Final[dict[str, tuple[str, ...]]] = {
 
 DISCHARGES: Final = ("submerged", "free")
 MAX_ELEMENTS = 500
+MAX_PUMPS = 20
 MAX_SCENARIOS = 50
 VACUUM: Final = -101_325.0 * 1.1
 """Gauge pressure below which no place on earth has a vacuum, Pa."""
@@ -223,18 +235,6 @@ class MethodsPart(Part):
         return value
 
 
-class JobPart(Part):
-    """What the design file says of the document."""
-
-    project: Name | None = None
-    client: Name | None = None
-    number: Name | None = None
-    prepared_by: Name | None = None
-    checked_by: Name | None = None
-    approved_by: Name | None = None
-    date: Name | None = None
-
-
 def pump_place(route: Sequence[ElementPart]) -> PumpPlace | None:
     """Where the route says its pump stands; None if it does not."""
     places = (PumpPlace(part.name, index) for index, part in enumerate(route) if isinstance(part, PumpPlacePart))
@@ -247,18 +247,18 @@ class CasePart(Part):
     title: Name
     revision: Name | None = None
     notes: Text | None = None
-    job: JobPart = JobPart()
+    job: JobPart | None = None
     fluid: FluidPart
     flow: FlowOrPart
     site: SitePart | None = None
     source: SourcePart | None = None
     destination: DestinationPart | None = None
     route: Annotated[list[ElementPart], Field(min_length=1, max_length=MAX_ELEMENTS)]
-    limits: LimitsPart = LimitsPart()
+    limits: LimitsPart = Field(default_factory=LimitsPart.model_construct)
     restart: RestartPart | None = None
     pipe_wall: PipeWallPart | None = None
     sizing: SizingPart | None = None
-    methods: MethodsPart = MethodsPart()
+    methods: MethodsPart = Field(default_factory=MethodsPart.model_construct)
     pumps: Annotated[list[PumpPart], Field(max_length=MAX_PUMPS)] = Field(default_factory=list)
     uncertainty: Any = None
     scenarios: Any = None

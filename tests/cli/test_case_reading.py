@@ -425,7 +425,7 @@ def test_the_curve_of_a_pump_is_a_file_from_the_folder_of_the_case(
     tmp_path: Path, curve: str, told: str | None
 ) -> None:
     (tmp_path / "curves").mkdir()
-    (tmp_path / "curves" / "a.csv").write_text("")
+    (tmp_path / "curves" / "a.csv").write_bytes((HERE / "candidate-a.csv").read_bytes())
     path = tmp_path / "case.yaml"
     path.write_text(f"{SMALL}pumps:\n  - {{name: A, kind: centrifugal, curve: {curve}}}\n")
     if told is None:
@@ -453,7 +453,7 @@ ODD = {"escape": "\x1b", "zero width": "\u200b", "right to left": "\u202e", "iso
         SMALL.replace("pipe: p", 'pipe: "a?"'),
         SMALL.replace("Small line", '"a?"'),
         SMALL + 'scenarios: {"a?": {}}\n',
-        SMALL + 'pumps: [{name: "a?", kind: centrifugal, curve: good.yaml}]\n',
+        SMALL + 'pumps: [{name: "a?", kind: centrifugal, curve: candidate-a.csv}]\n',
     ],
     ids=["pipe", "title", "scenario", "pump"],
 )
