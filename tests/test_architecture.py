@@ -61,7 +61,7 @@ LAZY = ("__init__",)
 """The package itself, which fetches ``load_case`` and ``solve`` on first use."""
 
 LINES_OF_A_MODULE, LINES_OF_A_BODY = 400, 12
-HEAVY = ("pydantic", "yaml", "typer", "rich", "scipy", "matplotlib")
+HEAVY = ("pydantic", "yaml", "typer", "rich", "scipy", "matplotlib", "jinja2", "plotille")
 
 
 def name_of(path: Path) -> str:

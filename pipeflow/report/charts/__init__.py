@@ -1,0 +1,26 @@
+"""Charts of results: SVG to print, and plain text for a terminal.
+
+The libraries that draw are loaded by the chart that is asked for. Every chart reads in black and white: lines differ by
+dash and marker and carry their names.
+"""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    from pipeflow.study.curve_result import CurveResult
+
+
+def system_chart_svg(result: CurveResult) -> str:
+    """The system curves of a case with its pumps on them, an SVG document 170 mm wide."""
+    from pipeflow.report.charts.system import system_chart
+
+    return system_chart(result)
+
+
+def terminal_chart(result: CurveResult) -> str:
+    """The system curves of a case with its pumps on them, in plain text of 80 columns."""
+    from pipeflow.report.charts.in_terminal import system_in_terminal
+
+    return system_in_terminal(result)

@@ -1,0 +1,20 @@
+"""Round ends of an axis, for any chart."""
+
+from __future__ import annotations
+
+import math
+
+
+def round_ends(lowest: float, highest: float, most: int = 8) -> tuple[float, float, float]:
+    """Round ends of an axis that holds two values, and the step of its ticks: 1, 2 or 5 of a power of ten.
+
+    Examples
+    --------
+    >>> round_ends(0.0, 187.0)
+    (0.0, 200.0, 50.0)
+    """
+    span = highest - lowest if highest > lowest else abs(highest) or 1.0
+    power = 10.0 ** math.floor(math.log10(span / most))
+    step = next(size * power for size in (1.0, 2.0, 5.0, 10.0) if size * power * most >= span * (1.0 - 1e-9))
+    low, high = math.floor(lowest / step + 1e-9), math.ceil(highest / step - 1e-9)
+    return low * step, max(high, low + 1) * step, step
