@@ -118,7 +118,7 @@ def test_the_example_is_a_case() -> None:
 
 def test_the_pieces_shown_are_parts_of_cases() -> None:
     first, *pieces = re.findall(r"```yaml\n(.*?)```", text(), re.DOTALL)
-    assert len(pieces) == 3
+    assert len(pieces) == 4
     for piece in pieces:
         given = re.findall(r"(?m)^(\w+):", piece)
         rest = [block for block in re.split(r"(?m)^(?=\w)", first) if block.split(":")[0] not in [*given, "scenarios"]]

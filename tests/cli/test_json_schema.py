@@ -107,7 +107,7 @@ def test_cases_fit_it(path: Path) -> None:
     assert faults(path.read_text(encoding="utf-8")) == []
 
 
-@pytest.mark.parametrize("text", examples(), ids=["full", "model", "mixture", "sizing"])
+@pytest.mark.parametrize("text", examples(), ids=["full", "model", "mixture", "sizing", "pumps"])
 def test_the_examples_of_the_page_fit_it(text: str) -> None:
     load_text(text, str(HERE / "case.yaml"))
     assert faults(text) == []
