@@ -68,11 +68,13 @@ def method_spread(
             left_out[key] = "it needs the d85 of the solids"
             continue
         stress = central.wall_shear_stress.copy()
+        by_method[key] = stress
+        if not past.size:
+            continue
         found = solve_pipes(**picked, rheology=fluid, method=key, critical=critical)  # type: ignore[arg-type]
         inside = _within_index_range(method, rheology, found.local_flow_index)
         stress.flat[past] = np.where(inside, found.wall_shear_stress, np.nan)
         upper = np.fmax(upper, stress)
-        by_method[key] = stress
         if not inside.all():
             left_out[key] = f"it holds for {method.source.ranges[0]}"
         elif np.isnan(found.wall_shear_stress).any():

@@ -82,6 +82,7 @@ def solve(
     critical: str | None = None,
     fittings: str | None = None,
     particle_size: FloatOrArray = np.nan,
+    with_edges: bool = True,
 ) -> LineFlow:
     """Solve a line for any number of flows, fluids and dimensions at once.
 
@@ -97,6 +98,8 @@ def solve(
         Keys of the methods wanted; by default those settled for the rheology.
     particle_size : float or array
         d85 of the solids, m, for the methods that need it.
+    with_edges : bool
+        Work the ends of laminar and the start of turbulent flow out for laminar pipes too; no loss depends on it.
 
     Returns
     -------
@@ -111,7 +114,7 @@ def solve(
     density, rheology = _last_axis(fluid.density), with_pipe_axis(fluid.rheology)
     roughness = side_by_side([pipe.roughness for pipe in pipes])
     given: dict[str, Any] = {"roughness": roughness, "particle_size": _last_axis(particle_size), "critical": critical}
-    solved = solve_pipes(velocity, diameter, density, rheology, method=turbulent, with_edges=True, **given)
+    solved = solve_pipes(velocity, diameter, density, rheology, method=turbulent, with_edges=with_edges, **given)
     spread = method_spread(solved, velocity, diameter, density, rheology, **given)
 
     gradient_length = 4.0 * side_by_side([pipe.length for pipe in pipes]) / diameter

@@ -65,7 +65,7 @@ class Demand:
         return self._kept[key]
 
     def _solved(self, flow: Array) -> Heads:
-        found = heads_along(self.case, line_at(self.case, flow))
+        found = heads_along(self.case, line_at(self.case, flow, with_edges=False))
         inlet = 2 * pump_position(self.case) + 1
         above = found.upper.total_head[..., inlet] - found.elevation[..., inlet] - self._drawn_down()
         return Heads(found.central.pump_head, found.upper.pump_head, above + self._air_over_vapour())

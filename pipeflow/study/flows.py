@@ -16,8 +16,8 @@ DESIGN, MINIMUM, MAXIMUM = 0, 1, 2
 FLOW_NAMES = ("design flow", "minimum flow", "maximum flow")
 
 
-def line_at(case: Case, flow: FloatOrArray) -> LineFlow:
-    """Solve the line of a case at these flows, m³/s."""
+def line_at(case: Case, flow: FloatOrArray, *, with_edges: bool = True) -> LineFlow:
+    """Solve the line of a case at these flows, m³/s; ``with_edges`` as for :func:`pipeflow.line.route.solve`."""
     return route.solve(
         flow,
         case.fluid,
@@ -28,6 +28,7 @@ def line_at(case: Case, flow: FloatOrArray) -> LineFlow:
         critical=case.methods.critical,
         fittings=case.methods.fittings,
         particle_size=case.particle_size,
+        with_edges=with_edges,
     )
 
 
