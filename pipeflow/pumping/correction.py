@@ -105,7 +105,8 @@ def head_factor(b: FloatOrArray, flow_ratio: FloatOrArray) -> Array:
     flow_ratio : float or array
         Flow over best-efficiency flow, both on water.
     """
-    return np.asarray(1.0 - (1.0 - flow_factor(b)) * np.asarray(flow_ratio) ** 0.75)
+    share = np.asarray(flow_ratio, dtype=np.float64)
+    return np.asarray(1.0 - (1.0 - flow_factor(b)) * np.where(share >= 0, share, np.nan) ** 0.75)
 
 
 def efficiency_factor(b: FloatOrArray) -> Array:
