@@ -97,7 +97,7 @@ def flow_factor(b: FloatOrArray) -> Array:
 
 
 def head_factor(b: FloatOrArray, flow_ratio: FloatOrArray) -> Array:
-    """``C_H = 1 - (1 - C_BEP-H) (Q_W/Q_BEP-W)^0.75``: 1 at shut-off.
+    """``C_H = 1 - (1 - C_BEP-H) (Q_W/Q_BEP-W)^0.75``: 1 at shut-off, nan from where it would leave no head.
 
     Parameters
     ----------
@@ -106,7 +106,8 @@ def head_factor(b: FloatOrArray, flow_ratio: FloatOrArray) -> Array:
         Flow over best-efficiency flow, both on water.
     """
     share = np.asarray(flow_ratio, dtype=np.float64)
-    return np.asarray(1.0 - (1.0 - flow_factor(b)) * np.where(share >= 0, share, np.nan) ** 0.75)
+    factor = 1.0 - (1.0 - flow_factor(b)) * np.where(share >= 0, share, np.nan) ** 0.75
+    return np.where(factor > 0, factor, np.nan)
 
 
 def efficiency_factor(b: FloatOrArray) -> Array:

@@ -57,6 +57,7 @@ def test_no_correction_to_b_of_1_and_none_known_from_40():
         assert (factor(np.array([0.0, 0.3, 1.0])) == 1.0).all()
         assert np.isnan(factor(np.array([40.0, 100.0, np.inf, np.nan]))).all()
     assert float(head_factor(10.0, 0.0)) == 1.0
+    assert np.isnan(head_factor(39.9, np.array([-0.1, 2.5]))).all()
 
 
 @given(st.floats(0.1, 39.9), st.floats(0.1, 39.9), st.floats(0.0, 1.4))

@@ -83,8 +83,7 @@ def test_more_viscosity_never_raises_head_or_efficiency(pump, log_viscosity, tim
     both = np.isfinite(heads[0]) & np.isfinite(heads[1])
     assert (heads[1][both] <= heads[0][both] * (1 + 1e-12)).all()
     for name in ("head_factor", "flow_factor", "efficiency_factor", "efficiency_factor_lower"):
-        low, high = getattr(after, name), getattr(before, name)
-        assert (low <= high * (1 + 1e-12))[np.isfinite(low) & np.isfinite(high)].all()
+        assert (getattr(after, name) <= getattr(before, name) * (1 + 1e-12))[both].all()
 
 
 @given(pumps(), slurries(), st.booleans())
@@ -102,9 +101,8 @@ def test_any_pump_in_any_slurry(pump, rheology, has_outlet):
     assert known.any()
     assert (state.efficiency_lower[known] <= state.efficiency[known]).all()
     last = curve.ends[1]
-    assert float(curve.state(last).head) == pytest.approx(
-        pump.head[-1] * float(curve.correction(last).head_factor), rel=1e-9
-    )
+    head = pump.head[-1] * float(curve.correction(last).head_factor)
+    assert float(curve.state(last).head) == pytest.approx(head, rel=1e-9, nan_ok=True)
     assert last / float(curve.correction(last).flow_factor) == pytest.approx(pump.flow[-1], rel=1e-9)
     assert np.isnan(curve.state(last * 1.000001).head)
     assert last <= pump.flow[-1]
