@@ -88,6 +88,7 @@ REASONS: Final[dict[str, str]] = {
     "hours_per_year": "a year has no more",
     "restart.factor": "1.2 to 1.5 are usual",
     "pumps.motor.margin": "a fraction, not a percentage",
+    "cylinders": "figures are known up to a triplex; 3 errs high for more",
     "pumps.reciprocating.constant": "1.4 is that of water without gas, 2.5 that of compressible liquids",
 }
 """Why a number has its upper bound, by key or by the place of one."""

@@ -94,7 +94,7 @@ def _problems(table: Table, kind: str) -> Iterator[Problem]:
         yield Problem(table.file, line, 1, "", f"{points} points; a curve has at most {MAX_POINTS}")
     elif not missing:
         found = _of_head(table) if kind == "centrifugal" else _of_pressure(table)
-        yield from (_problem(table, fault) for fault in found if not fault.is_caution)
+        yield from (_problem(table, fault) for fault in _said_once(table, found) if not fault.is_caution)
 
 
 def _of_head(table: Table) -> Iterator[Fault]:
@@ -121,12 +121,26 @@ def _gaining(flow: Array) -> Iterator[Fault]:
         yield Fault(int(row), "flow", "the flow grows with the pressure; slip makes it fall")
 
 
+def _said_once(table: Table, found: Iterator[Fault]) -> Iterator[Fault]:
+    """Leave out all but the first of per cents that stand under no unit, which is one mistake."""
+    is_said = False
+    for fault in found:
+        is_per_cent = _is_above_one(table, fault) and not table.units["efficiency"]
+        if not (is_per_cent and is_said):
+            yield fault
+        is_said |= is_per_cent
+
+
+def _is_above_one(table: Table, fault: Fault) -> bool:
+    return fault.column == "efficiency" and fault.row is not None and table.numbers["efficiency"][fault.row] > 1
+
+
 def _problem(table: Table, fault: Fault) -> Problem:
     if fault.row is None:
         return Problem(table.file, table.header_line, 1, fault.column, fault.message)
     cell = table.cells[fault.column][fault.row]
     message = fault.message
-    if fault.column == "efficiency" and table.numbers["efficiency"][fault.row] > 1:
+    if _is_above_one(table, fault):
         most = "100 or less" if table.units["efficiency"] else "1 or less; per cents stand under efficiency [%]"
         message = f"must be {most}"
     return Problem(table.file, cell.line, cell.column, fault.column, f"found {echo(cell.text)}; {message}")

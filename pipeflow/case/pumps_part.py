@@ -81,7 +81,7 @@ class MotorPart(Part):
 class ReciprocatingPart(Part):
     """Pistons or plungers, whose strokes jerk the liquid in the suction line."""
 
-    cylinders: Annotated[Whole, Field(ge=1, le=12)]
+    cylinders: Annotated[Whole, Field(ge=1, le=3)]
     constant: Annotated[Number, Field(ge=1.4, le=2.5)]
 
 
@@ -187,5 +187,5 @@ def _only_of(kind: str, value: Any, info: ValidationInfo) -> Any:
     """Refuse a key of the other kind of pump."""
     found = info.data.get("kind", kind)
     if value is not None and found != kind:
-        raise at_odds(f"is of {kind} pumps; this one is {found}")
+        raise at_odds(f"belongs to {kind} pumps; this one is {found}")
     return value

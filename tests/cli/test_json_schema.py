@@ -60,6 +60,21 @@ LEFT_TO_THE_PROGRAM = {
     "96": "a curve that is not there",
     "97": "an invisible character",
     "98": "a size without its schedule",
+    "100": "a speed within its range",
+    "101": "a speed the range needs",
+    "102": "speeds in order",
+    "103": "keys of a kind of pump",
+    "104": "keys of a kind of pump",
+    "107": "the arrangement of one",
+    "108": "an arrangement of a kind of pump",
+    "109": "diameters in order",
+    "116": "a second pump in the route",
+    "117": "the pump's two places",
+    "119": "levels in order",
+    **dict.fromkeys(map(str, range(123, 135)), "what stands in a curve"),
+    "135": "a curve that is not there",
+    "136": "the name of a pump",
+    "137": "a scenario against the case",
 }
 """What a schema cannot say, or is not asked to, by the number of the spoilt file."""
 NOTATION = {"18", "41", "42", "43", "44", "45", "46", "47", "52", "57", "58"}

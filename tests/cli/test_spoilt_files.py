@@ -26,7 +26,7 @@ SEVERAL = {"55-several": 5, "56-several-in-one-pipe": 4, "57-notation-and-values
 TOLD_ELSEWHERE = {
     "15-missing-key", "20-parameters-of-other-model", "23-size-and-diameter",
     "24-neither-size-nor-diameter", "40-exponent-without-flow", "69-densities-at-odds", "70-no-density-to-be-had",
-    "89-scenario-at-odds-with-the-mixture",
+    "89-scenario-at-odds-with-the-mixture", "101-variable-speed-of-no-known-curve",
 }  # fmt: skip
 PLACE = re.compile(r"[^:\n]+\.yaml:[1-9][0-9]*:[1-9][0-9]*  ")
 
