@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
     from pipeflow.study.curve_result import CurveResult
+    from pipeflow.study.result import Result
 
 
 def system_chart_svg(result: CurveResult) -> str:
@@ -17,6 +18,20 @@ def system_chart_svg(result: CurveResult) -> str:
     from pipeflow.report.charts.system import system_chart
 
     return system_chart(result)
+
+
+def route_chart_svg(result: Result) -> str:
+    """Head and elevation along the route at design flow, an SVG document 170 mm wide."""
+    from pipeflow.report.charts.along_route import route_chart
+
+    return route_chart(result)
+
+
+def flow_curve_chart_svg(result: Result) -> str:
+    """The flow curve with readings, law and the wall shear rates of the line, an SVG document 170 mm wide."""
+    from pipeflow.report.charts.flow_curve import flow_curve_chart
+
+    return flow_curve_chart(result)
 
 
 def terminal_chart(result: CurveResult) -> str:

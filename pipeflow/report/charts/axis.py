@@ -18,3 +18,21 @@ def round_ends(lowest: float, highest: float, most: int = 8) -> tuple[float, flo
     step = next(size * power for size in (1.0, 2.0, 5.0, 10.0) if size * power * most >= span * (1.0 - 1e-9))
     low, high = math.floor(lowest / step + 1e-9), math.ceil(highest / step - 1e-9)
     return low * step, max(high, low + 1) * step, step
+
+
+def decade_ends(lowest: float, highest: float) -> tuple[float, float, list[float]]:
+    """Ends of a logarithmic axis at 1, 2 or 5 of a power of ten, and its ticks.
+
+    Examples
+    --------
+    >>> decade_ends(7.0, 180.0)
+    (5.0, 200.0, [5.0, 10.0, 20.0, 50.0, 100.0, 200.0])
+    """
+    first, last = math.floor(math.log10(lowest)), math.ceil(math.log10(highest))
+    every = [size * 10.0**power for power in range(first - 1, last + 1) for size in (1.0, 2.0, 5.0)]
+    low = max((tick for tick in every if tick <= lowest * (1.0 + 1e-9)), default=every[0])
+    high = min((tick for tick in every if tick >= highest * (1.0 - 1e-9)), default=every[-1])
+    within = [tick for tick in every if low <= tick <= high]
+    if math.log10(high / low) > 3.0:
+        within = [tick for tick in within if tick in (low, high) or math.isclose(math.log10(tick) % 1.0, 0.0)]
+    return low, high, within

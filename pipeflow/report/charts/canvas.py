@@ -100,6 +100,18 @@ def set_ends(axis: Any, ends: tuple[float, float, float]) -> None:
     axis.axes.set_axisbelow(True)
 
 
+def set_decades(axis: Any, ends: tuple[float, float, list[float]]) -> None:
+    """Make an axis logarithmic between two ends, plain numbers at its ticks."""
+    low, high, ticks = ends
+    across = axis.axis_name == "x"
+    (axis.axes.set_xscale if across else axis.axes.set_yscale)("log")
+    (axis.axes.set_xlim if across else axis.axes.set_ylim)(low, high)
+    axis.set_ticks(ticks, labels=[f"{tick:g}" for tick in ticks])
+    axis.set_ticks([], minor=True)
+    axis.axes.grid(visible=True, color="#d9d9d9", linewidth=0.5)
+    axis.axes.set_axisbelow(True)
+
+
 def shortened(name: str, most: int = 26) -> str:
     """A name as it fits beside a line: its beginning and its end, which names of one kind differ in."""
     text = "".join(char if char.isprintable() else " " for char in name)
