@@ -15,6 +15,7 @@ import typer
 from pipeflow.cli import solve as solve  # isort: skip
 from pipeflow.cli import fit as fit  # isort: skip
 from pipeflow.cli import size as size  # isort: skip
+from pipeflow.cli import curve as curve  # isort: skip
 from pipeflow.cli import rerun as rerun  # isort: skip
 from pipeflow.cli import methods as methods  # isort: skip
 from pipeflow.cli.common import BUG, FAILS, UNUSABLE

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Iterator
 from dataclasses import fields, is_dataclass
 from typing import Any
 
@@ -58,7 +59,7 @@ def curve_document(result: CurveResult) -> dict[str, Any]:
         },
         "ranking": [laid_out_fields(one) for one in result.ranking],
         "selected": next((one.name for one in result.ranking if one.holds), None),
-        "cautions": [*result.cautions, *own.cautions],
+        "cautions": [*result.cautions, *_cautions(own)],
         "methods": [
             {"key": use.source.key, "citation": use.source.citation, "used_for": use.used_for} for use in result.methods
         ],
@@ -66,7 +67,7 @@ def curve_document(result: CurveResult) -> dict[str, Any]:
     }
     if len(result.conditions) > 1:
         laid_out["scenarios"] = {
-            one.name: {**_condition(one), "cautions": list(one.cautions)} for one in result.conditions[1:]
+            one.name: {**_condition(one), "cautions": list(_cautions(one))} for one in result.conditions[1:]
         }
     return laid_out
 
@@ -83,6 +84,11 @@ def _condition(one: Condition) -> dict[str, Any]:
         "pumps": [laid_out_fields(pump) for pump in one.pumps],
         "flushes": [laid_out_fields(flush) for flush in one.flushes],
     }
+
+
+def _cautions(one: Condition) -> Iterator[str]:
+    yield from one.cautions
+    yield from (f"{pump.name}: {caution}" for pump in one.pumps for caution in pump.cautions)
 
 
 def _rows(system: SystemCurve) -> list[dict[str, Any]]:

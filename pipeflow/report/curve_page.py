@@ -9,9 +9,10 @@ import numpy as np
 from pipeflow.case.model import FlowRange
 from pipeflow.report.text import heading, paragraph, table
 from pipeflow.study.curve_result import Condition, CurveResult, DutyPoint, PumpOnLine, Ranked, SystemCurve
-from pipeflow.study.ranking import worded
+from pipeflow.study.ranking import against
 from pipeflow.study.result import SAFETY_NOTICE
 from pipeflow.units import format_value, significant, to_display
+from pipeflow.verdict import Check
 
 ROWS = 14
 """Rows of evenly spaced flows that the page shows of a system curve, beside those stated."""
@@ -27,7 +28,7 @@ def _page(result: CurveResult) -> Iterator[str]:
     case = result.case
     yield paragraph(case.title + (f", revision {case.revision}" if case.revision else ""))
     yield case.file
-    yield from heading("System curve")
+    yield from heading("System curve: head asked of the pump, m of what flows")
     yield from _system(result)
     yield from heading("Chart")
     from pipeflow.report.charts import terminal_chart
@@ -53,7 +54,7 @@ def _page(result: CurveResult) -> Iterator[str]:
 
 def _system(result: CurveResult) -> Iterator[str]:
     own, system = result.own, result.own.system
-    columns = ["flow\nm3/h", "static\nm", "central\nm", "upper\nm", "regime", ""]
+    columns = ["flow\nm3/h", "static", "central", "upper", "regime", ""]
     spread = any(one.kind == "scenario" for one in result.conditions)
     if spread:
         columns[4:4] = ["lowest of\nscenarios", "highest of\nscenarios"]
@@ -161,16 +162,20 @@ def _correction(pump: PumpOnLine) -> str:
 
 def _findings(everywhere: Sequence[tuple[Condition, PumpOnLine]]) -> Iterator[str]:
     """Checks that call for thought, and cautions; what several conditions have alike is said once."""
-    said: dict[tuple[str, str], list[str]] = {}
+    checks: dict[tuple[str, str, str], list[tuple[str, Check]]] = {}
+    cautions: dict[str, list[str]] = {}
     for condition, pump in everywhere:
         for check in pump.checks:
             if check.status != "ok":
-                said.setdefault((MARK[check.status], worded(check)), []).append(condition.name)
+                checks.setdefault((check.status, check.name, check.basis), []).append((condition.name, check))
         for caution in pump.cautions:
-            said.setdefault(("!", caution), []).append(condition.name)
-    for (mark, text), names in said.items():
+            cautions.setdefault(caution, []).append(condition.name)
+    for (status, name, basis), found in checks.items():
+        figures = "; ".join(f"{condition}, {against(check)}" for condition, check in found)
+        yield paragraph(f"{name.replace('_', ' ')}: {figures}. {basis}", mark=f"{MARK[status]:<12}")
+    for caution, names in cautions.items():
         where = "" if len(names) == len(everywhere) else f" ({', '.join(names)})"
-        yield paragraph(f"{text}{where}", mark=f"{mark:<12}")
+        yield paragraph(f"{caution}{where}", mark="! ")
 
 
 def _conditions(result: CurveResult) -> Iterator[str]:

@@ -48,6 +48,11 @@ def flow_check(case: Case, duty: DutyPoint | None, upper: DutyPoint | None, reas
     return replace(found, status="caution") if found.status == "fail" and (central or 0.0) >= wanted else found
 
 
+def run_out_check(reason: str) -> Check:
+    """Say that the line full of water holds no duty; throttled, it can be started."""
+    return Check("run_out", "caution", None, None, "", f"{reason}; it is started, flushed and tested throttled")
+
+
 def established_check(duties: Sequence[DutyPoint]) -> Check | None:
     """Refuse to credit a head that the correction does not establish."""
     if all(duty.established for duty in duties):

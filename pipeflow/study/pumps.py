@@ -129,7 +129,9 @@ class _Candidate:
         if self.kind == "restart":
             yield from self._restart(machine)
             return
-        if self.kind != "water":
+        if self.kind == "water" and duty is None:
+            yield pump_checks.run_out_check(reason)
+        elif self.kind != "water":
             yield pump_checks.flow_check(self.case, duty, upper, reason)
             yield from filter(None, [pump_checks.established_check(both), pump_checks.share_check(both)])
         if both:
@@ -172,10 +174,11 @@ class _Candidate:
         yield pump_checks.restart_check(pressure / weight, _credit(at_low_flow(machine)), basis)
 
     def _cautions(self, machine: Machine, duty: DutyPoint | None, found: Duties, upper: Duties) -> Iterator[str]:
-        if self.kind in ("water", "restart"):
-            yield from filter(None, [found.reason])
+        if self.kind == "restart":
             return
         yield from filter(None, dict.fromkeys([found.reason, upper.reason]))
+        if self.kind == "water":
+            return
         if found.is_ambiguous:
             yield (
                 f"the curves cross {len(found.intersections)} times: how the pump is started decides where it runs; "
@@ -193,7 +196,7 @@ class _Candidate:
 
     def _methods(self, machine: Machine) -> Iterator[MethodUse]:
         for source in self._sources(machine):
-            yield MethodUse(source, f"pump {self.pump.name}")
+            yield MethodUse(source, "pumps")
 
     def _sources(self, machine: Machine) -> Iterator[Source]:
         if isinstance(machine, SlurryCurve):

@@ -35,13 +35,17 @@ def _motor(index: int, conditions: Sequence[Condition]) -> float | None:
 
 
 def _reasons(condition: str, pump: PumpOnLine) -> Iterator[str]:
-    yield from (f"{condition}: {worded(check)}" for check in pump.checks if check.status == "fail")
+    yield from (f"{condition}: {_worded(check)}" for check in pump.checks if check.status == "fail")
 
 
-def worded(check: Check) -> str:
-    """Word a check that fails: what it found against what it asks for."""
+def _worded(check: Check) -> str:
     name = check.name.replace("_", " ")
-    if check.value is None or check.limit is None:
-        return f"{name}, {check.basis}"
-    value = check.value if check.value_upper is None else check.value_upper
-    return f"{name} {format_si(value, check.unit)}, {check.sense} {format_si(check.limit, check.unit)}; {check.basis}"
+    return f"{name}, {check.basis}" if check.value is None else f"{name} {against(check)}"
+
+
+def against(check: Check) -> str:
+    """Word what a check found against its limit; the figure it is judged on."""
+    if check.value is None:
+        return "no figure"
+    value = format_si(check.value if check.value_upper is None else check.value_upper, check.unit)
+    return value if check.limit is None else f"{value}, {check.sense} {format_si(check.limit, check.unit)}"
