@@ -39,13 +39,14 @@ def find_cases(paths: Sequence[str]) -> Found:
             cases.setdefault(os.path.realpath(path), path)
             continue
         files = sorted(_yaml_files(path, problems))
-        if not files:
-            problems.append(f"{printable(path)}  a folder without a YAML file that is a case")
-        for file in files:
-            if is_case_file(file):
-                cases.setdefault(os.path.realpath(file), str(file))
-            else:
-                skipped.append(str(file))
+        inside = [file for file in files if is_case_file(file)]
+        if not inside:
+            problems.append(
+                f"{printable(path)}  a folder without a case: no YAML file that speaks of a fluid or a route"
+            )
+        for file in inside:
+            cases.setdefault(os.path.realpath(file), str(file))
+        skipped += [str(file) for file in files if file not in inside]
     return Found(tuple(_of_their_own_record(list(cases.values()), problems)), tuple(skipped), tuple(problems))
 
 

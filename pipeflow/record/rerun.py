@@ -8,6 +8,7 @@ from typing import Literal
 
 import numpy as np
 
+from pipeflow.case.files import printable
 from pipeflow.case.loading import load_case
 from pipeflow.case.model import Case
 from pipeflow.errors import InputError
@@ -31,9 +32,21 @@ from pipeflow.study import solve
 Outcome = Literal["compared", "no record", "unusable record", "refused"]
 
 GOOD, MOVED, UNUSABLE = 0, 1, 2
-FELT = ("fluid.density", "fluid.rheology", "flow.design", "route", "source", "destination", "scenarios", "file")
+FELT = (
+    "fluid.density",
+    "fluid.rheology",
+    "flow.design",
+    "route",
+    "source",
+    "destination",
+    "methods.turbulent",
+    "methods.critical",
+    "methods.fittings",
+    "solids.d85",
+    "scenarios",
+    "file",
+)
 """Inputs that reach the totals, or are told otherwise; by their paths in a laid-out case."""
-FELT_METHODS = ("methods.turbulent", "methods.critical", "methods.fittings", "solids.d85")
 ALONG = ("sizes", "default_roughness", "followed", "fitted", "sheets", "density_is_mixed")
 """What goes along with other inputs, or is shown by them."""
 AS_WRITTEN = {
@@ -98,6 +111,11 @@ class Rerun:
     fails: tuple[str, ...] = ()
 
     @property
+    def name(self) -> str:
+        """The file, fit for a page."""
+        return printable(self.file)
+
+    @property
     def exit_code(self) -> int:
         """0 nothing moved or accepted; 1 moved, a check fails, nothing to compare with; 2 unusable."""
         if self.outcome == "refused":
@@ -154,7 +172,7 @@ def rerun_since(file: str, past: Mapping[str, str | None], revision: str, option
         now = _present(file)
     except InputError as refused:
         return Rerun(file, "refused", tuple(str(problem) for problem in refused.problems))
-    there = past[file]
+    there = past.get(file)
     if there is None:
         return _alone(file, now, "no record", f"not in revision {revision}")
     try:
@@ -270,9 +288,12 @@ def _entries(inputs: Json) -> dict[str, Json]:
 
 
 def _unfelt(before: Json, after: Json) -> Iterator[str]:
-    for path in differences(before, after):
+    changed = list(differences(before, after))
+    # a flow given by one figure is least, design and most at once
+    felt_here = (*FELT, "flow") if "flow.design" in changed else FELT
+    for path in changed:
         head, _, rest = path.partition(".")
-        is_felt = any(path == felt or path.startswith((f"{felt}.", f"{felt}[")) for felt in (*FELT, *FELT_METHODS))
+        is_felt = any(path == felt or path.startswith((f"{felt}.", f"{felt}[")) for felt in felt_here)
         if not is_felt and head not in ALONG:
             yield f"{AS_WRITTEN.get(head, head)}.{rest}" if rest else AS_WRITTEN.get(head, head)
 

@@ -59,6 +59,7 @@ def as_of(revision: str, cases: Sequence[str], folders: Sequence[str]) -> Iterat
     """
     if not revision or revision.startswith("-"):
         raise InputError([Problem("--since", None, None, "", f"found {echo(revision)}; a revision of git is accepted")])
+    cases = [case for case in cases if Path(case).is_file()]
     with tempfile.TemporaryDirectory(prefix="pipeflow-") as temporary:
         files: dict[str, str | None] = {}
         gone: list[str] = []

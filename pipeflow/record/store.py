@@ -141,6 +141,8 @@ def _understood(content: dict[str, Any]) -> Record:
     checksum = content.pop(CHECKSUM, None)
     if checksum != _checksum(content):
         raise UnusableRecordError("damaged, or changed by hand: its checksum does not fit")
+    if not isinstance(content.get("inputs"), dict) or content["inputs"].get("is") != "Case":
+        raise UnusableRecordError("damaged: its inputs are no case")
     try:
         return Record(
             program={str(name): str(one) for name, one in content["program"].items()},

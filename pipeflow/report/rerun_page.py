@@ -6,6 +6,8 @@ import math
 from collections import Counter
 from collections.abc import Iterator, Sequence
 
+import numpy as np
+
 from pipeflow.record.comparison import TOTALS, Change, CheckChange, LineComparison
 from pipeflow.record.explanation import Explanation
 from pipeflow.record.rerun import Rerun
@@ -26,12 +28,11 @@ STATUS = {"ok": "ok", "not checked": "not checked", "caution": "CAUTION", "fail"
 OUTCOMES = {
     "moved": "moved",
     "unmoved": "as before",
+    "accepted": "accepted",
     "no record": "without a record",
     "unusable record": "with a record that can't be used",
     "refused": "can't be read",
 }
-LEAST_OF_A_PART = 5e-4
-"""A part below this fraction of the largest is not shown as one."""
 
 
 def rerun_pages(
@@ -55,7 +56,8 @@ def rerun_pages(
     notes = [paragraph(f"{file}: gone since then", width) for file in gone]
     if skipped:
         notes.append(paragraph(f"No cases, passed over: {', '.join(skipped)}.", width))
-    return "".join((*pages, *(f"{line}\n" for line in (*notes, "", summary_line(runs, tolerance)))))
+    text = "".join((*pages, *(f"{line}\n" for line in (*notes, "", summary_line(runs, tolerance)))))
+    return "".join(char if char.isprintable() or char == "\n" else "?" for char in text)
 
 
 def rerun_page(found: Rerun, tolerance: float, width: int = WIDTH) -> str:
@@ -69,10 +71,16 @@ def rerun_page(found: Rerun, tolerance: float, width: int = WIDTH) -> str:
 
 def summary_line(runs: Sequence[Rerun], tolerance: float) -> str:
     """Count the cases by what became of them."""
-    counts = Counter("moved" if one.moved else "unmoved" if one.comparison else one.outcome for one in runs)
+    counts = Counter(_became(one) for one in runs)
     parts = [f"{counts[key]} {words}" for key, words in OUTCOMES.items() if counts[key]]
     cases = "1 case" if len(runs) == 1 else f"{len(runs)} cases"
     return paragraph(f"{cases}: {', '.join(parts)}; tolerance {100 * tolerance:g} %.")
+
+
+def _became(found: Rerun) -> str:
+    if found.comparison is not None and not found.moved:
+        return "unmoved"
+    return "accepted" if found.accepted else "moved" if found.moved else found.outcome
 
 
 def explained(change: Change, explanation: Explanation) -> str:
@@ -87,9 +95,9 @@ def explained(change: Change, explanation: Explanation) -> str:
         for group, part in zip(explanation.groups, explanation.parts[:, TOTALS.index(change.name)], strict=True)
     }
     largest = max(abs(part) for part in parts.values())
-    shown = {group: part for group, part in parts.items() if abs(part) > LEAST_OF_A_PART * largest}
-    said = sorted(shown.items(), key=lambda item: -abs(item[1]))
     digits = _decimals(largest)
+    shown = {group: part for group, part in parts.items() if round(part, digits)}
+    said = sorted(shown.items(), key=lambda item: -abs(item[1]))
     moves = ", ".join(f"{group} {_signed(part, digits)}" for group, part in said)
     return f"{words} {before:.{digits}f} → {after:.{digits}f} {unit}: {moves}"
 
@@ -107,7 +115,7 @@ def _signed(value: float, digits: int) -> str:
 
 def _headline(found: Rerun, *said: str) -> str:
     fails = f"fails: {', '.join(name.replace('_', ' ') for name in found.fails)}" if found.fails else ""
-    return f"{found.file}: {'; '.join(part for part in (*said, fails) if part)}"
+    return f"{found.name}: {'; '.join(part for part in (*said, fails) if part)}"
 
 
 def _beside(found: Rerun) -> Iterator[str]:
@@ -150,13 +158,24 @@ def _line(line: LineComparison, found: Rerun, tolerance: float, width: int) -> I
             yield paragraph(f"Not explained: {why}.", width, "  ")
         return
     for change in _different(line):
-        if change.is_beyond(tolerance):
+        if change.is_beyond(tolerance) and not _goes_with_head_loss(change, explanation):
             yield paragraph(explained(change, explanation), width, "  ")
     if explanation.orders:
         count = len(explanation.groups) - 1
         yield paragraph(
             f"{count} groups of inputs changed: a mean over {explanation.orders} of the orders.", width, "  "
         )
+
+
+def _goes_with_head_loss(change: Change, explanation: Explanation) -> bool:
+    """Whether a total head moved as its head loss did, part by part: nothing is left to say."""
+    if not change.name.startswith("total_head"):
+        return False
+    head_loss, total_head = (
+        explanation.parts[:, TOTALS.index(name)]
+        for name in (change.name.replace("total_head", "head_loss"), change.name)
+    )
+    return bool(np.allclose(head_loss, total_head, rtol=0.0, atol=1e-9 * np.abs(total_head).max()))
 
 
 def _different(line: LineComparison) -> Iterator[Change]:
@@ -209,7 +228,7 @@ def _figure(value: float | None, unit: str) -> str:
 
 
 def _percent(change: Change) -> str:
-    relative = change.relative
-    if relative is None:
+    if change.relative is None:
         return ""
-    return f"{100 * relative:+.3g} %".replace("-", "−") if relative else "0 %"
+    percent = 100 * change.relative
+    return f"{_signed(percent, 2 if abs(percent) < 10 else 1)} %" if round(percent, 2) else "0 %"
