@@ -27,6 +27,18 @@ from pipeflow.operability.settling import (
     STEINOUR,
     STOKES,
 )
+from pipeflow.pumping.correction import HI_NPSH, HI_VISCOSITY
+from pipeflow.pumping.curve import AFFINITY, INTERPOLATION, TRIM
+from pipeflow.pumping.displacement import ACCELERATION, GAP_SLIP, SLIP
+from pipeflow.pumping.equivalent import (
+    APPARENT_FOR_HEAD,
+    DIFFERENTIAL_FOR_EFFICIENCY,
+    OUTLET_PASSAGE,
+    TWICE_THE_SPEED,
+)
+from pipeflow.pumping.motor import STANDARD_MOTORS
+from pipeflow.pumping.solids import CAVE
+from pipeflow.pumping.suction import NPSH, NPSH_MARGIN, SUCTION_YIELD
 from pipeflow.rheology.conditions import ARRHENIUS, SOLIDS_LAWS
 from pipeflow.rheology.fitting import AKAIKE
 from pipeflow.rheology.instruments import KRIEGER_MARON, RABINOWITSCH
@@ -41,6 +53,18 @@ OPERABILITY = (
 )  # fmt: skip
 
 FLOW_CURVES = (RABINOWITSCH, KRIEGER_MARON, BAGLEY, MOONEY_SLIP, TAYLOR, AKAIKE, ARRHENIUS, SOLIDS_LAWS)
+PUMPS = (
+    INTERPOLATION, AFFINITY, TRIM, HI_VISCOSITY, HI_NPSH, APPARENT_FOR_HEAD, DIFFERENTIAL_FOR_EFFICIENCY,
+    TWICE_THE_SPEED, OUTLET_PASSAGE, CAVE, SLIP, GAP_SLIP, ACCELERATION, NPSH, NPSH_MARGIN, SUCTION_YIELD, STANDARD_MOTORS,
+)  # fmt: skip
+PUMPED = {
+    AFFINITY: "water",
+    TRIM: "water",
+    HI_VISCOSITY: "Newtonian liquids; slurries as an estimate",
+    HI_NPSH: "Newtonian liquids; slurries as an estimate",
+    CAVE: "settling solids in water",
+    GAP_SLIP: "power-law fluids",
+}
 
 
 @dataclass(frozen=True)
@@ -89,6 +113,7 @@ def method_sections() -> tuple[Section, ...]:
             "Deposition of solids", "methods.deposition", tuple(Choice(f.source, SLURRIES) for f in FORMULAS.values())
         ),
         Section("Other checks", "", tuple(Choice(source) for source in OPERABILITY)),
+        Section("Pumps", "", tuple(Choice(source, PUMPED.get(source, "any fluid")) for source in PUMPS)),
         Section("Flow curves, solids and temperature", "", tuple(Choice(source) for source in FLOW_CURVES)),
     )
 
