@@ -1,6 +1,7 @@
 """The size command as its user meets it."""
 
 import json
+import shutil
 import subprocess
 import sys
 from pathlib import Path
@@ -41,6 +42,8 @@ def test_a_page_of_80_columns(arguments):
 
 
 def test_no_size_passes(tmp_path):
+    for curve in CASE.parent.glob("thickener-underflow-pump-*.csv"):
+        shutil.copy(curve, tmp_path)
     path = tmp_path / "tight.yaml"
     path.write_text(CASE.read_text(encoding="utf-8").replace("head_loss: 32 m", "head_loss: 0.1 m"), encoding="utf-8")
     run = size(path, "--json")
