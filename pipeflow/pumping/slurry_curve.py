@@ -48,6 +48,8 @@ Status = Literal["as measured", "corrected", "refused"]
 
 TEST_WATER = 1.75e-6
 """Highest kinematic viscosity of the clean cold water a pump is tested on, m²/s (ISO 9906, from memory)."""
+SLOW_RATE = 100.0
+"""Shear rate, 1/s, low for a pump, at which a pump without a speed asks whether a fluid is as thin as water."""
 ESTABLISHED_SHARE = 0.4
 """Share of the best-efficiency flow below which a corrected head is not established."""
 VENDOR_MUST_CONFIRM = (
@@ -148,6 +150,8 @@ class SlurryCurve:
         """Why there are no figures in this slurry; empty where there are."""
         if not self._is_viscous:
             return ""
+        if np.isnan(self._speed):
+            return "its speed is not given, and the slurry is thicker than water: it cannot be corrected"
         if self.water.best_flow is None:
             return (
                 "the curve has no efficiency column, so its best-efficiency flow is not known, and the slurry is "
@@ -286,7 +290,8 @@ class SlurryCurve:
 
     def _viscosity(self, one: Array) -> EquivalentViscosity:
         """The two viscosities at flows of one pump."""
-        rate = twice_the_speed(self._speed) if self.outlet is None else passage_rate(one, self.outlet)
+        by_speed = SLOW_RATE if np.isnan(self._speed) else twice_the_speed(self._speed)
+        rate = by_speed if self.outlet is None else passage_rate(one, self.outlet)
         return equivalent_viscosity(self.rheology, self.density, np.broadcast_to(rate, np.shape(one)))
 
     def _b(self, kinematic_viscosity: Array) -> Array:
@@ -360,7 +365,7 @@ def slurry_curve(
     water : WaterCurve
         Of one pump; one without a speed is taken as measured at the running speed.
     speed : float
-        Running speed, rad/s.
+        Running speed, rad/s; nan where it is not known, and then only liquids as thin as water are pumped.
     density : float
         Of the slurry, kg/m³.
     rheology : Rheology

@@ -153,6 +153,14 @@ def test_without_an_efficiency_only_thin_liquids_are_pumped():
     assert thick.values_in_range == {}
 
 
+def test_without_a_speed_only_thin_liquids_are_pumped():
+    unknown = invented(speed=None)
+    assert slurry_curve(unknown, np.nan, 1000.0, WATER).status == "as measured"
+    thick = slurry_curve(unknown, np.nan, DENSITY, THICK)
+    assert "speed is not given" in thick.refusal
+    assert np.isnan(thick.state(FLOW).head).all()
+
+
 def test_solids_alone_and_with_viscosity():
     """The lower factor of the two, never the product."""
     ratio = float(cave(0.2e-3, 2.65, 0.3))
