@@ -50,6 +50,14 @@ def rheology_answers(case: Case, line: LineFlow, flows: tuple[float, ...]) -> Rh
     return RheologyAnswers(by_law, tuple(_beyond(case, line, other, flows)), tested[1], method)
 
 
+def beyond_tested(case: Case, line: LineFlow, flows: tuple[float, ...]) -> RheologyAnswers:
+    """Tell where the shear rates are far beyond those tested, without another law solved: enough for the checks."""
+    tested = case.tested_shear_rate
+    if tested is None or not is_far(line.pipes.wall_shear_rate, tested):
+        return RheologyAnswers()
+    return RheologyAnswers(beyond=tuple(_beyond(case, line, None, flows)), highest_tested=tested[1])
+
+
 def _solve(case: Case, law: Rheology, flows: tuple[float, ...], methods: tuple[str | None, str | None]) -> LineFlow:
     return route.solve(
         np.array(flows),

@@ -1,0 +1,88 @@
+"""A range of one input as a command line gives it: ``fluid.solids.mass_fraction=0.45..0.58``, ``flow=80..160 m3/h``."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from pipeflow.arrays import Array
+from pipeflow.case.model import Case
+from pipeflow.case.variables import Variable, VariableError, variable
+from pipeflow.errors import InputError, Problem
+from pipeflow.units import NUMBER, accepted, echo
+
+_RANGE = re.compile(rf"({NUMBER})[ ]*(.*?)[ ]*\.\.[ ]*({NUMBER})[ ]*(.*)", re.DOTALL)
+FORM = "PATH=FROM..TO"
+
+
+@dataclass(frozen=True)
+class Axis:
+    """An input and the values it takes, SI, rising."""
+
+    variable: Variable
+    values: tuple[float, ...]
+
+    @property
+    def array(self) -> Array:
+        """The values."""
+        return np.array(self.values)
+
+
+def axis(case: Case, text: str, points: int, command: str) -> Axis:
+    """Read a range of an input, its points evenly spaced.
+
+    Parameters
+    ----------
+    case : Case
+    text : str
+        ``PATH=FROM..TO``; the unit may stand once, at the end.
+    points : int
+    command : str
+        What an error is said to be of.
+
+    Raises
+    ------
+    InputError
+        The text is none, the path cannot be varied, or a value is not possible.
+    """
+    path, sign, ends = (part.strip() for part in text.rpartition("="))
+    if not sign:
+        message = f"found {echo(text)}; an input and its range are needed, {FORM}, as 'flow=80..160 m3/h'"
+        raise InputError([Problem(command, None, None, "", message)])
+    known: Variable | None = None
+    try:
+        known = variable(case, path)
+        low, high = _ends(known, ends)
+    except VariableError as error:
+        raise InputError([Problem(command, None, None, known.path if known else "", str(error))]) from None
+    return Axis(known, tuple(np.linspace(low, high, points).tolist()))
+
+
+def refuse_one_quantity_twice(axes: Sequence[Axis], command: str) -> None:
+    """Refuse two ranges of one input.
+
+    Raises
+    ------
+    InputError
+        An input has two ranges, or both fractions of the solids have one.
+    """
+    paths = [one.variable.path for one in axes]
+    fractions = [path for path in paths if path.startswith("fluid.solids.") and path.endswith("_fraction")]
+    if len(set(paths)) < len(paths) or len(fractions) > 1:
+        message = f"found {' and '.join(paths)}; they are one quantity: vary it once"
+        raise InputError([Problem(command, None, None, "", message)])
+
+
+def _ends(known: Variable, text: str) -> tuple[float, float]:
+    match = _RANGE.fullmatch(text)
+    if match is None:
+        example = f"5 .. 20 {accepted(known.dimension).partition(',')[0]}" if known.dimension else "0.45 .. 0.58"
+        raise VariableError(f"found {echo(text)}; a range is needed, as '{example}'")
+    low, unit, high, last = match.groups()
+    found = known.read(f"{low} {unit or last}".strip()), known.read(f"{high} {last or unit}".strip())
+    if not found[0] < found[1]:
+        raise VariableError(f"found {echo(text)}; the lower end comes first and differs from the upper")
+    return found
