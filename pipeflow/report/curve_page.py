@@ -3,12 +3,22 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
+from dataclasses import replace
 
 import numpy as np
 
 from pipeflow.case.model import FlowRange
 from pipeflow.report.text import heading, paragraph, table
-from pipeflow.study.curve_result import Condition, CurveResult, DutyPoint, PumpOnLine, Ranked, SystemCurve
+from pipeflow.study.curve_result import (
+    Condition,
+    CorrectionResult,
+    CurveResult,
+    DutyPoint,
+    Flush,
+    PumpOnLine,
+    Ranked,
+    SystemCurve,
+)
 from pipeflow.study.ranking import against
 from pipeflow.study.result import SAFETY_NOTICE
 from pipeflow.units import format_value, significant, to_display
@@ -16,6 +26,9 @@ from pipeflow.verdict import Check
 
 ROWS = 14
 """Rows of evenly spaced flows that the page shows of a system curve, beside those stated."""
+DUTY_COLUMNS = (
+    "condition", "flow\nm3/h", "head\nm", "eff.\n%", "shaft\nkW", "of best\nflow %", "NPSH\nhas m", "NPSH\nasks m", "",
+)  # fmt: skip
 MARK = {"ok": "ok", "not checked": "not checked", "caution": "caution", "fail": "FAIL"}
 
 
@@ -66,7 +79,7 @@ def _system(result: CurveResult) -> Iterator[str]:
         rows.append([*row, system.regime[at], _stated(system.flow[at], own.case.flow)])
     yield from table(columns, rows, words=(len(columns) - 2, len(columns) - 1))
     yield ""
-    for text in _boundaries(own):
+    for text in boundaries(own):
         yield paragraph(text, mark="  ")
 
 
@@ -83,7 +96,8 @@ def _stated(flow: float, flows: FlowRange) -> str:
     return names[0] if names else ""
 
 
-def _boundaries(one: Condition) -> Iterator[str]:
+def boundaries(one: Condition) -> Iterator[str]:
+    """Where the regime changes, where solids settle, and where the curve is flat."""
     system = one.system
     if system.laminar_until:
         yield f"Laminar in every pipe up to {format_value(system.laminar_until, 'm3/h')}."
@@ -100,25 +114,16 @@ def _boundaries(one: Condition) -> Iterator[str]:
 def _pump(pump: PumpOnLine, everywhere: Sequence[tuple[Condition, PumpOnLine]]) -> Iterator[str]:
     speed = f", {format_value(pump.speed, 'rpm')}" if pump.speed else ""
     yield paragraph(f"{pump.kind}{speed}")
-    columns = (
-        "condition",
-        "flow\nm3/h",
-        "head\nm",
-        "eff.\n%",
-        "shaft\nkW",
-        "of best\nflow %",
-        "NPSH\nhas m",
-        "NPSH\nasks m",
-        "",
-    )
-    rows = [row for condition, one in everywhere for row in _duties(condition.name, one)]
-    yield from table(columns, rows, words=(0, 8))
+    rows = [row for condition, one in everywhere for row in duty_rows(condition.name, one)]
+    yield from table(DUTY_COLUMNS, rows, words=(0, 8))
     if pump.correction:
-        yield paragraph(_correction(pump), mark="  ")
-    yield from _findings(everywhere)
+        yield paragraph(correction_text(pump.correction), mark="  ")
+    for mark, text in findings(everywhere):
+        yield paragraph(text, mark=f"{mark} " if mark == "!" else f"{mark:<12}")
 
 
-def _duties(condition: str, pump: PumpOnLine) -> Iterator[tuple[str, ...]]:
+def duty_rows(condition: str, pump: PumpOnLine) -> Iterator[tuple[str, ...]]:
+    """Where a pump meets the line in one condition, by the central and the upper figure."""
     worst = next((s for s in ("fail", "caution", "not checked") if any(c.status == s for c in pump.checks)), "ok")
     if pump.duty is None and pump.duty_upper is None:
         yield condition, *("-",) * 7, MARK[worst]
@@ -142,9 +147,8 @@ def _figures(duty: DutyPoint) -> Iterator[str]:
     yield _number(duty.npsh_required, digits=3)
 
 
-def _correction(pump: PumpOnLine) -> str:
-    found = pump.correction
-    assert found is not None
+def correction_text(found: CorrectionResult) -> str:
+    """How a water curve was corrected, and by how much."""
     if found.head_factor is None:
         return found.note or "Not corrected."
     factors = f"head x {found.head_factor:.3f}, flow x {found.flow_factor:.3f}"
@@ -160,8 +164,8 @@ def _correction(pump: PumpOnLine) -> str:
     return f"Corrected by {found.method}: {factors}{viscosities}.{note}"
 
 
-def _findings(everywhere: Sequence[tuple[Condition, PumpOnLine]]) -> Iterator[str]:
-    """Checks that call for thought, and cautions; what several conditions have alike is said once."""
+def findings(everywhere: Sequence[tuple[Condition, PumpOnLine]]) -> Iterator[tuple[str, str]]:
+    """Checks that call for thought, and cautions, with their marks; what several conditions have alike is said once."""
     checks: dict[tuple[str, str, str], list[tuple[str, Check]]] = {}
     cautions: dict[str, list[str]] = {}
     for condition, pump in everywhere:
@@ -171,11 +175,20 @@ def _findings(everywhere: Sequence[tuple[Condition, PumpOnLine]]) -> Iterator[st
         for caution in pump.cautions:
             cautions.setdefault(caution, []).append(condition.name)
     for (status, name, basis), found in checks.items():
-        figures = "; ".join(f"{condition}, {against(check)}" for condition, check in found)
-        yield paragraph(f"{name.replace('_', ' ')}: {figures}. {basis}", mark=f"{MARK[status]:<12}")
+        yield MARK[status], f"{name.replace('_', ' ')}: {_figures_found(found)}; {basis}"
     for caution, names in cautions.items():
         where = "" if len(names) == len(everywhere) else f" ({', '.join(names)})"
-        yield paragraph(f"{caution}{where}", mark="! ")
+        yield "!", f"{caution}{where}"
+
+
+def _figures_found(found: Sequence[tuple[str, Check]]) -> str:
+    """``the case 124 m3/h, thick 111 m3/h, at least 140 m3/h``: figures by condition, a limit they share once."""
+    if len({(check.limit, check.sense) for _, check in found}) > 1:
+        return "; ".join(f"{condition} {against(check)}" for condition, check in found)
+    *before, (last, check) = found
+    return ", ".join(
+        [*(f"{condition} {against(replace(one, limit=None))}" for condition, one in before), f"{last} {against(check)}"]
+    )
 
 
 def _conditions(result: CurveResult) -> Iterator[str]:
@@ -184,27 +197,31 @@ def _conditions(result: CurveResult) -> Iterator[str]:
         return
     yield from heading("Start-up, flush and restart")
     for one, flush in flushes:
-        velocity, volume, time = (
-            significant(flush.velocity, 3),
-            significant(flush.volume, 3),
-            significant(flush.time / 60, 3),
-        )
-        yield paragraph(
-            f"{flush.pump} on {one.name}: {velocity} m/s in the slowest pipe; the line holds {volume} m3, displaced "
-            f"once in {time} min.",
-            mark="- ",
-        )
+        yield paragraph(flush_text(one, flush), mark="- ")
     for one in result.conditions:
         yield from (paragraph(f"{one.name}: {caution}", mark="! ") for caution in one.cautions)
 
 
-def _ranking(ranking: Sequence[Ranked]) -> Iterator[str]:
-    for place, one in enumerate(ranking, 1):
+def flush_text(one: Condition, flush: Flush) -> str:
+    """What one pump makes of the line in one condition."""
+    velocity, volume, time = (significant(each, 3) for each in (flush.velocity, flush.volume, flush.time / 60.0))
+    slowest = f"{flush.pump} on {one.name}: {velocity} m/s in the slowest pipe"
+    return f"{slowest}; the line holds {volume} m3, displaced once in {time} min."
+
+
+def ranking_rows(ranking: Sequence[Ranked]) -> Iterator[tuple[str, tuple[str, ...]]]:
+    """Each candidate in its rank with its verdict, and why it is out."""
+    for one in ranking:
         power = f", {format_value(one.shaft_power, 'kW')} at the shaft" if one.shaft_power else ""
         motor = f", motor {format_value(one.standard_motor, 'kW', 3)}" if one.standard_motor else ""
         verdict = "holds in every condition" if one.holds else "out"
-        yield paragraph(f"{one.name}: {verdict}{power}{motor}", mark=f"{place}. ")
-        yield from (paragraph(reason, mark="   - ") for reason in one.reasons)
+        yield f"{one.name}: {verdict}{power}{motor}", one.reasons
+
+
+def _ranking(ranking: Sequence[Ranked]) -> Iterator[str]:
+    for place, (verdict, reasons) in enumerate(ranking_rows(ranking), 1):
+        yield paragraph(verdict, mark=f"{place}. ")
+        yield from (paragraph(reason, mark="   - ") for reason in reasons)
 
 
 def _number(value: float | None, unit: str = "", digits: int = 4, percent: bool = False) -> str:
