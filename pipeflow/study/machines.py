@@ -59,11 +59,14 @@ def all_on_water(pump: Pump, speed: float | None) -> WaterCurve:
     return in_series(one, pump.number) if pump.arrangement == "series" else in_parallel(one, pump.number)
 
 
-def settled_speeds(pump: Pump, case: Case, demand: Demand) -> tuple[float | None, float | None]:
+def settled_speeds(pump: Pump, case: Case, demand: Demand, *, for_restart: bool) -> tuple[float | None, float | None]:
     """Speeds to run at on the central and the upper system curve, rad/s.
 
-    Where the speed varies it is the one that gives the design flow, or else the end of its range nearest to that.
+    Where the speed varies it is the one that gives the design flow, or else the end of its range nearest to that; the
+    highest to set a line going.
     """
+    if for_restart and pump.speed_maximum is not None:
+        return pump.speed_maximum, pump.speed_maximum
     if pump.speed_minimum is None or pump.speed_maximum is None or case.flow.design <= 0:
         return pump.speed, pump.speed
     heads = demand.at(np.array([case.flow.design]))

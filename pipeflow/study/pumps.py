@@ -49,7 +49,8 @@ class _Candidate:
 
     def on_line(self) -> PumpOnLine:
         """Find where the pump runs, and hold it against what is asked."""
-        speed, speed_upper = settled_speeds(self.pump, self.case, self.demand)
+        is_restart = self.kind == "restart"
+        speed, speed_upper = settled_speeds(self.pump, self.case, self.demand, for_restart=is_restart)
         machine, upper = made(self.pump, self.case, speed), made(self.pump, self.case, speed_upper)
         refusal = self._refusal(machine)
         found = Duties((), refusal) if refusal else self._meets(machine, self.demand.central)
