@@ -40,8 +40,8 @@ OUTLET_PASSAGE = Source(
     citation="after Pullum, Graham & Rudman (2007): 8V/D_h, V = Q/(pi D_2 b_2), D_h = 2 b_2",
     confidence="medium",
     note=(
-        "D_h of a gap of width b_2 between two shrouds, its vanes left out; it follows the flow, so that a slurry with "
-        "a yield stress loses the more head the less flows"
+        "D_h of a gap of width b_2 between two shrouds, its vanes left out; it follows the flow: the less flows, the "
+        "thicker a shear-thinning slurry counts"
     ),
 )
 
