@@ -22,6 +22,7 @@ from pipeflow.units import NUMBER, UnitError, accepted, echo, parse
 
 MAX_BYTES: Final = 2000 * 1024
 MAX_ROWS: Final = 10_000
+MAX_LINE: Final = 20_000
 MAX_PROBLEMS: Final = 50
 SMALLEST, LARGEST = 1e-15, 1e15
 """Sizes of an SI value beyond which the figure is a slip."""
@@ -102,7 +103,7 @@ class _Reader:
     problems: list[Problem] = field(default_factory=list)
 
     def fault(self, line: int | None, column: int | None, name: str, message: str) -> None:
-        self.problems.append(Problem(self.file, line, column, name, message))
+        self.problems.append(Problem(self.file, line, column, echo(name)[1:-1], message))
 
     def refuse(self) -> InputError:
         """Make the error of everything found, in file order, the first :data:`MAX_PROBLEMS` in words."""
@@ -151,6 +152,10 @@ def read_text(
     """Read the text of a CSV file like :func:`read_table`."""
     reader = _Reader(file, refused)
     lines = text.splitlines()
+    if max(map(len, lines), default=0) > MAX_LINE:
+        number = next(number for number, line in enumerate(lines, 1) if len(line) > MAX_LINE)
+        reader.fault(number, 1, "", f"a line of more than {MAX_LINE} characters; a table here needs no such")
+        raise reader.refuse()
     header_line = next((number for number, line in enumerate(lines, 1) if _is_row(line)), None)
     side = dict[str, list[Cell]]()
     for number, line in enumerate(lines[: header_line or len(lines)], 1):

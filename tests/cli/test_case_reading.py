@@ -57,11 +57,29 @@ def refusal(text: str) -> list[str]:
     return [f"{problem.line}:{problem.column} {problem.key_path}" for problem in caught.value.problems]
 
 
+def loaded_by_reading(file: Path, *modules: str) -> list[str]:
+    """Which of these modules the reading of a case brings in."""
+    program = (
+        "import sys, pipeflow.case.loading as loading; loading.load_case(sys.argv[1]); "
+        "print(*sorted(set(sys.argv[2:]) & set(sys.modules)))"
+    )
+    command = [sys.executable, "-c", program, str(file), *modules]
+    return subprocess.run(command, capture_output=True, text=True, check=True).stdout.split()
+
+
+RARE = (
+    "pipeflow.pumping.curve", "pipeflow.case.pumps_part", "pipeflow.case.pump_curves", "pipeflow.case.sizing_part",
+    "pipeflow.case.job_part", "pipeflow.case.wording", "pipeflow.case.tables", "pipeflow.rheology.fitting",
+)  # fmt: skip
+
+
 def test_reading_a_case_brings_in_no_heavy_library() -> None:
-    heavy = "{'scipy', 'matplotlib', 'pint', 'jinja2'} & set(sys.modules)"
-    program = f"import sys, pipeflow.case.loading; print({heavy} or 'none')"
-    done = subprocess.run([sys.executable, "-c", program], capture_output=True, text=True, check=True)
-    assert done.stdout == "none\n"
+    assert loaded_by_reading(HERE / "good.yaml", "scipy", "matplotlib", "pint", "jinja2") == []
+
+
+def test_reading_a_case_brings_in_no_part_of_what_it_does_not_hold() -> None:
+    assert loaded_by_reading(HERE.parents[1] / "cases" / "thin-filtrate.yaml", *RARE) == []
+    assert "pipeflow.pumping.curve" in loaded_by_reading(HERE / "good.yaml", *RARE)
 
 
 def test_a_full_case() -> None:
