@@ -174,6 +174,7 @@ DESCRIPTIONS: Final[dict[str, str]] = {
     "reciprocating": "pistons or plungers, whose strokes jerk the liquid in the suction line",
     "cylinders": "number of pistons or plungers",
     "constant": "constant k of the acceleration head, 1.4 of water without gas to 2.5 of compressible liquids",
+    "uncertainty": "inputs that are not known exactly, by key path, each with its tolerance (docs/uncertainty.md)",
     "scenarios": "named sets of changes by key path, each solved beside the case",
 }
 """By key, or by the place of one."""

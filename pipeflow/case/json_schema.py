@@ -40,6 +40,7 @@ from pipeflow.case.places import EXAMPLES, PARTS_AT, at_place
 from pipeflow.case.rheology_part import RHEOLOGY_PARTS, UnknownModelPart
 from pipeflow.case.route_part import EquipmentPart, PipePart
 from pipeflow.case.schema import MAX_SCENARIOS, CasePart, FlowPart, SitePart
+from pipeflow.case.uncertainty_part import MAX_UNCERTAIN
 from pipeflow.line.catalogue import size_names
 from pipeflow.line.fittings import fittings
 
@@ -86,6 +87,7 @@ class Writer:
         """Write the whole."""
         case = self._map(CasePart)
         case["properties"]["scenarios"] |= self._scenarios()
+        case["properties"]["uncertainty"] |= self._uncertainty()
         about = "the fluid, the flow, the line and what the line must keep to; docs/case-file.md explains every key"
         head = {"$schema": "https://json-schema.org/draft/2020-12/schema", "title": "pipeflow case file"}
         return {**head, **case, "description": about, "$defs": dict(sorted(self.definitions.items()))}
@@ -200,6 +202,19 @@ class Writer:
         properties = {key: {"description": fittings()[key].description, **each} for key in fitting_keys()}
         return {"type": "object", "additionalProperties": False, "properties": properties}
 
+    def _uncertainty(self) -> Schema:
+        number = units.NUMBER
+        forms = rf"(?:(?:±|\+/?-|normal) *{number}.*|uniform *{number} *\.\. *{number}.*)"
+        told = "'± 10 %' or '± 0.5 Pa', 'uniform 8 .. 14 Pa', 'normal 5 %' (a standard deviation)"
+        value = {"type": "string", "title": told, "pattern": rf"^\s*{forms}$"}
+        places = r"^(fluid|flow|source|destination|route|restart)\b"
+        return {
+            "type": "object",
+            "maxProperties": MAX_UNCERTAIN,
+            "propertyNames": {"pattern": places},
+            "additionalProperties": value,
+        }
+
     def _scenarios(self) -> Schema:
         changes: dict[str, list[Schema]] = {}
         patterns: dict[str, list[Schema]] = {
@@ -215,7 +230,7 @@ class Writer:
                 path, is_pattern = _path((*place, key))
                 known = (patterns if is_pattern else changes).setdefault(path, [])
                 known.append({"$ref": f"#/{below}/{key}"})
-        del changes["scenarios"]
+        del changes["scenarios"], changes["uncertainty"]
         return {
             "type": "object",
             "maxProperties": MAX_SCENARIOS,

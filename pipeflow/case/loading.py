@@ -8,8 +8,8 @@ from pathlib import Path
 from pipeflow.case.building import build_case
 from pipeflow.case.checking import examine
 from pipeflow.case.files import printable, read_text_file, refusal
-from pipeflow.case.model import Case
-from pipeflow.case.nodes import Finding, UnreadableError, read_tree
+from pipeflow.case.model import Case, Uncertain
+from pipeflow.case.nodes import Finding, Mapping, Node, UnreadableError, read_tree
 from pipeflow.case.scenarios import read_scenarios
 from pipeflow.errors import InputError, Problem
 
@@ -51,11 +51,22 @@ def load_text(text: str, file: str = "case.yaml") -> Case:
     folder = Path(file).parent
     part, faults = examine(tree, folder)
     scenarios, scenario_faults = read_scenarios(tree, [*notation, *faults], folder)
-    found = [*notation, *faults, *scenario_faults]
-    if found or part is None:
+    case = None if part is None else build_case(part, file)
+    uncertain, uncertain_faults = _uncertainty(tree, case)
+    found = [*notation, *faults, *scenario_faults, *uncertain_faults]
+    if found or case is None:
         raise _input_error(file, found)
-    case = build_case(part, file)
-    return replace(case, scenarios={name: build_case(changed, file) for name, changed in scenarios.items()})
+    built = {name: build_case(changed, file) for name, changed in scenarios.items()}
+    return replace(case, uncertainty=uncertain, scenarios=built)
+
+
+def _uncertainty(tree: Node, case: Case | None) -> tuple[tuple[Uncertain, ...], list[Finding]]:
+    """Read how uncertain the inputs are, where the case says it at all."""
+    if not (isinstance(tree, Mapping) and "uncertainty" in tree.values):
+        return (), []
+    from pipeflow.case.uncertainty_part import read_uncertainty
+
+    return read_uncertainty(tree, case)
 
 
 def _input_error(file: str, findings: list[Finding]) -> InputError:

@@ -240,12 +240,28 @@ class Job:
 
 @dataclass(frozen=True)
 class Uncertain:
-    """An input that is not known exactly: its key path and its distribution in SI."""
+    """An input that is not known exactly, SI.
+
+    Attributes
+    ----------
+    path : str
+        Its key path.
+    kind : str
+        ``rectangular``, any value as likely from ``middle - spread`` to ``middle + spread``, or ``normal``, with
+        ``spread`` for its standard deviation.
+    least, most : float
+        Ends of what is possible; infinite where there is none.
+    text : str
+        As written.
+    """
 
     path: str
     kind: str
-    low: float
-    high: float
+    middle: float
+    spread: float
+    least: float
+    most: float
+    text: str
 
 
 @dataclass(frozen=True)

@@ -131,8 +131,8 @@ def _steps(tree: Node, path: str) -> list[str]:
     """Split a key path; the name of an element is one step, whatever it holds."""
     if len(path) > MAX_PATH:
         raise _PathError("no key path is that long")
-    if path.split(".")[0] == "scenarios":
-        raise _PathError("a scenario cannot change the scenarios")
+    if path.split(".")[0] in ("scenarios", "uncertainty"):
+        raise _PathError(f"a scenario cannot change the {path.split('.')[0]}")
     match = _LIST_STEP.match(path)
     if match is None:
         return path.split(".")

@@ -224,22 +224,20 @@ def _why_not(case: Case, path: str, known: dict[str, Variable]) -> str:
     if path.startswith(("fluid.solids.", "fluid.liquid.")) and case.solids is None:
         return f"{found}; the case gives no solids, 'fluid.solids'"
     if path.split(".")[0] == "flow" and flow_path(case) in known:
-        return f"{found}; the case gives its flow as {flow_path(case)}: {_listed(_near_kin(flow_path(case), known))}"
+        return f"{found}; the case gives its flow as {flow_path(case)}: {', '.join(_near_kin(flow_path(case), known))}"
     near = get_close_matches(path[: units.ECHO_LENGTH * 3], list(known), n=1, cutoff=0.6)
     meant = f"did you mean {near[0]}? " if near else ""
-    return f"{found}; this cannot be varied; {meant}what can: {_offered(known)}"
+    return f"{found}; this cannot be varied; {meant}what can: {_offered(home, known)}"
 
 
 def _near_kin(home: str, known: dict[str, Variable]) -> list[str]:
     return [path for path in known if path == home or path.startswith(f"{home}.")]
 
 
-def _listed(paths: list[str]) -> str:
-    return ", ".join(paths)
-
-
-def _offered(known: dict[str, Variable]) -> str:
-    """List the paths, those of the route by their kinds."""
-    plain = [path for path in known if not path.startswith("route[")]
-    kinds = dict.fromkeys(path.rpartition(".")[2] for path in known if path.startswith("route["))
-    return _listed([*plain, f"route[NAME].{'|'.join(kinds)}"])
+def _offered(home: str, known: dict[str, Variable]) -> str:
+    """List the inputs beside one another in a map, or else the maps that hold some."""
+    keys = [path.rpartition(".")[2] for path in known if path.rpartition(".")[0] == home]
+    if home and keys:
+        return f"{units.echo(home)[1:-1]}.{'|'.join(keys)}"
+    maps = dict.fromkeys("route[NAME]" if path.startswith("route[") else path.partition(".")[0] for path in known)
+    return f"{', '.join(f'{name}.…' if name != 'flow' else name for name in maps)} (docs/uncertainty.md)"

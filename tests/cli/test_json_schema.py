@@ -75,6 +75,15 @@ LEFT_TO_THE_PROGRAM = {
     "135": "a curve that is not there",
     "136": "the name of a pump",
     "137": "a scenario against the case",
+    "140": "a key path",
+    "141": "a key path that is no number",
+    "142": "the unit of a key path",
+    "143": "ends in order",
+    "144": "the value of the case",
+    "145": "a tolerance of nothing",
+    "146": "a tolerance of less",
+    "151": "per cent of zero",
+    "153": "a pipe of the route",
 }
 """What a schema cannot say, or is not asked to, by the number of the spoilt file."""
 NOTATION = {"18", "41", "42", "43", "44", "45", "46", "47", "52", "57", "58"}

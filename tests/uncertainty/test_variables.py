@@ -177,7 +177,7 @@ def test_arrays_of_one_shape_are_solved_as_one_by_one():
         ("route[suction lin].length", "did you mean route[suction line].length?"),
         ("route[suction line].size", "a size is a name, no number: vary route[suction line].diameter"),
         ("flow.dry_solids", "the case gives its flow as flow: flow, flow.minimum, flow.design, flow.maximum"),
-        ("limits.head_loss", "what can: fluid.density, "),
+        ("limits.head_loss", "what can: fluid.…, flow, source.…, destination.…, route[NAME].…, restart.…"),
         ("", "this cannot be varied"),
     ],
 )
