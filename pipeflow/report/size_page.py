@@ -40,8 +40,8 @@ def _page(result: SizingResult) -> Iterator[str]:
     over = result.series or "a free bore"
     yield paragraph(f"Sizing of {', '.join(result.pipes)} over {over}.")
     yield from heading(f"Sizes at design flow, {format_value(case.flow.design, 'volume flow')}; head loss at maximum")
-    near = _near(result)
-    yield from table(COLUMNS, [_row(one) for one in near], words=(0, 8, 9))
+    near = near_sizes(result)
+    yield from table(COLUMNS, [candidate_row(one) for one in near], words=(0, 8, 9))
     extras = [extra for extra in EXTRAS if any(getattr(one, extra[0]) is not None for one in near)]
     if extras:
         yield ""
@@ -57,7 +57,8 @@ def _page(result: SizingResult) -> Iterator[str]:
     yield paragraph(SAFETY_NOTICE)
 
 
-def _row(one: Candidate) -> tuple[str, ...]:
+def candidate_row(one: Candidate) -> tuple[str, ...]:
+    """One size: what it loses and how it runs."""
     verdict = "FAIL" if not one.passes else "caution" if one.cautions else "ok"
     return (
         one.size,
@@ -79,45 +80,48 @@ def _number(value: float | None, unit: str, digits: int = 4) -> str:
     return significant(to_display(value, unit) if unit else value, digits)
 
 
-def _near(result: SizingResult) -> list[Candidate]:
+def near_sizes(result: SizingResult) -> list[Candidate]:
     """Give the sizes that pass, or the nearest, and a few on either side."""
     shown_for = [one for one in result.candidates if one.passes or one is result.nearest]
     places = [result.candidates.index(one) for one in shown_for]
     return list(result.candidates[max(min(places, default=0) - BESIDE, 0) : max(places, default=0) + BESIDE + 1])
 
 
+def failing_sizes(result: SizingResult) -> Iterator[tuple[str, str]]:
+    """The sizes shown that fail, and why."""
+    for one in near_sizes(result):
+        if not one.passes:
+            yield one.size, "; ".join(one.fails).replace("_", " ")
+
+
 def _reasons(result: SizingResult) -> Iterator[str]:
-    failing = [one for one in _near(result) if not one.passes]
-    if not failing:
-        yield "None does."
-    for one in failing:
-        yield paragraph("; ".join(one.fails).replace("_", " "), mark=f"{one.size}: ")
+    failing = [paragraph(why, mark=f"{size}: ") for size, why in failing_sizes(result)]
+    yield from failing or ["None does."]
 
 
 def _choice(result: SizingResult) -> Iterator[str]:
+    for mark, text in choice_texts(result):
+        yield paragraph(text, mark=mark)
+
+
+def choice_texts(result: SizingResult) -> Iterator[tuple[str, str]]:
+    """Which size to choose, what it costs to be wrong by one, what to mind, each with its mark."""
     if result.selected is None:
         near = result.nearest
-        yield (
-            paragraph(f"None passes. Nearest is {near.size}, blocked by {'; '.join(near.fails).replace('_', ' ')}.")
-            if near
-            else ""
-        )
+        if near:
+            yield "", f"None passes. Nearest is {near.size}, blocked by {'; '.join(near.fails).replace('_', ' ')}."
     else:
-        yield paragraph(f"{result.selected.size}, the smallest that passes.")
-        yield from _neighbours(result, result.selected)
-        for caution in result.selected.cautions:
-            yield paragraph(caution.replace("_", " "), mark="! ")
+        yield "", f"{result.selected.size}, the smallest that passes."
+        yield from (("- ", text) for text in _neighbours(result, result.selected))
+        yield from (("! ", caution.replace("_", " ")) for caution in result.selected.cautions)
     if result.economy:
         economy = result.economy
         equal = ", ".join(name for name in economy.equal if name != economy.size)
         near_by = f"; within 5 % of it: {equal}" if equal else ""
-        yield paragraph(
-            f"Cheapest of those that pass: {economy.size}, {significant(economy.cost_per_year)} a year{near_by}."
-        )
+        yield "", f"Cheapest of those that pass: {economy.size}, {significant(economy.cost_per_year)} a year{near_by}."
         if economy.without_price:
-            yield paragraph(f"No price is given for {', '.join(economy.without_price)}.")
-    for note in result.notes:
-        yield paragraph(note.replace("_", " "), mark="- ")
+            yield "", f"No price is given for {', '.join(economy.without_price)}."
+    yield from (("- ", note.replace("_", " ")) for note in result.notes)
 
 
 def _neighbours(result: SizingResult, selected: Candidate) -> Iterator[str]:
@@ -133,7 +137,7 @@ def _neighbours(result: SizingResult, selected: Candidate) -> Iterator[str]:
             if other.cost_per_year and selected.cost_per_year:
                 cost = f", {other.cost_per_year / selected.cost_per_year - 1.0:+.0%} a year"
             passes = "passes" if other.passes else "fails"
-            yield paragraph(f"One size {word}, {other.size}{change}{cost}; it {passes}.", mark="- ")
+            yield f"One size {word}, {other.size}{change}{cost}; it {passes}."
 
 
 def answer_page(answer: Answer) -> str:
