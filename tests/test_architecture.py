@@ -52,7 +52,7 @@ MAY_IMPORT: dict[str, tuple[str, ...]] = {
         "rheology",
         "units",
     ),
-    "record": ("record", "study", "case", "sizing", "line.route", *INPUTS),
+    "record": ("record", "study", "case", "units", "sizing", "operability", "line", *INPUTS),
     "report": ("report", "record", "study", "case.model", "units", "friction.turbulent", *INPUTS),
     "cli": ("cli", "report", "record", "study", "case"),
 }
