@@ -23,7 +23,9 @@ def rerun(
         bool, typer.Option("--accept", help="Write the records: these figures are the basis now.")
     ] = False,
     tolerance: Annotated[str, typer.Option(metavar="PERCENT", help="What moves by less has not moved.")] = "0.1%",
-    since: Annotated[str, typer.Option(metavar="REV", help="Compare with the cases of a git revision instead.")] = "",
+    since: Annotated[
+        str | None, typer.Option(metavar="REV", help="Compare with the cases of a git revision instead.")
+    ] = None,
     as_json: Annotated[bool, typer.Option("--json", help="Print one JSON document a line, SI units.")] = False,
 ) -> None:
     """Solve cases again: what moved against their stored records, by how much, and which input moved it.
@@ -36,7 +38,7 @@ def rerun(
 
     try:
         options = Options(_fraction(tolerance), accept)
-        if accept and since:
+        if accept and since is not None:
             raise _refused("--accept", "writes records, and --since compares without them; give one of the two")
         found = find_cases(paths)
         runs, gone = _run(found.cases, paths, since, options)
@@ -63,13 +65,13 @@ def _fraction(text: str) -> float:
 
 
 def _run(
-    cases: Sequence[str], paths: Sequence[str], since: str, options: Options
+    cases: Sequence[str], paths: Sequence[str], since: str | None, options: Options
 ) -> tuple[list[Rerun], tuple[str, ...]]:
     from pipeflow.record.many import each
     from pipeflow.record.rerun import rerun as rerun_one
     from pipeflow.record.rerun import rerun_since
 
-    if not since:
+    if since is None:
         return list(_watched(each(partial(rerun_one, options=options), cases), len(cases))), ()
     from pathlib import Path
 

@@ -163,5 +163,6 @@ def _solved(line: Line) -> Array:
         critical=line.methods.critical,
         fittings=line.methods.fittings,
         particle_size=line.particle_size,
+        with_edges=False,
     )
     return np.stack([getattr(flow, name) for name in NAMES], axis=-1)

@@ -84,6 +84,8 @@ class Rerun:
         What the user must be told beside the figures: reasons, records written or kept.
     moved : bool
         Something moved by more than the tolerance, or a check fails that did not.
+    inputs_changed : bool
+        By their digest.
     comparison : Comparison or None
     explanations : dict of str to Explanation
         Of each line whose totals moved, by its scenario; the case itself is the empty name.
@@ -103,6 +105,7 @@ class Rerun:
     title: str = ""
     moved: bool = False
     accepted: bool = False
+    inputs_changed: bool = False
     comparison: Comparison | None = None
     explanations: dict[str, Explanation] = field(default_factory=dict)
     unexplained: dict[str, str] = field(default_factory=dict)
@@ -130,6 +133,7 @@ class _Before:
     """What a case is held against; ``program`` is empty where the present one solved it."""
 
     inputs: Json
+    digest: str
     results: Document
     program: dict[str, str]
 
@@ -180,7 +184,7 @@ def rerun_since(file: str, past: Mapping[str, str | None], revision: str, option
     except InputError as refused:
         why = "; ".join(str(replace(problem, file=revision)) for problem in refused.problems)
         return _alone(file, now, "unusable record", f"as it was, the case can't be read: {why}")
-    return _compared(file, now, _Before(then.inputs, then.results, {}), options)
+    return _compared(file, now, _Before(then.inputs, then.digest, then.results, {}), options)
 
 
 def _present(file: str) -> Record:
@@ -196,7 +200,7 @@ def _against_record(file: str, now: Record, options: Options) -> Rerun:
         return _alone(file, now, "unusable record", f"the record can't be used: {why}")
     if record is None:
         return _alone(file, now, "no record", "no record yet: pipeflow rerun --accept writes it")
-    return _compared(file, now, _Before(record.inputs, record.results, record.program), options)
+    return _compared(file, now, _Before(record.inputs, record.digest, record.results, record.program), options)
 
 
 def _alone(file: str, now: Record, outcome: Outcome, why: str) -> Rerun:
@@ -223,6 +227,7 @@ def _compared(file: str, now: Record, before: _Before, options: Options) -> Reru
         "compared",
         title=str(now.results["title"]),
         moved=comparison.is_beyond(options.tolerance),
+        inputs_changed=before.digest != now.digest,
         comparison=comparison,
         explanations=explanations,
         unexplained=unexplained,

@@ -178,14 +178,16 @@ def _replace(path: Path, text: str) -> None:
         with os.fdopen(handle, "w", encoding="utf-8", newline="\n") as file:
             file.write(text)
             file.flush()
-            os.fchmod(file.fileno(), mode)
             os.fsync(file.fileno())
+        temporary.chmod(mode)
         temporary.replace(path)
-    folder = os.open(path.parent, os.O_RDONLY)
-    try:
-        os.fsync(folder)
-    finally:
-        os.close(folder)
+    # the record is in place; that its name outlives a power failure is a matter of the system from here on
+    with contextlib.suppress(OSError):
+        folder = os.open(path.parent, os.O_RDONLY)
+        try:
+            os.fsync(folder)
+        finally:
+            os.close(folder)
 
 
 def _mode(path: Path) -> int:

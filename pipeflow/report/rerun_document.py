@@ -19,6 +19,7 @@ def rerun_document(found: Rerun, tolerance: float) -> dict[str, Any]:
         "outcome": found.outcome,
         "said": list(found.said),
         "moved": found.moved,
+        "inputs_changed": found.inputs_changed,
         "accepted": found.accepted,
         "tolerance": tolerance,
         "fails": list(found.fails),

@@ -121,6 +121,8 @@ def _headline(found: Rerun, *said: str) -> str:
 def _beside(found: Rerun) -> Iterator[str]:
     """What is said of a case beside its figures."""
     yield from found.said
+    if found.inputs_changed and not found.moved and not found.without_effect:
+        yield "inputs changed, within the tolerance"
     if found.without_effect:
         yield f"changed, no effect on head: {', '.join(found.without_effect)}"
 

@@ -1,7 +1,8 @@
 """The parts of a change add up to it, are those worked out by hand, and fall to the inputs that changed."""
 
+import inspect
 import math
-from dataclasses import replace
+from dataclasses import fields, replace
 from itertools import permutations
 
 import numpy as np
@@ -10,10 +11,11 @@ from hypothesis import given, settings
 from making import CHANGES, case_of
 
 from pipeflow.case.loading import load_text
+from pipeflow.line import route
 from pipeflow.line.elements import Equipment, Fluid, Pipe, Vessel
 from pipeflow.record.comparison import TOTALS
 from pipeflow.record.explanation import PROGRAM, explain
-from pipeflow.record.mixes import Line, Transition, line_of, totals
+from pipeflow.record.mixes import KINDS_OF_PIPE, Line, Transition, line_of, totals
 from pipeflow.rheology import Bingham, Newtonian
 from pipeflow.study import solve
 
@@ -124,12 +126,12 @@ def test_a_route_that_is_built_differently_changes_as_one():
 
 
 @pytest.mark.parametrize(
-    "route",
+    "elements",
     [PIPES[::-1], (replace(PIPES[0], name="renamed"), *PIPES[1:]), PIPES[:1], (Equipment("a", 1e3), *PIPES[1:])],
     ids=["reordered", "renamed", "removed", "of another kind"],
 )
-def test_what_counts_as_the_route(route):
-    found, _ = change_between(LINE, replace(LINE, route=route))
+def test_what_counts_as_the_route(elements):
+    found, _ = change_between(LINE, replace(LINE, route=elements))
     assert found.groups == ("route", PROGRAM)
 
 
@@ -189,6 +191,15 @@ def test_many_mixed_lines_at_once_are_each_line_by_itself():
     lines = [transition.mixed(frozenset().union(*transition.groups()[:count])) for count in range(10)]
     each = np.concatenate([totals([line]) for line in lines])
     assert totals(lines) == pytest.approx(each, rel=1e-11)
+
+
+def test_every_input_of_a_solved_line_is_in_a_group():
+    """A new one that reaches the totals must be given a group, else its part would go to the program."""
+    given_to_solve = {*inspect.signature(route.solve).parameters} - {"with_edges"}
+    of_line = {field.name for field in fields(Line)} - {"methods"} | {"turbulent", "critical", "fittings"}
+    assert given_to_solve == of_line
+    assert {field.name for field in fields(Fluid)} == {"density", "rheology"}
+    assert {field.name for field in fields(Pipe)} == {"name", *KINDS_OF_PIPE}
 
 
 def test_a_mixture_without_an_answer_is_no_explanation():
