@@ -11,6 +11,7 @@ from collections.abc import Callable
 from dataclasses import dataclass, replace
 
 import numpy as np
+from numpy.typing import NDArray
 
 from pipeflow.arrays import Array, FloatOrArray
 from pipeflow.constants import STANDARD_GRAVITY
@@ -34,20 +35,20 @@ class Solids:
 
     Parameters
     ----------
-    size : float
+    size : float or array
         m.
-    relative_density : float
+    relative_density : float or array
         Of the solids to the liquid.
-    volume_fraction : float
+    volume_fraction : float or array
         Of all solids in the slurry.
-    viscosity : float
+    viscosity : float or array
         Kinematic, of the liquid, m²/s.
     """
 
-    size: float
-    relative_density: float
-    volume_fraction: float
-    viscosity: float
+    size: FloatOrArray
+    relative_density: FloatOrArray
+    volume_fraction: FloatOrArray
+    viscosity: FloatOrArray
 
 
 def durand(diameter: FloatOrArray, solids: Solids) -> Array:
@@ -78,8 +79,8 @@ def thomas(diameter: FloatOrArray, solids: Solids) -> Array:
     return np.asarray(9.0 * (STANDARD_GRAVITY * nu * _excess(solids)) ** 0.37 * (np.asarray(diameter) / nu) ** 0.11)
 
 
-def _excess(solids: Solids) -> float:
-    return max(solids.relative_density - 1.0, 0.0)
+def _excess(solids: Solids) -> Array:
+    return np.maximum(np.asarray(solids.relative_density) - 1.0, 0.0)
 
 
 @dataclass(frozen=True)
@@ -135,7 +136,21 @@ FORMULAS = {
 }
 
 
-def default_formula(size: float, viscosity: float, friction_velocity: float) -> str:
+def _is_in_sublayer(size: FloatOrArray, viscosity: FloatOrArray, friction_velocity: FloatOrArray) -> NDArray[np.bool_]:
+    return np.asarray(np.asarray(size) * friction_velocity < SUBLAYER * np.asarray(viscosity))
+
+
+def deposition_velocity(
+    diameter: FloatOrArray, solids: Solids, friction_velocity: FloatOrArray, formula: str | None = None
+) -> Array:
+    """Deposition velocity [m/s] by one of :data:`FORMULAS`, or by the default one of each element; all broadcast."""
+    if formula is not None:
+        return FORMULAS[formula].velocity(diameter, solids)
+    inside = _is_in_sublayer(solids.size, solids.viscosity, friction_velocity)
+    return np.where(inside, thomas(diameter, solids), oroskar_turian(diameter, solids))
+
+
+def default_formula(size: FloatOrArray, viscosity: FloatOrArray, friction_velocity: float) -> str:
     """Choose a formula: Thomas for particles inside the viscous sublayer ``5 nu/u*``, else Oroskar & Turian.
 
     Parameters
@@ -147,7 +162,7 @@ def default_formula(size: float, viscosity: float, friction_velocity: float) -> 
     friction_velocity : float
         ``u* = sqrt(tau_w/rho)``, m/s.
     """
-    inside = size * friction_velocity < SUBLAYER * viscosity
+    inside = bool(_is_in_sublayer(size, viscosity, friction_velocity))
     return "thomas-sublayer" if inside else "oroskar-turian"
 
 

@@ -47,6 +47,26 @@ def yield_pressure(
     return np.asarray((along + np.asarray(laminar_resistance) / 16.0) * static_yield_stress)
 
 
+def demand_along(yielding: Array, weight_of_rise: Array, at_end: FloatOrArray) -> Array:
+    """Gauge pressure asked for at the start of each pipe of a stopped line to move it, and at its end, Pa.
+
+    From the end backwards; a crest asks for no less than the atmosphere.
+
+    Parameters
+    ----------
+    yielding, weight_of_rise : Array
+        Pressure that yields the contents of each pipe, and ``rho g`` times its rise, Pa; the last axis is that of the
+        pipes in flow order.
+    at_end : float or Array
+        Pressure at the end of the line, Pa, of the shape before that axis.
+    """
+    own = np.asarray(yielding + weight_of_rise)
+    demand = [np.broadcast_to(np.asarray(at_end, dtype=np.float64), own.shape[:-1])]
+    for pipe in reversed(range(own.shape[-1])):
+        demand.append(np.maximum(demand[-1] + own[..., pipe], 0.0))
+    return np.stack(demand[::-1], axis=-1)
+
+
 @dataclass(frozen=True)
 class Stopped:
     """A stopped line.
@@ -87,10 +107,10 @@ class Stopped:
         """
         weight = state.density * STANDARD_GRAVITY
         last = state.destination
-        demand = [float(last.pressure + weight * np.asarray(last.head_of_level))]
-        for pipe, yielding in zip(reversed(state.pipes), reversed(self.yielding(state)), strict=True):
-            demand.append(max(demand[-1] + float(yielding) + weight * float(pipe.rise), 0.0))
-        return np.array(demand[::-1])
+        rise = np.array([pipe.rise for pipe in state.pipes], dtype=np.float64)
+        return demand_along(
+            self.yielding(state), weight * rise, last.pressure + weight * np.asarray(last.head_of_level)
+        )
 
     def required(self, state: LineState) -> float:
         """Pressure the pump must add to restart the full line, Pa."""
