@@ -10,10 +10,11 @@ import numpy as np
 from numpy.typing import NDArray
 
 from pipeflow.arrays import Array, FloatOrArray
-from pipeflow.friction.methods import FAMILY, LEFT_OUT_OF_FAMILY, TURBULENT
+from pipeflow.friction.methods import FAMILY, LEFT_OUT_OF_FAMILY, TURBULENT, turbulent_method
 from pipeflow.friction.solver import PipeFlow, Regime, solve_pipes
 from pipeflow.friction.turbulent import TurbulentMethod
 from pipeflow.rheology import Rheology
+from pipeflow.rootfind import take
 
 
 @dataclass(frozen=True, eq=False)
@@ -44,10 +45,14 @@ def method_spread(
     *,
     roughness: FloatOrArray = 0.0,
     particle_size: FloatOrArray = np.nan,
+    method: str | None = None,
     critical: str | None = None,
 ) -> Spread:
-    """Solve the pipes that ``central`` found past laminar flow by every method of the family; same arguments."""
-    shape = central.status.shape
+    """Solve the pipes that ``central`` found past laminar flow by every method of the family.
+
+    Arguments as those that gave ``central``, whose own method is not solved again.
+    """
+    shape, flat = central.status.shape, _flat(central)
     past = np.flatnonzero(central.regime > Regime.LAMINAR)
     arguments = {
         "velocity": velocity,
@@ -58,28 +63,35 @@ def method_spread(
     }
     picked = {key: _pick(value, shape, past) for key, value in arguments.items()}
     fluid = _pick_rheology(rheology, shape, past)
+    own = turbulent_method(rheology, method)
     upper = central.wall_shear_stress.copy()
     by_method, left_out = {}, _never_in_family(rheology)
-    for method in FAMILY if rheology.key != "newtonian" else ():
-        key = method.source.key
-        if rheology.key not in method.models:
+    for each in FAMILY if rheology.key != "newtonian" else ():
+        key = each.source.key
+        if rheology.key not in each.models:
             continue
-        if method.needs_particle_size and np.all(np.isnan(particle_size)):
+        if each.needs_particle_size and np.all(np.isnan(particle_size)):
             left_out[key] = "it needs the d85 of the solids"
             continue
         stress = central.wall_shear_stress.copy()
         by_method[key] = stress
         if not past.size:
             continue
-        found = solve_pipes(**picked, rheology=fluid, method=key, critical=critical)  # type: ignore[arg-type]
-        inside = _within_index_range(method, rheology, found.local_flow_index)
+        found = (
+            take(flat, past) if each is own else solve_pipes(**picked, rheology=fluid, method=key, critical=critical)  # type: ignore[arg-type]
+        )
+        inside = _within_index_range(each, rheology, found.local_flow_index)
         stress.flat[past] = np.where(inside, found.wall_shear_stress, np.nan)
         upper = np.fmax(upper, stress)
         if not inside.all():
-            left_out[key] = f"it holds for {method.source.ranges[0]}"
+            left_out[key] = f"it holds for {each.source.ranges[0]}"
         elif np.isnan(found.wall_shear_stress).any():
             left_out[key] = "it has no answer in some pipe"
     return Spread(np.where(np.isnan(central.wall_shear_stress), np.nan, upper), by_method, left_out)
+
+
+def _flat(flow: PipeFlow) -> PipeFlow:
+    return PipeFlow(*(getattr(flow, field.name).reshape(-1) for field in fields(PipeFlow)))
 
 
 def _never_in_family(rheology: Rheology) -> dict[str, str]:

@@ -115,7 +115,7 @@ def solve(
     roughness = side_by_side([pipe.roughness for pipe in pipes])
     given: dict[str, Any] = {"roughness": roughness, "particle_size": _last_axis(particle_size), "critical": critical}
     solved = solve_pipes(velocity, diameter, density, rheology, method=turbulent, with_edges=with_edges, **given)
-    spread = method_spread(solved, velocity, diameter, density, rheology, **given)
+    spread = method_spread(solved, velocity, diameter, density, rheology, method=turbulent, **given)
 
     gradient_length = 4.0 * side_by_side([pipe.length for pipe in pipes]) / diameter
     friction, friction_upper = solved.wall_shear_stress * gradient_length, spread.upper * gradient_length
