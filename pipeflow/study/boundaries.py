@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Final, Literal, Protocol
 
 import numpy as np
+from numpy.typing import NDArray
 
 from pipeflow.arrays import Array
 from pipeflow.rootfind import find_root
@@ -17,6 +18,7 @@ Figure = Literal["central", "upper"]
 Key = tuple[str, Figure]
 """Name of what is asked, and the figure it is judged on: the limit on the upper one, the window's end on either."""
 
+FIGURES: Final[tuple[Figure, ...]] = ("central", "upper")
 JUMP: Final = 1.0
 """Stands for how far beyond a limit a point is where its figure does not say."""
 
@@ -76,6 +78,10 @@ class Crossings:
             return x + share * (float(self.x[i + 1]) - x), y
         return x, y + share * (float(self.y[j + 1]) - y)
 
+    def joined(self, other: Crossings) -> Crossings:
+        """The crossings of two fields over one grid."""
+        return replace(self, excess=self.excess | other.excess, roots=self.roots | other.roots)
+
     def boundaries(self) -> tuple[Boundary, ...]:
         """Every boundary; an upper one that is the central one over again is left out."""
         drawn = (key for key in self.excess if key[1] == "central" or not self._is_alike(key[0]))
@@ -87,10 +93,12 @@ class Crossings:
         return central is not None and bool(np.all(central == self.excess[name, "upper"]))
 
     def _lines(self, key: Key) -> tuple[tuple[tuple[float, float], ...], ...]:
-        return tuple(tuple(self.place(key, edge) for edge in chain) for chain in chains(self.excess[key] > 0))
+        every = chains(self.excess[key] > 0)
+        lines = (tuple(self.place(key, edge) for edge in chain if edge in self.roots[key]) for chain in every)
+        return tuple(line for line in lines if line)
 
 
-def crossings(field: Field, x: Array, y: Array) -> Crossings:
+def crossings(field: Field, x: Array, y: Array, *, along_rows: bool = False) -> Crossings:
     """Ask a field on a grid, and find every place between two of its points where a limit is met.
 
     Parameters
@@ -98,10 +106,12 @@ def crossings(field: Field, x: Array, y: Array) -> Crossings:
     field : Field
     x, y : Array
         Rising; what changes twice between two neighbours is not seen.
+    along_rows : bool
+        Look between rows for what no row crosses only: for a field that is dear to ask at another y.
     """
     columns, rows = np.meshgrid(x, y)
     excess = {key: found.reshape(rows.shape) for key, found in field.excess(columns.ravel(), rows.ravel()).items()}
-    asked = [(key, edge) for key, found in excess.items() for edge in crossed_edges(found > 0)]
+    asked = [(key, edge) for key, found in excess.items() for edge in _edges(found > 0, along_rows)]
     shares = _roots(field, x, y, excess, asked)
     roots: dict[Key, dict[Edge, float]] = {key: {} for key in excess}
     for (key, edge), share in zip(asked, shares, strict=True):
@@ -109,9 +119,13 @@ def crossings(field: Field, x: Array, y: Array) -> Crossings:
     return Crossings(x, y, excess, roots)
 
 
-def _roots(
-    field: Field, x: Array, y: Array, excess: Mapping[Key, Array], asked: Sequence[tuple[Key, Edge]]
-) -> Array:
+def _edges(beyond: NDArray[np.bool_], along_rows: bool) -> list[Edge]:
+    every = crossed_edges(beyond)
+    along = [edge for edge in every if edge[0] == 1]
+    return along if along_rows and along else every
+
+
+def _roots(field: Field, x: Array, y: Array, excess: Mapping[Key, Array], asked: Sequence[tuple[Key, Edge]]) -> Array:
     """Share of each edge at which its figure meets its limit."""
     if not asked:
         return np.empty(0)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass
 from typing import Final
 
@@ -10,7 +10,9 @@ import numpy as np
 
 from pipeflow.arrays import Array
 from pipeflow.case.model import Case
+from pipeflow.case.varying import varied
 from pipeflow.study.boundaries import JUMP, Key, excess_of
+from pipeflow.study.checks import dynamic_yield_stress
 from pipeflow.study.flows import DESIGN, line_at, pipes_of
 from pipeflow.study.points import Points, points
 from pipeflow.verdict import Check
@@ -20,19 +22,21 @@ REGIMES: Final = (LAMINAR, TURBULENT)
 """Names of the edges of the transition, which are no limits."""
 
 
+Place = Callable[[Array, Array], tuple[dict[str, Array], Array | None]]
+"""Values of inputs by key path, and the flow outright or None, at points of a plane."""
+
+
 @dataclass(frozen=True)
 class LimitsOver:
-    """Limits over two inputs, by their key paths; an empty path is the flow outright, minimum and maximum alike."""
+    """Limits over a plane, whose points stand for what ``place`` makes of them."""
 
     case: Case
-    across: str
-    up: str
+    place: Place
 
     def solved(self, x: Array, y: Array) -> Points:
         """The case at points of the plane."""
-        if not self.across:
-            return points(self.case, {self.up: y}, flow=x)
-        return points(self.case, {self.across: x, self.up: y})
+        values, flow = self.place(x, y)
+        return points(self.case, values, flow=flow)
 
     def excess(self, x: Array, y: Array) -> dict[Key, Array]:
         """How far each figure is beyond its limit, and the governing pipe beyond the edges of its transition."""
@@ -59,6 +63,16 @@ def excess_of_checks(checked: Iterable[Iterable[Check]]) -> dict[Key, Array]:
              for found in checked]  # fmt: skip
     keys = dict.fromkeys(key for one in every for key in one)
     return {key: np.array([one.get(key, -JUMP) for one in every]) for key in keys}
+
+
+def with_static_yield_stress(case: Case, path: str, values: Array) -> dict[str, Array]:
+    """The values of an input, and the static yield stress of the case in proportion to the dynamic one they make."""
+    given = {path: values}
+    stress, static = dynamic_yield_stress(case), case.restart.static_yield_stress
+    if static is not None and stress > 0:
+        law = varied(case, given).fluid.rheology
+        given["restart.static_yield_stress"] = np.asarray(getattr(law, "yield_stress", stress)) * static / stress
+    return given
 
 
 def governing_pipe(case: Case) -> int | None:

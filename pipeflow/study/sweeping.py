@@ -121,7 +121,7 @@ def sweep(case: Case, axes: Sequence[Axis]) -> Sweep:
     solved = points(case, values)
     every = tuple(_point(solved, index, tuple(float(each[index]) for each in values.values()))
                   for index in range(mesh[0].size))  # fmt: skip
-    return Sweep(case, tuple(axes), every, tuple(_cautions(case, every, axes)))
+    return Sweep(case, tuple(axes), every, tuple(_cautions(solved, case, axes)))
 
 
 def solids_sweep(case: Case) -> Sweep | None:
@@ -177,14 +177,16 @@ def _regime(regimes: Array) -> str:
     return names.pop() if len(names) == 1 else "mixed" if names else "no flow"
 
 
-def _cautions(case: Case, every: Sequence[SweptPoint], axes: Sequence[Axis]) -> Iterator[str]:
-    if any(point.is_carried_on for point in every):
-        first = next(one.law for one in case.followed if one.is_carried_on or one.law)
-        shown = " .. ".join(shown_condition(first.variable, end) for end in first.tested)
-        yield f"the rheology is carried on past {first.variable} tested, {shown}, at some points: a guess there"
+def _cautions(solved: Points, case: Case, axes: Sequence[Axis]) -> Iterator[str]:
+    carried = {one.law.variable: one.law.tested for each in solved.cases for one in each.followed if one.is_carried_on}
+    for name, tested in carried.items():
+        shown = " .. ".join(shown_condition(name, end) for end in tested)
+        yield f"the rheology is carried on past the {name} tested, {shown}, at some points: a guess there"
     paths = {axis.variable.path for axis in axes}
     if "flow" in paths and not case.flow.minimum == case.flow.design == case.flow.maximum:
         yield "the minimum and maximum flow, at which limits are judged, vary in proportion to the design flow"
     follows = any(one.law.variable == "solids" for one in case.followed)
     if any(path.endswith(("mass_fraction", "volume_fraction")) for path in paths) and not follows:
-        yield "the rheology of this case does not follow the solids: density and settling change, the flow curve does not"
+        yield "the rheology of this case does not follow the solids: only density and settling change with them"
+    if "fluid.rheology.yield_stress" in paths and case.restart.static_yield_stress is not None:
+        yield "the static yield stress that the case gives for a restart stays as it is"

@@ -1,0 +1,298 @@
+"""The duty envelope: where, over flow and solids or yield stress, a line keeps every limit, and what ends it."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass, replace
+from typing import Final, Literal
+
+import numpy as np
+from numpy.typing import NDArray
+
+from pipeflow.arrays import Array
+from pipeflow.case.axes import Axis
+from pipeflow.case.model import Case
+from pipeflow.case.variables import Variable, variable, variables
+from pipeflow.errors import InputError, Problem
+from pipeflow.operability.energy import specific_energy
+from pipeflow.study.boundaries import Boundary, Crossings, Figure, Key, crossings
+from pipeflow.study.flows import DESIGN, pipes_of
+from pipeflow.study.limits_over import REGIMES, LimitsOver, governing_pipe, with_static_yield_stress
+from pipeflow.study.points import case_at
+from pipeflow.study.pumps_over import PUMPS, PumpsOver, is_candidate
+from pipeflow.study.sweeping import SOLIDS
+from pipeflow.verdict import Check
+
+COLUMNS, ROWS = 41, 17
+FLOWS: Final = (0.4, 1.6)
+"""Ends of the flow, as shares of the minimum and the maximum of the case."""
+STRESSES: Final = (0.5, 2.0)
+"""Ends of a parameter of the rheology, as shares of that of the case."""
+Standing = Literal["inside", "central", "outside"]
+
+
+@dataclass(frozen=True)
+class Interval:
+    """Flows, m³/s, between which every limit is kept; what ends them, empty where the map does."""
+
+    low: float
+    high: float
+    low_by: str
+    high_by: str
+
+
+@dataclass(frozen=True)
+class WindowAt:
+    """The flows of the window at one value of the other input: by the upper figure, and by the central one alone."""
+
+    value: float
+    upper: tuple[Interval, ...]
+    central: tuple[Interval, ...]
+
+
+@dataclass(frozen=True)
+class Stated:
+    """The limit a boundary stands for; ``limit`` is None where it is not one number all over the map."""
+
+    limit: float | None
+    unit: str
+    sense: str
+
+
+@dataclass(frozen=True)
+class Envelope:
+    """Where a line may be operated.
+
+    Attributes
+    ----------
+    flow : Axis
+        Volume flow of the slurry, minimum and maximum alike, m³/s.
+    up : Axis
+        The other input; the value of the case is among them.
+    boundaries : tuple of Boundary
+        Of the limits, of what each pump gives, and of the regime of the governing pipe.
+    limits : dict of str to Stated
+        What the boundaries of limits stand for.
+    window : tuple of tuple of str
+        By value and flow: ``inside``, ``central`` where a limit is kept by the central figure alone, or ``outside``.
+    energy : tuple of tuple of float
+        By value and flow: kWh for a tonne of dry solids (of slurry, without solids) and a kilometre, losses only.
+    rows : tuple of WindowAt
+        The window at every value.
+    governing_pipe : str
+        The pipe that loses most, whose transition is drawn; empty without pipes.
+    cautions : tuple of str
+    """
+
+    case: Case
+    flow: Axis
+    up: Axis
+    boundaries: tuple[Boundary, ...]
+    limits: dict[str, Stated]
+    window: tuple[tuple[Standing, ...], ...]
+    energy: tuple[tuple[float, ...], ...]
+    rows: tuple[WindowAt, ...]
+    governing_pipe: str
+    cautions: tuple[str, ...]
+
+    @property
+    def own(self) -> WindowAt:
+        """The window at the value that the case has."""
+        here = self.up.variable.value
+        return min(self.rows, key=lambda row: abs(row.value - here))
+
+    @property
+    def holds(self) -> bool:
+        """Whether the flows of the case, at its own value, lie within the window by the central figure at least."""
+        asked = self.case.flow
+        slack = 1e-9 * asked.maximum
+        return any(one.low <= asked.minimum + slack and asked.maximum <= one.high + slack for one in self.own.central)
+
+    def case_at(self, flow: float, value: float) -> Case:
+        """The case that a point of the map stands for."""
+        given = with_static_yield_stress(self.case, self.up.variable.path, np.asarray(value))
+        return case_at(self.case, {path: float(one) for path, one in given.items()}, flow)
+
+
+def up_variable(case: Case) -> Variable:
+    """What the flow is set against: solids where the rheology follows them, else the yield stress.
+
+    A rheology without a yield stress has its consistency or viscosity in its place.
+    """
+    if case.solids is not None and any(one.law.variable == "solids" for one in case.followed):
+        return variable(case, SOLIDS)
+    stress = variables(case).get("fluid.rheology.yield_stress")
+    if stress is not None and stress.value > 0:
+        return stress
+    return next(one for path, one in variables(case).items() if path.startswith("fluid.rheology.") and one.value > 0)
+
+
+def default_ends(case: Case, up: Variable) -> tuple[float, float]:
+    """Ends of the other input: the range tested of solids, else from half to twice that of the case."""
+    laws = [one.law for one in case.followed if one.law.variable == "solids"]
+    if up.path == SOLIDS and laws:
+        return max(law.tested[0] for law in laws), min(law.tested[1] for law in laws)
+    return up.value * STRESSES[0], up.value * STRESSES[1]
+
+
+def envelope(case: Case, flow: tuple[float, float] | None = None, up: Axis | None = None) -> Envelope:
+    """Draw the duty envelope of a case.
+
+    Parameters
+    ----------
+    case : Case
+    flow : tuple of float, optional
+        Ends of the volume flow, m³/s; by default from 0.4 of the minimum to 1.6 of the maximum of the case.
+    up : Axis, optional
+        The other input; by default what the rheology follows.
+
+    Raises
+    ------
+    InputError
+        The case has no flow.
+    """
+    if case.flow.maximum <= 0:
+        raise InputError([Problem(case.file, None, None, "flow", "a line at rest has no envelope; give a flow")])
+    up = up or _axis_of(case)
+    low, high = flow or (FLOWS[0] * (case.flow.minimum or case.flow.maximum), FLOWS[1] * case.flow.maximum)
+    across = np.unique(np.append(np.linspace(low, high, COLUMNS), [one for one in _flows(case) if low < one < high]))
+    path = up.variable.path
+    limits = LimitsOver(case, lambda x, y: (with_static_yield_stress(case, path, y), x))
+    found = crossings(limits, across, up.array)
+    if case.pumps:
+        found = found.joined(crossings(PumpsOver(case, path), across, up.array, along_rows=True))
+    pipe = governing_pipe(case)
+    return Envelope(
+        case=case,
+        flow=Axis(replace(_flow_variable(case), value=case.flow.design), tuple(across.tolist())),
+        up=up,
+        boundaries=tuple(one for one in found.boundaries() if one.name != PUMPS),
+        limits=dict(_limits(limits, across, up.array)),
+        window=_window(found),
+        energy=tuple(map(tuple, _energy(limits, across, up.array).tolist())),
+        rows=tuple(_rows(found)),
+        governing_pipe="" if pipe is None else pipes_of(case)[pipe].name,
+        cautions=tuple(_cautions(case, up)),
+    )
+
+
+def _flow_variable(case: Case) -> Variable:
+    return Variable("flow", "volume flow", case.flow.design)
+
+
+def _flows(case: Case) -> tuple[float, ...]:
+    return case.flow.minimum, case.flow.design, case.flow.maximum
+
+
+def _axis_of(case: Case) -> Axis:
+    found = up_variable(case)
+    return through(found, *default_ends(case, found))
+
+
+def through(up: Variable, low: float, high: float) -> Axis:
+    """Values between two ends, evenly spaced, and that of the case where it is among them."""
+    every = np.linspace(low, high, ROWS)
+    if low < up.value < high:
+        every = np.unique(np.append(every[np.abs(every - up.value) > 1e-9 * (high - low)], up.value))
+    return Axis(up, tuple(every.tolist()))
+
+
+def _energy(limits: LimitsOver, flow: Array, up: Array) -> Array:
+    """Energy in kWh for a tonne and a kilometre, of shape (up, flow)."""
+    x, y = np.meshgrid(flow, up)
+    solved = limits.solved(x.ravel(), y.ravel())
+    length = sum(float(pipe.length) for pipe in pipes_of(limits.case))
+    density = np.array([float(case.fluid.density) for case in solved.cases])
+    share = np.array([case.solids.mass_fraction if case.solids else 1.0 for case in solved.cases])
+    loss = solved.line.pressure_loss_upper[:, DESIGN]
+    with np.errstate(all="ignore"):
+        return specific_energy(loss, length or np.nan, density, share).reshape(x.shape)
+
+
+def _counted(found: Crossings, figure: Figure) -> list[Key]:
+    """What the window rests on: every limit, and that some pump serves."""
+    return [key for key in found.excess if key[1] == figure and key[0] not in REGIMES and not is_candidate(key[0])]
+
+
+def _beyond(found: Crossings, figure: Figure) -> NDArray[np.bool_]:
+    shape = (found.y.size, found.x.size)
+    every = [found.excess[key] > 0 for key in _counted(found, figure)]
+    return np.asarray(np.any([*every, np.zeros(shape, dtype=bool)], axis=0))
+
+
+def _window(found: Crossings) -> tuple[tuple[Standing, ...], ...]:
+    central, upper = _beyond(found, "central"), _beyond(found, "upper")
+    names = np.where(central, "outside", np.where(upper, "central", "inside"))
+    return tuple(map(tuple, names.tolist()))
+
+
+def _rows(found: Crossings) -> Iterator[WindowAt]:
+    upper, central = _beyond(found, "upper"), _beyond(found, "central")
+    for j, value in enumerate(found.y):
+        yield WindowAt(
+            float(value),
+            tuple(_intervals(found, "upper", upper[j], j)),
+            tuple(_intervals(found, "central", central[j], j)),
+        )
+
+
+def _intervals(found: Crossings, figure: Figure, beyond: NDArray[np.bool_], j: int) -> Iterator[Interval]:
+    """Flows of a row where nothing is beyond its limit, each end the root of the limit that comes last or first."""
+    low: tuple[float, str] | None = None if beyond[0] else (float(found.x[0]), "")
+    for i in range(found.x.size - 1):
+        if beyond[i] == beyond[i + 1]:
+            continue
+        ends = [
+            (found.place(key, (1, j, i))[0], key[0])
+            for key in _counted(found, figure)
+            if (1, j, i) in found.roots[key] and (found.excess[key][j, i] > 0) == beyond[i]
+        ]
+        if beyond[i]:
+            low = max(ends)
+        elif low is not None:
+            yield Interval(low[0], min(ends)[0], low[1], min(ends)[1])
+            low = None
+    if low is not None:
+        yield Interval(low[0], float(found.x[-1]), low[1], "")
+
+
+def _limits(over: LimitsOver, flow: Array, up: Array) -> Iterator[tuple[str, Stated]]:
+    """The limit of each check, from the corners of the map."""
+    x, y = np.array([flow[0], flow[-1], flow[0], flow[-1]]), np.array([up[0], up[0], up[-1], up[-1]])
+    solved = over.solved(x, y)
+    every: dict[str, list[Check]] = {}
+    for index in range(x.size):
+        for check in solved.checks(index):
+            every.setdefault(check.name, []).append(check)
+    for name, found in every.items():
+        limits = [check.limit for check in found if check.limit is not None]
+        is_one = bool(limits) and np.ptp(limits) <= 1e-9 * abs(limits[0])
+        yield name, Stated(limits[0] if is_one else None, found[0].unit, found[0].sense)
+
+
+def _cautions(case: Case, up: Axis) -> Iterator[str]:
+    path = up.variable.path
+    stress = float(getattr(case.fluid.rheology, "yield_stress", 0.0))
+    if case.restart.static_yield_stress is not None and stress > 0:
+        yield "the static yield stress that the case gives is taken in proportion to the dynamic one over the map"
+    laws = [one.law for one in case.followed if one.law.variable == "solids"]
+    if path == SOLIDS and any(not law.holds(np.array(up.values)) for law in laws):
+        yield "the map goes past the solids tested: the rheology there is a guess"
+    if path == SOLIDS and not laws:
+        yield "the rheology of this case does not follow the solids: only density and settling change with them"
+    yield from _about_pumps(case)
+
+
+def _about_pumps(case: Case) -> Iterator[str]:
+    if case.pumps:
+        yield "pumps at their highest speed, throttled below that; the vendor must confirm head and NPSH in this slurry"
+    fixed = [pump.name for pump in case.pumps if pump.kind != "centrifugal" and pump.speed_maximum is None]
+    if fixed:
+        yield f"{', '.join(fixed)}: one speed gives one flow; less takes another speed or a bypass"
+
+
+def flow_ends(axes: Sequence[Axis]) -> tuple[tuple[float, float] | None, Axis | None]:
+    """Ends of the flow, and the other input, of those given."""
+    flow = next(((axis.values[0], axis.values[-1]) for axis in axes if axis.variable.path == "flow"), None)
+    other = next((axis for axis in axes if axis.variable.path != "flow"), None)
+    return flow, None if other is None else through(other.variable, other.values[0], other.values[-1])
