@@ -17,11 +17,6 @@ from pipeflow.study.result import MethodUse
 from pipeflow.study.solving import solve
 from pipeflow.study.system_curve import flows_of_interest, system_curve
 
-VENDOR = (
-    "The corrected curves are estimates: the correction of ANSI/HI 9.6.7 is made for Newtonian liquids and excludes "
-    "slurries. The vendor of the pump must confirm head, power and NPSH for this slurry."
-)
-
 
 def curve(case: Case) -> CurveResult:
     """Draw the system curves of a case and set its pumps on them.
@@ -44,9 +39,17 @@ def curve(case: Case) -> CurveResult:
         envelope_low=low,
         envelope_high=high,
         ranking=ranked(found),
-        cautions=(VENDOR,) if case.pumps else (),
+        cautions=_cautions(case),
         methods=tuple(_methods(found)),
     )
+
+
+def _cautions(case: Case) -> tuple[str, ...]:
+    if not case.pumps:
+        return ()
+    from pipeflow.pumping.slurry_curve import VENDOR_MUST_CONFIRM
+
+    return (VENDOR_MUST_CONFIRM,)
 
 
 def _condition(name: str, kind: Kind, case: Case, flow: Array) -> Condition:

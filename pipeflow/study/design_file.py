@@ -4,11 +4,11 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from pipeflow.case.model import Case, Limits
+from pipeflow.case.model import Case
+from pipeflow.errors import InputError
 from pipeflow.study.assumed import AssumedInput, assumed_inputs
 from pipeflow.study.curve import curve
 from pipeflow.study.curve_result import CurveResult
-from pipeflow.study.flows import pipes_of
 from pipeflow.study.result import Result
 from pipeflow.study.sizing import SizingResult, size
 from pipeflow.study.solving import solve
@@ -19,12 +19,13 @@ from pipeflow.verdict import Check
 class DesignFile:
     """A case solved, its system curves with the pumps, its sizes, and what rests on assumed inputs.
 
-    ``sizing`` is None where the case says no limits or no sizes to try.
+    ``sizing`` is None where no size can be tried; ``why_not_sized`` then says what the case lacks.
     """
 
     result: Result
     curve: CurveResult
     sizing: SizingResult | None
+    why_not_sized: str
     assumed: tuple[AssumedInput, ...]
 
     @property
@@ -52,11 +53,12 @@ class DesignFile:
 
 def design_file(case: Case) -> DesignFile:
     """Work a case out for its page."""
-    return DesignFile(solve(case), curve(case), _sizing(case), assumed_inputs(case))
+    sizing, why_not = _sizing(case)
+    return DesignFile(solve(case), curve(case), sizing, why_not, assumed_inputs(case))
 
 
-def _sizing(case: Case) -> SizingResult | None:
-    has_limits = any(one.limits != Limits() for one in (case, *case.scenarios.values()))
-    if not has_limits or not pipes_of(case):
-        return None
-    return size(case)
+def _sizing(case: Case) -> tuple[SizingResult | None, str]:
+    try:
+        return size(case), ""
+    except InputError as refused:
+        return None, "; ".join(f"{problem.key_path}: {problem.message}" for problem in refused.problems)

@@ -14,11 +14,14 @@ from pipeflow.pumping.equivalent import Outlet
 from pipeflow.pumping.slurry_curve import SlurryCurve, slurry_curve
 from pipeflow.pumping.solids import PumpedSolids
 from pipeflow.pumping.speed import TOO_FAST, speed_for
+from pipeflow.rheology import Newtonian
 from pipeflow.study.checks import carrier_density
 from pipeflow.study.demand import Demand
 
 Machine = SlurryCurve | DisplacementPump
 CENTRIFUGAL = "centrifugal"
+RATE_IN_GAPS = 1e4
+"""Order of the shear rates in the gaps of a positive-displacement pump, 1/s (common practice)."""
 
 
 def made(pump: Pump, case: Case, speed: float | None) -> Machine:
@@ -110,8 +113,25 @@ def _of_displacement(pump: Pump, case: Case, speed: float | None) -> Displacemen
         npsh,
         curve_speed=pump.curve_speed,
         speed=speed,
+        slip_factor=_slip_factor(pump, case),
         parallel=pump.number,
     )
+
+
+def _slip_factor(pump: Pump, case: Case) -> float:
+    """Slip over that of the curve: as the viscosities of Newtonian liquids; of others as measured."""
+    law = case.fluid.rheology
+    if pump.test_viscosity is None or not isinstance(law, Newtonian):
+        return 1.0
+    return pump.test_viscosity / float(law.viscosity)
+
+
+def thinner_than_tested(pump: Pump, case: Case) -> bool:
+    """Whether a liquid that is not Newtonian is thinner, at the rates of narrow gaps, than that of the curve."""
+    law = case.fluid.rheology
+    if pump.test_viscosity is None or isinstance(law, Newtonian):
+        return False
+    return bool(law.apparent_viscosity(RATE_IN_GAPS) < pump.test_viscosity)
 
 
 def _cut(pump: Pump) -> float:

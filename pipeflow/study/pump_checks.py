@@ -109,12 +109,18 @@ def torque_check(pump: Pump, torque: float | None) -> Check | None:
     return at_most("torque", torque, torque, pump.torque_limit, "N.m", "at the highest pressure of a duty")
 
 
-def restart_check(required: float, credit: float | None, basis: str) -> Check:
-    """Hold the head that sets the line going against what the pump may be credited with, m."""
+def restart_check(required: float, credit: float | None, basis: str, *, is_established: bool) -> Check:
+    """Hold the head that sets the line going against what the pump may give, m.
+
+    Where the head at low flow is not established the check is a caution at best.
+    """
     said = f"to set the full line going, the factor in it; {basis}; local codes and a licensed engineer settle how"
     if credit is None:
         return not_checked("restart_head", ("efficiency of the curve",), "m", said, required)
-    return at_most("restart_head", required, required, credit, "m", said)
+    found = at_most("restart_head", required, required, credit, "m", said)
+    if found.status == "ok" and not is_established:
+        return replace(found, status="caution", basis=f"{said}; not established there, the vendor must confirm it")
+    return found
 
 
 def relief_checks(pump: Pump, restart: float | None, allowed: float | None) -> Iterator[Check]:

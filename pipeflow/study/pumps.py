@@ -24,7 +24,16 @@ from pipeflow.study.conditions import restart_pressure
 from pipeflow.study.curve_result import CorrectionResult, DrawnCurve, DutyPoint, Kind, PumpOnLine
 from pipeflow.study.demand import Demand
 from pipeflow.study.flows import pipes_of, pump_position
-from pipeflow.study.machines import CENTRIFUGAL, Machine, all_on_water, at_low_flow, made, settled_speeds, water_curve
+from pipeflow.study.machines import (
+    CENTRIFUGAL,
+    Machine,
+    all_on_water,
+    at_low_flow,
+    made,
+    settled_speeds,
+    thinner_than_tested,
+    water_curve,
+)
 from pipeflow.study.result import MethodUse
 from pipeflow.units import format_value
 from pipeflow.verdict import Check
@@ -167,12 +176,13 @@ class _Candidate:
         if pressure is None:
             return
         if isinstance(machine, DisplacementPump):
-            limit = self.pump.relief_pressure
-            basis = "against the relief setting"
-            yield pump_checks.restart_check(pressure / weight, None if limit is None else limit / weight, basis)
-            return
-        basis = "against 80 % of the least corrected head from 0 to 40 % of best-efficiency flow"
-        yield pump_checks.restart_check(pressure / weight, _credit(at_low_flow(machine)), basis)
+            limit, basis = self.pump.relief_pressure, "against the relief setting"
+            credit = None if limit is None else limit / weight
+        else:
+            basis = "against 80 % of the least corrected head from 0 to 40 % of best-efficiency flow"
+            credit = _credit(at_low_flow(machine))
+        established = isinstance(machine, DisplacementPump) or machine.method == "none"
+        yield pump_checks.restart_check(pressure / weight, credit, basis, is_established=established)
 
     def _cautions(self, machine: Machine, duty: DutyPoint | None, found: Duties, upper: Duties) -> Iterator[str]:
         if self.kind == "restart":
@@ -190,6 +200,8 @@ class _Candidate:
             yield f"it gives more than maximum flow, {format_value(flows.maximum, 'm3/h')}: throttle, trim or slow it"
         if isinstance(machine, DisplacementPump):
             yield DEAD_HEAD
+            if thinner_than_tested(self.pump, self.case):
+                yield "what flows may be thinner in the gaps than the liquid of the curve: more slips, and less flows"
             return
         yield from (fault.message for fault in faults(water_curve(self.pump)) if fault.is_caution)
         for source in machine.sources:

@@ -281,3 +281,24 @@ def test_files_are_written_and_refused(tmp_path):
     assert nowhere.exit_code == 2
     assert "can't be written" in nowhere.stderr
     assert nowhere.stdout == ""
+
+
+def test_a_restart_on_a_head_not_established_is_a_caution_at_best(tmp_path):
+    """A pump of plenty of head at low flow in the slurry; on water the same figure would be sure."""
+    rows = [(0, 90, 1, 2), (60, 80, 50, 2), (110, 62, 70, 3), (160, 30, 64, 4)]
+    check = check_of(by_name(curve(load_case(line_with(tmp_path, rows=rows))), "restart after a stop"), "restart_head")
+    assert check.value < check.limit
+    assert check.status == "caution"
+    assert "vendor must confirm" in check.basis
+
+
+def test_slip_of_a_newtonian_liquid_goes_with_its_viscosity(tmp_path):
+    """Twice as thin as the liquid of the curve: twice the slip at one pressure."""
+    rows = ((0, 100, 60), (600, 96, 66), (1200, 92, 62))
+    fluid = "{density: 1000 kg/m3, rheology: {model: newtonian, viscosity: 50 mPa.s}}"
+    flows = []
+    for more in ("relief_pressure: 900 kPa", "relief_pressure: 900 kPa\ntest_viscosity: 100 mPa.s"):
+        path = line_with(tmp_path, fluid, kind="positive-displacement", rows=rows, speed="200 rpm", more=more)
+        duty = by_name(curve(load_case(path))).duty
+        flows.append((100 / 3600 - duty.flow) / (duty.head * 1000 * GRAVITY))
+    assert flows[1] == pytest.approx(2 * flows[0], rel=1e-3)
