@@ -12,6 +12,7 @@ from io import TextIOWrapper
 
 import typer
 
+from pipeflow.cli import new as new  # isort: skip
 from pipeflow.cli import solve as solve  # isort: skip
 from pipeflow.cli import fit as fit  # isort: skip
 from pipeflow.cli import size as size  # isort: skip
