@@ -29,6 +29,7 @@ ROWS = 14
 DUTY_COLUMNS = (
     "condition", "flow\nm3/h", "head\nm", "eff.\n%", "shaft\nkW", "of best\nflow %", "NPSH\nhas m", "NPSH\nasks m", "",
 )  # fmt: skip
+GRAVEST_FIRST = ("fail", "caution", "not checked")
 MARK = {"ok": "ok", "not checked": "not checked", "caution": "caution", "fail": "FAIL"}
 
 
@@ -154,6 +155,8 @@ def correction_text(found: CorrectionResult) -> str:
     factors = f"head x {found.head_factor:.3f}, flow x {found.flow_factor:.3f}"
     if found.efficiency_factor is not None:
         factors += f", efficiency x {found.efficiency_factor:.3f}"
+    if found.efficiency_factor_for_motor is not None and found.efficiency_factor_for_motor != found.efficiency_factor:
+        factors += f" (x {found.efficiency_factor_for_motor:.3f} by tau/gamma, which the motor covers)"
     viscosities = ""
     if found.viscosity_head is not None and found.viscosity_efficiency is not None:
         head, efficiency = (format_value(v, "mPa.s") for v in (found.viscosity_head, found.viscosity_efficiency))
@@ -174,9 +177,12 @@ def findings(everywhere: Sequence[tuple[Condition, PumpOnLine]]) -> Iterator[tup
                 checks.setdefault((check.status, check.name, check.basis), []).append((condition.name, check))
         for caution in pump.cautions:
             cautions.setdefault(caution, []).append(condition.name)
-    for (status, name, basis), found in checks.items():
+    for (status, name, basis), found in sorted(checks.items(), key=lambda item: GRAVEST_FIRST.index(item[0][0])):
         yield MARK[status], f"{name.replace('_', ' ')}: {_figures_found(found)}; {basis}"
+    said = " ".join(basis for _, _, basis in checks)
     for caution, names in cautions.items():
+        if caution in said:
+            continue
         where = "" if len(names) == len(everywhere) else f" ({', '.join(names)})"
         yield "!", f"{caution}{where}"
 

@@ -66,15 +66,23 @@ def restart_pressure(case: Case) -> float | None:
 
 
 def hardest_restart(case: Case) -> Case | None:
-    """Of case and scenarios the one whose gel asks for most, with the static yield stress and its factor."""
+    """Of case and scenarios the one whose gel asks for most, with the static yield stress and its factor.
+
+    A law without a yield stress of its own among its parameters is kept as it is.
+    """
     asked = [(pressure, one) for one in (case, *case.scenarios.values()) if (pressure := restart_pressure(one))]
     if not asked:
         return None
     hardest = max(asked, key=lambda pair: pair[0])[1]
-    stopped, law = stopped_line(hardest), hardest.fluid.rheology
-    if stopped is None or "yield_stress" not in {field.name for field in fields(law)}:  # type: ignore[arg-type]
-        return None
+    stopped = stopped_line(hardest)
+    if stopped is None or not is_gelled(hardest):
+        return replace(hardest, scenarios={})
     parameters: dict[str, Any] = {"yield_stress": stopped.factor * stopped.static_yield_stress}
-    gelled = replace(law, **parameters)  # type: ignore[type-var]
+    gelled = replace(hardest.fluid.rheology, **parameters)  # type: ignore[type-var]
     rested = replace(hardest.restart, static_yield_stress=stopped.static_yield_stress, factor=stopped.factor)
     return replace(hardest, fluid=replace(hardest.fluid, rheology=gelled), restart=rested, scenarios={})
+
+
+def is_gelled(case: Case) -> bool:
+    """Whether the law of a case can take the static yield stress for its own."""
+    return "yield_stress" in {field.name for field in fields(case.fluid.rheology)}  # type: ignore[arg-type]

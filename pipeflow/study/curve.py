@@ -9,7 +9,7 @@ import numpy as np
 
 from pipeflow.arrays import Array
 from pipeflow.case.model import Case
-from pipeflow.study.conditions import conditions
+from pipeflow.study.conditions import conditions, is_gelled
 from pipeflow.study.curve_result import Condition, CurveResult, Flush, Kind, PumpOnLine
 from pipeflow.study.flows import pipes_of
 from pipeflow.study.ranking import ranked
@@ -59,14 +59,14 @@ def _condition(name: str, kind: Kind, case: Case, flow: Array) -> Condition:
 
         pumps = pumps_on_line(case, kind)
     flushes = tuple(_flushes(case, pumps)) if kind == "water" else ()
-    return Condition(name, kind, case, system_curve(case, flow), pumps, flushes, tuple(_about(kind)))
+    return Condition(name, kind, case, system_curve(case, flow), pumps, flushes, tuple(_about(kind, case)))
 
 
-def _about(kind: Kind) -> Iterator[str]:
-    if kind == "water":
-        yield "at start-up, flush and test the line is full of water: a pump that runs out past its curve is throttled"
-    elif kind == "restart":
+def _about(kind: Kind, case: Case) -> Iterator[str]:
+    if kind == "restart" and is_gelled(case):
         yield "the gel unbroken at every flow, which only its first figure is sure of: as the line moves, it thins"
+    elif kind == "restart":
+        yield "the curve is that of the moving slurry; the head that sets the line going is held against in the check"
 
 
 def _envelope(conditions: Sequence[Condition]) -> tuple[tuple[float, ...], tuple[float, ...]]:

@@ -91,10 +91,10 @@ def needs_of_npsh(case: Case) -> dict[str, bool]:
     return {"site": atmospheric_pressure(case) is not None, "fluid.liquid.vapour_pressure": vapour}
 
 
-def npsh_check(available: float | None, asked: float, flow: float, needs: tuple[str, ...]) -> Check:
+def npsh_check(available: float | None, asked: float, needs: tuple[str, ...]) -> Check:
     """Hold NPSH available against what is asked for with its margin, m, at the highest flow and the lowest level."""
     basis = (
-        f"at the inlet at {format_si(flow, 'm3/s')} and the lowest level, upper figure, against NPSH required + "
+        "at the inlet, the higher of duty and maximum flow, lowest level, upper figure, against NPSH required + "
         "max(1 m, 0.3 of it) (common practice)"
     )
     if needs or available is None:

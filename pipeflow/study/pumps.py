@@ -161,7 +161,7 @@ class _Candidate:
             flow = self.case.flow.maximum
             required = _known(machine.state(np.array([flow])).npsh_required) or required
         available = self._npsh_available(machine, flow)
-        return pump_checks.npsh_check(available, float(npsh_asked(required)), flow, needs)
+        return pump_checks.npsh_check(available, float(npsh_asked(required)), needs)
 
     def _torque(self, machine: Machine, both: list[DutyPoint]) -> Check | None:
         if not isinstance(machine, DisplacementPump):
