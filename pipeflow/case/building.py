@@ -26,7 +26,7 @@ from pipeflow.case.model import (
     Sizing,
     Solids,
 )
-from pipeflow.case.part import ASSUMED, InputPart
+from pipeflow.case.part import ASSUMED, InputPart, Part
 from pipeflow.case.route_part import EquipmentPart, PipePart, PumpPlacePart
 from pipeflow.case.schema import CasePart, FlowPart, VesselPart, pump_place
 from pipeflow.line.catalogue import INCH, MATERIALS
@@ -35,6 +35,7 @@ from pipeflow.operability.pressures import WallInputs
 from pipeflow.rheology import mixture
 
 if TYPE_CHECKING:
+    from pipeflow.case.job_part import JobPart
     from pipeflow.case.pumps_part import PumpPart
     from pipeflow.case.sizing_part import CostPart, SizingPart
 
@@ -59,7 +60,7 @@ def build_case(part: CasePart, file: str) -> Case:
         restart=Restart(**_inputs(part.restart)) if part.restart else Restart(),
         pipe_wall=WallInputs(**_inputs(part.pipe_wall)) if part.pipe_wall else None,
         sizing=_sizing(part.sizing) if part.sizing else Sizing(),
-        methods=Methods(**part.methods.model_dump()),
+        methods=Methods(**_inputs(part.methods)),
         sizes={pipe.pipe: pipe.size.name for pipe in pipes if pipe.size},
         default_roughness={pipe.pipe: _material(pipe) for pipe in pipes if pipe.roughness is None},
         tested_shear_rate=rheology.tested,
@@ -70,7 +71,7 @@ def build_case(part: CasePart, file: str) -> Case:
         pumps=tuple(_pump(pump) for pump in part.pumps),
         pump_place=pump_place(part.route),
         lowest_level=part.source.lowest_level if part.source else None,
-        job=Job(**part.job.model_dump(exclude_none=True)) if part.job else Job(),
+        job=_job(part.job),
         solids=solids,
         liquid=_liquid(part.fluid, solids),
         site=Site(**_inputs(part.site)) if part.site else None,
@@ -84,8 +85,14 @@ def build_case(part: CasePart, file: str) -> Case:
     )
 
 
-def _inputs(part: InputPart) -> dict[str, Any]:
-    return part.model_dump(exclude={"status"})
+def _inputs(part: Part, *apart: str) -> dict[str, Any]:
+    """Give what a map says, but for its status and the keys that are read apart."""
+    return {key: value for key, value in part if key not in ("status", *apart)}
+
+
+def _job(part: JobPart | None) -> Job:
+    given = _inputs(part) if part else {}
+    return Job(**{key: text for key, text in given.items() if text is not None})
 
 
 def _inputs_by_path(part: CasePart) -> Iterator[tuple[str, InputPart]]:
@@ -169,12 +176,12 @@ def _at_mass_flow(part: CasePart) -> Iterator[str]:
 
 
 def _vessel(part: VesselPart | None) -> Vessel | None:
-    return None if part is None else Vessel(**part.model_dump(exclude={"status", "lowest_level"}))
+    return None if part is None else Vessel(**_inputs(part, "lowest_level"))
 
 
 def _pump(part: PumpPart) -> Pump:
     speeds, impeller, motor = part.variable_speed, part.impeller, part.motor
-    stated = {"variable_speed", "impeller", "motor", "reciprocating", "status", "speed", "curve_speed"}
+    apart = ("variable_speed", "impeller", "motor", "reciprocating", "speed", "curve_speed")
     return Pump(
         table=part.table,
         speed=part.running_speed,
@@ -186,8 +193,8 @@ def _pump(part: PumpPart) -> Pump:
         outlet_width=impeller.outlet_width if impeller else None,
         motor_power=motor.power if motor else None,
         motor_margin=motor.margin if motor else Pump.motor_margin,
-        reciprocating=Reciprocating(**part.reciprocating.model_dump()) if part.reciprocating else None,
-        **part.model_dump(exclude=stated),
+        reciprocating=Reciprocating(**_inputs(part.reciprocating)) if part.reciprocating else None,
+        **_inputs(part, *apart),
     )
 
 
@@ -213,7 +220,7 @@ def _material(part: PipePart) -> str:
 
 
 def _limits(part: LimitsPart) -> Limits:
-    beside = part.model_dump(exclude={"velocity"})
+    beside = _inputs(part, "velocity")
     return Limits(velocity_minimum=part.velocity.minimum, velocity_maximum=part.velocity.maximum, **beside)
 
 
@@ -230,4 +237,4 @@ def _sizing(part: SizingPart) -> Sizing:
 
 def _cost(part: CostPart) -> Cost:
     prices = {price.size.name: price.per_metre for price in part.prices}
-    return Cost(prices=prices, **part.model_dump(exclude={"status", "prices"}))
+    return Cost(prices=prices, **_inputs(part, "prices"))
