@@ -53,7 +53,7 @@ MAY_IMPORT: dict[str, tuple[str, ...]] = {
         "units",
     ),
     "record": ("record", "study", "case", "units", "sizing", "operability", "line", *INPUTS),
-    "report": ("report", "record", "study", "case.model", "units", "friction.turbulent", *INPUTS),
+    "report": ("report", "record", "study", "case.model", "case.source_files", "units", "friction.turbulent", *INPUTS),
     "cli": ("cli", "report", "record", "study", "case"),
 }
 """Beside the ground floor, which every room may use."""

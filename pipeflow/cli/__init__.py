@@ -18,6 +18,7 @@ from pipeflow.cli import fit as fit  # isort: skip
 from pipeflow.cli import size as size  # isort: skip
 from pipeflow.cli import curve as curve  # isort: skip
 from pipeflow.cli import rerun as rerun  # isort: skip
+from pipeflow.cli import report as report  # isort: skip
 from pipeflow.cli import methods as methods  # isort: skip
 from pipeflow.cli.common import BUG, FAILS, UNUSABLE
 from pipeflow.cli.common import app as app

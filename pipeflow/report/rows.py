@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from dataclasses import fields
 
 from pipeflow.case.model import Case, Liquid, Solids
@@ -65,8 +65,6 @@ def scenario_rows(result: Result) -> Iterator[tuple[str, ...]]:
     """The case and each scenario: losses, pump head and pressure, regimes, the gravest check."""
     for name, one in (("the case", result), *result.scenarios.items()):
         regimes = dict.fromkeys(element.regime for element in one.elements if element.regime)
-        statuses = {check.status for check in one.checks}
-        worst = next((mark for status, mark in reversed(MARK.items()) if status in statuses), "none stated")
         yield (
             name,
             number(one.totals.head_loss),
@@ -74,8 +72,14 @@ def scenario_rows(result: Result) -> Iterator[tuple[str, ...]]:
             number(one.profile.pump_head_upper),
             number(one.profile.pump_pressure_upper, "kPa"),
             " / ".join(REGIME_IN_SHORT.get(regime, regime) for regime in regimes),
-            worst,
+            worst_mark(one.checks),
         )
+
+
+def worst_mark(checks: Iterable[Check]) -> str:
+    """The word for the gravest of some checks."""
+    statuses = {check.status for check in checks}
+    return next((mark for status, mark in reversed(MARK.items()) if status in statuses), "none stated")
 
 
 def spaced(name: str) -> str:

@@ -34,11 +34,15 @@ class DesignFile:
         return self.result.case
 
     @property
+    def checks_of_line(self) -> tuple[Check, ...]:
+        """Every check of the line, in the case itself and in every scenario."""
+        return tuple(check for one in (self.result, *self.result.scenarios.values()) for check in one.checks)
+
+    @property
     def checks(self) -> tuple[Check, ...]:
-        """Every check: of the line in every scenario, and of the pumps in every condition."""
-        line = [check for one in (self.result, *self.result.scenarios.values()) for check in one.checks]
+        """Every check: of the line, and of the pumps in every condition."""
         pumps = [check for one in self.curve.conditions for pump in one.pumps for check in pump.checks]
-        return (*line, *pumps)
+        return (*self.checks_of_line, *pumps)
 
     @property
     def is_preliminary(self) -> bool:

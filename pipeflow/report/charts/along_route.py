@@ -19,7 +19,7 @@ from pipeflow.study.profile import atmospheric_pressure
 from pipeflow.study.result import ProfilePoint, Result
 from pipeflow.units import significant
 
-LEFT, RIGHT, MAIN, PRESSURE, OVER, UNDER, BETWEEN = 0.66, 1.5, 3.1, 1.3, 0.45, 0.5, 0.2
+LEFT, RIGHT, MAIN, PRESSURE, OVER, UNDER, BETWEEN = 0.66, 1.5, 2.8, 1.1, 0.45, 0.5, 0.2
 NAME = "route"
 UPPER_DASHES = (8, 2.5)
 

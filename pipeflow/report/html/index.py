@@ -1,0 +1,53 @@
+"""The page that leads to the pages of several cases."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from pathlib import Path
+from urllib.parse import quote
+
+from pipeflow import __version__
+from pipeflow.report.html.rendering import rendered
+from pipeflow.report.rows import number, worst_mark
+from pipeflow.study.design_file import DesignFile
+from pipeflow.units import format_value
+
+
+@dataclass(frozen=True)
+class IndexRow:
+    """One case in the list: where its page is, empty where there is none, and what it says in brief."""
+
+    link: str
+    case: str
+    title: str
+    flow: str = ""
+    head_loss: str = ""
+    head_loss_upper: str = ""
+    worst: str = ""
+    status: str = ""
+
+
+def index_row(found: DesignFile, page: Path) -> IndexRow:
+    """Say of a case what the list shows."""
+    totals = found.result.totals
+    return IndexRow(
+        link=quote(page.name),
+        case=found.case.file,
+        title=found.case.title,
+        flow=format_value(found.case.flow.design, "volume flow"),
+        head_loss=number(totals.head_loss),
+        head_loss_upper=number(totals.head_loss_upper),
+        worst=worst_mark(found.checks_of_line),
+        status="preliminary" if found.is_preliminary else "complete",
+    )
+
+
+def unusable_row(case: str) -> IndexRow:
+    """Say of a case that it could not be used."""
+    return IndexRow(link="", case=case, title="", status="can't be used")
+
+
+def index_page(rows: Sequence[IndexRow]) -> str:
+    """Write the page."""
+    return rendered("index.html.j2", rows=tuple(rows), version=__version__)
