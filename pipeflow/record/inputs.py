@@ -225,7 +225,7 @@ def digest(tree: Json) -> str:
 
     The name of the file is no input, and is left out.
     """
-    text = json.dumps(canonical(_nameless(tree)), sort_keys=True, separators=(",", ":"), ensure_ascii=True)
+    text = json.dumps(canonical(folded(_nameless(tree))), sort_keys=True, separators=(",", ":"), ensure_ascii=True)
     return hashlib.sha256(text.encode()).hexdigest()
 
 
@@ -239,15 +239,16 @@ def _nameless(tree: Json) -> Json:
 
 def differences(before: Json, after: Json, path: str = "") -> Iterator[str]:
     """Name the places where two laid-out trees differ, by path; lists of named things by their names."""
-    if canonical(before) == canonical(after):
+    if before == after:
         return
-    inside = _entries(before), _entries(after)
-    if inside[0] is None or inside[1] is None:
-        yield path
+    old, new = _entries(before), _entries(after)
+    if old is None or new is None:
+        if canonical(before) != canonical(after):
+            yield path
         return
-    for name in dict.fromkeys((*inside[0], *inside[1])):
+    for name in dict.fromkeys((*old, *new)):
         step = f"{path}[{name[1:]}]" if name.startswith("[") else f"{path}.{name}" if path else name
-        yield from differences(inside[0].get(name), inside[1].get(name), step)
+        yield from differences(old.get(name), new.get(name), step)
 
 
 def _entries(tree: Json) -> dict[str, Json] | None:

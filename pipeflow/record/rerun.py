@@ -231,7 +231,7 @@ def _compared(file: str, now: Record, before: _Before, options: Options) -> Reru
         comparison=comparison,
         explanations=explanations,
         unexplained=unexplained,
-        without_effect=tuple(_without_effect(before.inputs, now.inputs, explanations)),
+        without_effect=tuple(_without_effect(before, now, explanations)) if before.digest != now.digest else (),
         program={name: (old, fresh[name]) for name, old in before.program.items() if fresh.get(name, old) != old},
         fails=failing(now.results),
     )
@@ -276,18 +276,18 @@ def _explanation(old: Case, new: Case, line: LineComparison) -> Explanation | st
     return found or "a line with some inputs as before and some as after has no answer"
 
 
-def _without_effect(before: Json, after: Json, explanations: dict[str, Explanation]) -> Iterator[str]:
+def _without_effect(before: _Before, now: Record, explanations: dict[str, Explanation]) -> Iterator[str]:
     """Inputs that reach no total, by their keys, and groups of inputs whose parts are all nothing."""
-    own = list(_unfelt(before, after))
+    own = list(_unfelt(before.inputs, now.inputs))
     yield from own
-    for name, scenario in _entries(after).items():
-        if name in _entries(before):
-            yield from (f"{name}: {path}" for path in _unfelt(_entries(before)[name], scenario) if path not in own)
+    old, new = _scenarios(before.inputs), _scenarios(now.inputs)
+    for name in (name for name in new if name in old):
+        yield from (f"{name}: {path}" for path in _unfelt(old[name], new[name]) if path not in own)
     groups = dict.fromkeys(group for found in explanations.values() for group in found.groups if group != PROGRAM)
     yield from (group for group in groups if all(_is_nothing(found, group) for found in explanations.values()))
 
 
-def _entries(inputs: Json) -> dict[str, Json]:
+def _scenarios(inputs: Json) -> dict[str, Json]:
     entries: dict[str, Json] = inputs.get("scenarios", {}).get("entries", {})
     return entries
 
