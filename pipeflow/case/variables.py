@@ -51,6 +51,9 @@ class Bounds:
         return " and ".join(ends) or "any number"
 
 
+SHORT: Final = 0.05
+"""Lengths below which a reader wants millimetres, m."""
+
 ANY: Final = Bounds()
 POSITIVE: Final = Bounds(0.0)
 NOT_NEGATIVE: Final = Bounds(0.0, with_lower=True)
@@ -118,7 +121,8 @@ class Variable:
         """Write a value of this input for a reader."""
         if not self.dimension:
             return units.significant(value, digits)
-        return units.format_value(value, self.dimension, digits)
+        unit = "mm" if self.dimension == "length" and abs(value) < SHORT else self.dimension
+        return units.format_value(value, unit, digits)
 
 
 def variables(case: Case) -> dict[str, Variable]:

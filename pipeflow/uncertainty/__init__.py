@@ -3,7 +3,7 @@
 Works on any ``evaluate(dict of arrays) -> dict of arrays``. Loads scipy, and is itself loaded only where asked for.
 """
 
-from pipeflow.uncertainty.analysis import Analysis, Estimate, Index, Settings, analyse
+from pipeflow.uncertainty.analysis import Analysis, Estimate, Index, Settings, analyse, inputs_of, points
 from pipeflow.uncertainty.distributions import Distribution, Normal, Rectangular
 from pipeflow.uncertainty.factors import Correlated, Factor, Independent
 
@@ -19,4 +19,6 @@ __all__ = [
     "Rectangular",
     "Settings",
     "analyse",
+    "inputs_of",
+    "points",
 ]

@@ -264,7 +264,7 @@ def _replicate(
     for uniform in _points(2 * columns, settings, number):
         a, b = uniform[:, :columns], uniform[:, columns:]
         inputs = inputs_of(factors, a), inputs_of(factors, b)
-        at_a, at_b = ({**evaluate(one), **(beside(one) if beside else {})} for one in inputs)
+        at_a, at_b = (_both(evaluate, beside, one) for one in inputs)
         chunks.append({name: np.stack([at_a[name], at_b[name]]) for name in at_a})
         lost += sum(_lost([at[name] for name in centres]) for at in (at_a, at_b))
         for index, (factor, own) in enumerate(_columns(factors)):
@@ -275,6 +275,19 @@ def _replicate(
     outputs = {name: np.concatenate([chunk[name] for chunk in chunks], axis=1).reshape(-1) for name in chunks[0]}
     means = {name: sums[name].means for name in centres}
     return _Part(outputs, {k: v[0] for k, v in means.items()}, {k: v[1] for k, v in means.items()}, lost)
+
+
+def _both(evaluate: Evaluate, beside: Evaluate | None, inputs: Mapping[str, Array]) -> dict[str, Array]:
+    found, more = dict(evaluate(inputs)), beside(inputs) if beside else {}
+    if found.keys() & more.keys():
+        raise ValueError(f"outputs of one name: {', '.join(found.keys() & more.keys())}")
+    return {**found, **more}
+
+
+def points(dimension: int, number: int, seed: int) -> Array:
+    """Scrambled Sobol points above 0 and below 1, of shape (number, dimension); ``number`` is a power of two."""
+    (found,) = _points(dimension, Settings(number * REPLICATES, seed, number), 0)
+    return found
 
 
 def _points(dimension: int, settings: Settings, number: int) -> Iterator[Array]:
