@@ -84,13 +84,9 @@ class Crossings:
 
     def boundaries(self) -> tuple[Boundary, ...]:
         """Every boundary; an upper one that is the central one over again is left out."""
-        drawn = (key for key in self.excess if key[1] == "central" or not self._is_alike(key[0]))
+        drawn = (key for key in self.excess if not _is_alike(self.excess, key))
         found = (Boundary(name, figure, self._lines((name, figure))) for name, figure in drawn)
         return tuple(one for one in found if one.lines)
-
-    def _is_alike(self, name: str) -> bool:
-        central = self.excess.get((name, "central"))
-        return central is not None and bool(np.all(central == self.excess[name, "upper"]))
 
     def _lines(self, key: Key) -> tuple[tuple[tuple[float, float], ...], ...]:
         every = chains(self.excess[key] > 0)
@@ -111,12 +107,24 @@ def crossings(field: Field, x: Array, y: Array, *, along_rows: bool = False) -> 
     """
     columns, rows = np.meshgrid(x, y)
     excess = {key: found.reshape(rows.shape) for key, found in field.excess(columns.ravel(), rows.ravel()).items()}
-    asked = [(key, edge) for key, found in excess.items() for edge in _edges(found > 0, along_rows)]
+    asked = [
+        (key, edge)
+        for key, found in excess.items()
+        if not _is_alike(excess, key)
+        for edge in _edges(found > 0, along_rows)
+    ]
     shares = _roots(field, x, y, excess, asked)
     roots: dict[Key, dict[Edge, float]] = {key: {} for key in excess}
     for (key, edge), share in zip(asked, shares, strict=True):
         roots[key][edge] = float(share)
+    roots |= {key: roots[key[0], "central"] for key in excess if _is_alike(excess, key)}
     return Crossings(x, y, excess, roots)
+
+
+def _is_alike(excess: Mapping[Key, Array], key: Key) -> bool:
+    """Whether an upper figure is the central one all over."""
+    name, figure = key
+    return figure == "upper" and (name, "central") in excess and np.array_equal(excess[key], excess[name, "central"])
 
 
 def _edges(beyond: NDArray[np.bool_], along_rows: bool) -> list[Edge]:

@@ -65,7 +65,11 @@ class Demand:
         return self._kept[key]
 
     def _solved(self, flow: Array) -> Heads:
-        found = heads_along(self.case, line_at(self.case, flow, with_edges=False))
+        return self.of_line(line_at(self.case, flow, with_edges=False))
+
+    def of_line(self, line: LineFlow) -> Heads:
+        """Read the line of the case, solved at several flows."""
+        found = heads_along(self.case, line)
         inlet = 2 * pump_position(self.case) + 1
         above = found.upper.total_head[..., inlet] - found.elevation[..., inlet] - self._drawn_down()
         return Heads(found.central.pump_head, found.upper.pump_head, above + self._air_over_vapour())

@@ -7,18 +7,22 @@ from dataclasses import dataclass, field
 from typing import Final
 
 import numpy as np
+from numpy.typing import NDArray
 
+from pipeflow import sizing
 from pipeflow.arrays import Array
 from pipeflow.case.model import Case, Pump
 from pipeflow.constants import STANDARD_GRAVITY
+from pipeflow.line.route import LineFlow
 from pipeflow.pumping.displacement import DisplacementPump
 from pipeflow.pumping.slurry_curve import ESTABLISHED_SHARE, SlurryCurve
 from pipeflow.pumping.suction import npsh_asked
 from pipeflow.study.boundaries import FIGURES, JUMP, Key
 from pipeflow.study.demand import Demand, Heads
+from pipeflow.study.flows import DESIGN
 from pipeflow.study.limits_over import with_static_yield_stress
 from pipeflow.study.machines import Machine, made
-from pipeflow.study.points import case_at
+from pipeflow.study.points import case_at, points
 
 PUMPS: Final = "pumps"
 """Name of what is asked of the candidates together: that one of them serves."""
@@ -118,15 +122,16 @@ class PumpsOver:
         """How far each candidate is beyond what it gives at points of flow and input, and the best of them."""
         found: dict[Key, Array] = {}
         with np.errstate(all="ignore"):
+            line = points(self.case, with_static_yield_stress(self.case, self.path, y), flow=x).line
             for value in np.unique(y):
-                here = y == value
-                for key, over in self._along(float(value), x[here]).items():
+                here = np.flatnonzero(y == value)
+                for key, over in self._along(float(value), x[here], _at_design(line, here)).items():
                     found.setdefault(key, np.full(x.shape, -JUMP))[here] = over
         return found
 
-    def _along(self, value: float, flow: Array) -> dict[Key, Array]:
+    def _along(self, value: float, flow: Array, line: LineFlow) -> dict[Key, Array]:
         row = self._row(value)
-        heads = row.demand.at(flow)
+        heads = row.demand.of_line(line)
         each = [dict(one.asked(flow, heads, row.weight)) for one in row.candidates]
         found = {key: over for own in each for key, over in own.items()}
         for figure in FIGURES:
@@ -141,3 +146,8 @@ class PumpsOver:
             candidates = tuple(_Candidate.of(pump, case) for pump in case.pumps)
             self._rows[value] = _Row(float(case.fluid.density) * STANDARD_GRAVITY, Demand(case), candidates)
         return self._rows[value]
+
+
+def _at_design(line: LineFlow, here: NDArray[np.intp]) -> LineFlow:
+    """Pick points of a line of shape (points, 3), at the first of their flows."""
+    return sizing.at(line, (here, DESIGN))  # type: ignore[arg-type]
