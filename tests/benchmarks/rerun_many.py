@@ -14,7 +14,7 @@ import tempfile
 import time
 from pathlib import Path
 
-COUNT, COLD_RUNS, RUNS = 200, 7, 3
+COUNT, COLD_RUNS, RUNS = 200, 5, 3
 CASES = Path(__file__).parents[2] / "cases"
 COMMAND = str(Path(sysconfig.get_path("scripts")) / "pipeflow")
 
