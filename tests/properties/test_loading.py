@@ -30,13 +30,13 @@ KEYS = (
     "pumps", "<<", "", "fluid.density", "route[suction line].length", "route[", "route[]", "pumps[x].name",
     "scenarios.thick", "[key]", "<pipe>", "<map>", "solids", "liquid", "mass_fraction", "volume_fraction", "d85",
     "site", "altitude", "status", "dry_solids", "temperature", "exponent", "time_constant", "discharge",
-    "loss_coefficient",
+    "loss_coefficient", "pump", "job", "lowest_level", "curve", "variable_speed", "impeller", "motor", "stages", "number",
 )  # fmt: skip
 VALUES = (
     "140 m3/h", "12 m", "0.5", "-1", "1e999", "nan", "~", "null", "", "herschel-bulkley", "NPS 8 Sch 40",
     "cross", "0.5 s", "assumed", "55 t/h", "free", "24 °C", "slatter", "*a",
     "&a 1", "!!str x", "0x1F", "12:30", "true", "1420 kg/m3", "21 mPa.s", "9.5 Pa", "\x1b", "\ud800",
-    "é" * 50, "1 .. 2 1/s",
+    "é" * 50, "1 .. 2 1/s", "candidate-a.csv", "centrifugal", "980 rpm",
 )  # fmt: skip
 
 
@@ -100,7 +100,7 @@ def test_any_tree_of_known_keys_and_odd_values(tree: dict[str, Any]) -> None:
     check_outcome(outcome(yaml.safe_dump(tree, allow_unicode=True)))
 
 
-PARTS = ("fluid", "flow", "route", "limits", "methods", "pumps", "scenarios", "source")
+PARTS = ("fluid", "flow", "route", "limits", "methods", "pumps", "scenarios", "source", "job")
 
 
 @given(st.sampled_from(PARTS), TREES)
