@@ -30,7 +30,8 @@ KEYS = (
     "pumps", "<<", "", "fluid.density", "route[suction line].length", "route[", "route[]", "pumps[x].name",
     "scenarios.thick", "[key]", "<pipe>", "<map>", "solids", "liquid", "mass_fraction", "volume_fraction", "d85",
     "site", "altitude", "status", "dry_solids", "temperature", "exponent", "time_constant", "discharge",
-    "loss_coefficient", "pump", "job", "lowest_level", "curve", "variable_speed", "impeller", "motor", "stages", "number",
+    "loss_coefficient", "pump", "job", "lowest_level", "curve", "variable_speed", "impeller", "motor", "stages",
+    "number",
 )  # fmt: skip
 VALUES = (
     "140 m3/h", "12 m", "0.5", "-1", "1e999", "nan", "~", "null", "", "herschel-bulkley", "NPS 8 Sch 40",
