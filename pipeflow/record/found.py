@@ -14,7 +14,8 @@ from pipeflow.errors import InputError
 from pipeflow.record.store import record_path
 
 SUFFIXES = (".yaml", ".yml")
-_KEY_OF_A_CASE = re.compile(r"""^[\s{]*["']?(?:fluid|route)["']?\s*:""", re.MULTILINE)
+_KEY_OF_A_CASE = re.compile(r"""^["']?(?:fluid|route)["']?\s*:""", re.MULTILINE)
+_KEY_IN_BRACES = re.compile(r"""[{,\s]["']?(?:fluid|route)["']?\s*:""")
 
 
 @dataclass(frozen=True)
@@ -35,6 +36,9 @@ def find_cases(paths: Sequence[str]) -> Found:
     skipped: list[str] = []
     problems: list[str] = []
     for path in paths:
+        if not path:
+            problems.append("''  an empty name; give a case file or a folder")
+            continue
         if not Path(path).is_dir():
             cases.setdefault(os.path.realpath(path), path)
             continue
@@ -68,8 +72,9 @@ def is_case_file(path: Path) -> bool:
 
 
 def is_case(text: str) -> bool:
-    """Whether a text speaks of a fluid or a route."""
-    return bool(_KEY_OF_A_CASE.search(text))
+    """Whether a text speaks of a fluid or a route, at its top level."""
+    pattern = _KEY_IN_BRACES if text.lstrip().startswith("{") else _KEY_OF_A_CASE
+    return bool(pattern.search(text))
 
 
 def _of_their_own_record(cases: list[str], problems: list[str]) -> Iterator[str]:

@@ -12,6 +12,7 @@ from making import CASES, ROOT, text_of
 from typer.testing import CliRunner
 
 from pipeflow.cli import app
+from pipeflow.record.found import is_case
 from pipeflow.record.many import each
 from pipeflow.record.rerun import rerun
 from pipeflow.record.tolerance import tolerance_of
@@ -216,11 +217,29 @@ def test_a_bad_case_does_not_stop_the_others(tmp_path):
     assert [Path(file).name for file in documents] == ["a.yaml", "c.yml"]
 
 
-@pytest.mark.parametrize("name", ["nowhere.yaml", "nowhere", ""])
-def test_a_path_that_is_not_there(name, tmp_path):
+@pytest.mark.parametrize(
+    ("name", "said"), [("nowhere.yaml", "no such file"), ("nowhere", "no such file"), ("", "an empty name")]
+)
+def test_a_path_that_is_not_there(name, said, tmp_path):
     found = run(tmp_path / name if name else "")
     assert found.exit_code == 2
-    assert found.stderr
+    assert said in found.stderr
+
+
+@pytest.mark.parametrize(
+    ("text", "expected"),
+    [
+        ("title: x\nfluid: {}\n", True),
+        ("'route':\n", True),
+        ('{"title": "x", "fluid": {}}', True),
+        ("{title: x,\n route: []}", True),
+        ("http:\n  - route: {}\n", False),
+        ("fluids: 1\n# fluid: no\n", False),
+        ("", False),
+    ],
+)
+def test_what_is_taken_for_a_case(text, expected):
+    assert is_case(text) is expected
 
 
 def test_a_folder_without_a_case_is_said(tmp_path):
