@@ -35,7 +35,8 @@ KEYS = (
 )  # fmt: skip
 VALUES = (
     "140 m3/h", "12 m", "0.5", "-1", "1e999", "nan", "~", "null", "", "herschel-bulkley", "NPS 8 Sch 40",
-    "candidate-a.csv", "centrifugal", "980 rpm", "cross", "0.5 s", "assumed", "55 t/h", "free", "24 °C", "slatter", "*a",
+    "candidate-a.csv", "centrifugal", "980 rpm",
+    "cross", "0.5 s", "assumed", "55 t/h", "free", "24 °C", "slatter", "*a",
     "&a 1", "!!str x", "0x1F", "12:30", "true", "1420 kg/m3", "21 mPa.s", "9.5 Pa", "\x1b", "\ud800",
     "é" * 50, "1 .. 2 1/s",
 )  # fmt: skip
