@@ -129,7 +129,7 @@ def as_svg(figure: Figure, name: str, title: str, description: Sequence[str]) ->
     for not_wanted in _NOT_WANTED:
         text = re.sub(not_wanted, "", text, count=1, flags=re.DOTALL)
     # groups are numbered in every chart alike; nothing refers to them
-    text = re.sub(r'<g id="[^"]*">', "<g>", text).replace("'DejaVu Sans'", FONTS)
+    text = re.sub(r'<g id="[^"]*"', "<g", text).replace("'DejaVu Sans'", FONTS)
     said = (_escaped(title), _escaped(" ".join(description)))
     about = f'<title id="{name}-title">{said[0]}</title>\n <desc id="{name}-about">{said[1]}</desc>\n'
     refers = f'role="img" aria-labelledby="{name}-title" aria-describedby="{name}-about" stroke-linejoin="round"'
