@@ -31,7 +31,7 @@ class Axis:
         return np.array(self.values)
 
 
-def axis(case: Case, text: str, points: int, command: str) -> Axis:
+def axis(case: Case, text: str, points: int, command: str, own: Variable | None = None) -> Axis:
     """Read a range of an input, its points evenly spaced.
 
     Parameters
@@ -42,6 +42,8 @@ def axis(case: Case, text: str, points: int, command: str) -> Axis:
     points : int
     command : str
         What an error is said to be of.
+    own : Variable, optional
+        An input of the command's own, before those of the case.
 
     Raises
     ------
@@ -54,11 +56,32 @@ def axis(case: Case, text: str, points: int, command: str) -> Axis:
         raise InputError([Problem(command, None, None, "", message)])
     known: Variable | None = None
     try:
-        known = variable(case, path)
+        known = own if own is not None and path == own.path else variable(case, path)
         low, high = _ends(known, ends)
     except VariableError as error:
         raise InputError([Problem(command, None, None, known.path if known else "", str(error))]) from None
     return Axis(known, tuple(np.linspace(low, high, points).tolist()))
+
+
+def flow_and_other(case: Case, ranges: Sequence[str], command: str) -> tuple[Axis | None, Axis | None]:
+    """Read the ends of a volume flow of the slurry, and of one other input; None where one is not given.
+
+    Raises
+    ------
+    InputError
+        As :func:`axis`; or there are two of the flow, or two of the others.
+    """
+    flow = Variable("flow", "volume flow", case.flow.design)
+    axes = [axis(case, text, 2, command, flow) for text in ranges]
+    flows = [one for one in axes if one.variable is flow]
+    others = [one for one in axes if one.variable is not flow]
+    if any(one.variable.path.startswith("flow.") for one in others):
+        message = "the flow here is the volume flow of the slurry, minimum and maximum alike: 'flow=80..160 m3/h'"
+        raise InputError([Problem(command, None, None, "", message)])
+    if len(flows) > 1 or len(others) > 1:
+        found = " and ".join(one.variable.path for one in axes)
+        raise InputError([Problem(command, None, None, "", f"found {found}; one is the flow, one another input")])
+    return (flows or [None])[0], (others or [None])[0]  # type: ignore[list-item]
 
 
 def refuse_one_quantity_twice(axes: Sequence[Axis], command: str) -> None:

@@ -17,6 +17,8 @@ from pipeflow.cli import solve as solve  # isort: skip
 from pipeflow.cli import fit as fit  # isort: skip
 from pipeflow.cli import size as size  # isort: skip
 from pipeflow.cli import curve as curve  # isort: skip
+from pipeflow.cli import sweep as sweep  # isort: skip
+from pipeflow.cli import envelope as envelope  # isort: skip
 from pipeflow.cli import rerun as rerun  # isort: skip
 from pipeflow.cli import report as report  # isort: skip
 from pipeflow.cli import methods as methods  # isort: skip

@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
-from dataclasses import dataclass, replace
+from collections.abc import Iterator
+from dataclasses import dataclass
 from typing import Final, Literal
 
 import numpy as np
@@ -135,16 +135,16 @@ def default_ends(case: Case, up: Variable) -> tuple[float, float]:
     return up.value * STRESSES[0], up.value * STRESSES[1]
 
 
-def envelope(case: Case, flow: tuple[float, float] | None = None, up: Axis | None = None) -> Envelope:
+def envelope(case: Case, flow: Axis | None = None, up: Axis | None = None) -> Envelope:
     """Draw the duty envelope of a case.
 
     Parameters
     ----------
     case : Case
-    flow : tuple of float, optional
+    flow : Axis, optional
         Ends of the volume flow, m³/s; by default from 0.4 of the minimum to 1.6 of the maximum of the case.
     up : Axis, optional
-        The other input; by default what the rheology follows.
+        Ends of the other input; by default of what the rheology follows.
 
     Raises
     ------
@@ -153,8 +153,9 @@ def envelope(case: Case, flow: tuple[float, float] | None = None, up: Axis | Non
     """
     if case.flow.maximum <= 0:
         raise InputError([Problem(case.file, None, None, "flow", "a line at rest has no envelope; give a flow")])
-    up = up or _axis_of(case)
-    low, high = flow or (FLOWS[0] * (case.flow.minimum or case.flow.maximum), FLOWS[1] * case.flow.maximum)
+    up = _axis_of(case) if up is None else through(up.variable, up.values[0], up.values[-1])
+    ends = FLOWS[0] * (case.flow.minimum or case.flow.maximum), FLOWS[1] * case.flow.maximum
+    low, high = (flow.values[0], flow.values[-1]) if flow is not None else ends
     across = np.unique(np.append(np.linspace(low, high, COLUMNS), [one for one in _flows(case) if low < one < high]))
     path = up.variable.path
     limits = LimitsOver(case, lambda x, y: (with_static_yield_stress(case, path, y), x))
@@ -164,7 +165,7 @@ def envelope(case: Case, flow: tuple[float, float] | None = None, up: Axis | Non
     pipe = governing_pipe(case)
     return Envelope(
         case=case,
-        flow=Axis(replace(_flow_variable(case), value=case.flow.design), tuple(across.tolist())),
+        flow=Axis(Variable("flow", "volume flow", case.flow.design), tuple(across.tolist())),
         up=up,
         boundaries=tuple(one for one in found.boundaries() if one.name != PUMPS),
         limits=dict(_limits(limits, across, up.array)),
@@ -174,10 +175,6 @@ def envelope(case: Case, flow: tuple[float, float] | None = None, up: Axis | Non
         governing_pipe="" if pipe is None else pipes_of(case)[pipe].name,
         cautions=tuple(_cautions(case, up)),
     )
-
-
-def _flow_variable(case: Case) -> Variable:
-    return Variable("flow", "volume flow", case.flow.design)
 
 
 def _flows(case: Case) -> tuple[float, ...]:
@@ -289,10 +286,3 @@ def _about_pumps(case: Case) -> Iterator[str]:
     fixed = [pump.name for pump in case.pumps if pump.kind != "centrifugal" and pump.speed_maximum is None]
     if fixed:
         yield f"{', '.join(fixed)}: one speed gives one flow; less takes another speed or a bypass"
-
-
-def flow_ends(axes: Sequence[Axis]) -> tuple[tuple[float, float] | None, Axis | None]:
-    """Ends of the flow, and the other input, of those given."""
-    flow = next(((axis.values[0], axis.values[-1]) for axis in axes if axis.variable.path == "flow"), None)
-    other = next((axis for axis in axes if axis.variable.path != "flow"), None)
-    return flow, None if other is None else through(other.variable, other.values[0], other.values[-1])

@@ -14,7 +14,9 @@ from pipeflow.case.model import Case, shown_condition
 from pipeflow.case.variables import variable
 from pipeflow.friction import Regime
 from pipeflow.operability.energy import specific_energy
+from pipeflow.study.boundaries import Boundary, crossings
 from pipeflow.study.flows import DESIGN, pipes_of
+from pipeflow.study.limits_over import LimitsOver
 from pipeflow.study.points import Points, points, worst_of
 from pipeflow.verdict import Check
 
@@ -85,12 +87,15 @@ class Sweep:
     points : tuple of SweptPoint
         The second input fastest.
     cautions : tuple of str
+    boundaries : tuple of Boundary
+        Where limits are met and the regime of the governing pipe changes, over two inputs: (first, second), SI.
     """
 
     case: Case
     axes: tuple[Axis, ...]
     points: tuple[SweptPoint, ...]
     cautions: tuple[str, ...]
+    boundaries: tuple[Boundary, ...] = ()
 
     @property
     def shape(self) -> tuple[int, ...]:
@@ -121,7 +126,16 @@ def sweep(case: Case, axes: Sequence[Axis]) -> Sweep:
     solved = points(case, values)
     every = tuple(_point(solved, index, tuple(float(each[index]) for each in values.values()))
                   for index in range(mesh[0].size))  # fmt: skip
-    return Sweep(case, tuple(axes), every, tuple(_cautions(solved, case, axes)))
+    return Sweep(case, tuple(axes), every, tuple(_cautions(solved, case, axes)), _boundaries(case, axes))
+
+
+def _boundaries(case: Case, axes: Sequence[Axis]) -> tuple[Boundary, ...]:
+    if len(axes) < 2:
+        return ()
+    first, second = axes
+    paths = first.variable.path, second.variable.path
+    over = LimitsOver(case, lambda x, y: ({paths[0]: x, paths[1]: y}, None))
+    return crossings(over, first.array, second.array).boundaries()
 
 
 def solids_sweep(case: Case) -> Sweep | None:

@@ -10,7 +10,9 @@ from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
     from pipeflow.study.curve_result import CurveResult
+    from pipeflow.study.envelope import Envelope
     from pipeflow.study.result import Result
+    from pipeflow.study.sweeping import Sweep
 
 
 def system_chart_svg(result: CurveResult) -> str:
@@ -39,3 +41,28 @@ def terminal_chart(result: CurveResult) -> str:
     from pipeflow.report.charts.in_terminal import system_in_terminal
 
     return system_in_terminal(result)
+
+
+def sweep_chart_svg(sweep: Sweep) -> str:
+    """A sweep of one input as lines, or of two as a map, an SVG document 170 mm wide."""
+    if len(sweep.axes) == 1:
+        from pipeflow.report.charts.sweep import sweep_chart
+
+        return sweep_chart(sweep)
+    from pipeflow.report.charts.sweep_map import sweep_map
+
+    return sweep_map(sweep)
+
+
+def envelope_chart_svg(envelope: Envelope) -> str:
+    """The duty envelope as a map, an SVG document 170 mm wide."""
+    from pipeflow.report.charts.envelope import envelope_chart
+
+    return envelope_chart(envelope)
+
+
+def sweep_in_terminal(sweep: Sweep) -> str:
+    """Head loss over one input, in plain text of 80 columns."""
+    from pipeflow.report.charts.sweep_in_terminal import losses_in_terminal
+
+    return losses_in_terminal(sweep)

@@ -1,0 +1,120 @@
+"""The chart of a duty envelope: boundaries over flow and another input, the window hatched, energy in thin lines."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+import numpy as np
+from matplotlib.axes import Axes
+
+from pipeflow.arrays import Array
+from pipeflow.report.charts.canvas import FILL, GREY, INK, SMALL, as_svg, drawing, shortened
+from pipeflow.report.charts.map_parts import contours, draw_boundaries, map_axes, shown
+from pipeflow.report.sweep_text import boundary_name, energy_unit, name_of
+from pipeflow.study.boundaries import Boundary
+from pipeflow.study.envelope import Envelope, Interval
+from pipeflow.study.limits_over import REGIMES
+from pipeflow.units import format_si, significant, to_display
+
+NAME = "envelope"
+
+
+def envelope_chart(envelope: Envelope) -> str:
+    """Draw the chart."""
+    with drawing(NAME):
+        figure, axes = map_axes(envelope.flow, envelope.up)
+        across, up = (shown(axis.variable, axis.values) for axis in (envelope.flow, envelope.up))
+        _hatch(axes, envelope)
+        contours(axes, across, up, np.array(envelope.energy), 9)
+        variables = envelope.flow.variable, envelope.up.variable
+        draw_boundaries(axes, envelope.boundaries, variables, lambda one: named(one, envelope))
+        _present(axes, envelope)
+        _said(figure, envelope)
+        return as_svg(figure, NAME, f"Duty envelope: {envelope.case.title}", list(_described(envelope)))
+
+
+def named(one: Boundary, envelope: Envelope) -> str:
+    """Name a boundary with its limit, or the pipe whose regime it is of."""
+    stated = envelope.limits.get(one.name)
+    sign = "≤" if stated and stated.sense == "at most" else "≥"
+    limit = f" {sign} {format_si(stated.limit, stated.unit)}" if stated and stated.limit is not None else ""
+    pipe = f", {shortened(envelope.governing_pipe, 20)}" if one.name in REGIMES else ""
+    return f"{shortened(boundary_name(one), 44)}{limit}{pipe}"
+
+
+def _hatch(axes: Axes, envelope: Envelope) -> None:
+    """The window by the upper figure, and what the central one alone adds, from row to row."""
+    for figure, hatch, ground in (("central", "....", "none"), ("upper", "////", FILL)):
+        for y, low, high in _strips(envelope, figure):
+            axes.fill_betweenx(
+                y, low, high, facecolor=ground, hatch=hatch, edgecolor="#9a9a9a", linewidth=0.0, zorder=1
+            )
+
+
+def _strips(envelope: Envelope, figure: str) -> Iterator[tuple[Array, Array, Array]]:
+    """The first, second, … interval of the rows one above another, as far as they go, in the units of the axes."""
+    rows = [tuple(getattr(row, figure)) for row in envelope.rows]
+    values = [row.value for row in envelope.rows]
+    for rank in range(max((len(row) for row in rows), default=0)):
+        run: list[tuple[float, Interval]] = []
+        for j, row in enumerate((*rows, ())):
+            if rank < len(row):
+                if not run and j:
+                    run += _reach(envelope, row[rank], values[j], values[j - 1])
+                run.append((values[j], row[rank]))
+            elif run:
+                after = values[j] if j < len(values) else values[-1]
+                run += _reach(envelope, run[-1][1], run[-1][0], after)
+                yield _strip(envelope, run)
+                run = []
+
+
+def _reach(envelope: Envelope, interval: Interval, here: float, there: float) -> list[tuple[float, Interval]]:
+    """How far an interval goes on between two rows, the next of which has none: to the first boundary across it."""
+    low, high = min(here, there), max(here, there)
+    ends = [
+        y
+        for one in envelope.boundaries
+        if one.name not in REGIMES
+        for line in one.lines
+        for x, y in line
+        if low < y < high and interval.low <= x <= interval.high
+    ]
+    return [(min(ends, key=lambda y: abs(y - here)), interval)] if ends else []
+
+
+def _strip(envelope: Envelope, run: list[tuple[float, Interval]]) -> tuple[Array, Array, Array]:
+    y = shown(envelope.up.variable, [value for value, _ in run])
+    flow = envelope.flow.variable
+    return y, shown(flow, [one.low for _, one in run]), shown(flow, [one.high for _, one in run])
+
+
+def _present(axes: Axes, envelope: Envelope) -> None:
+    """The flows of the case at its own value."""
+    asked = envelope.case.flow
+    flows = shown(envelope.flow.variable, [asked.minimum, asked.design, asked.maximum])
+    value = float(shown(envelope.up.variable, [envelope.up.variable.value])[0])
+    axes.plot(flows[[0, 2]], [value, value], color=INK, linewidth=2.6, solid_capstyle="butt", zorder=6)
+    axes.plot([flows[1]], [value], marker="D", markersize=6, color=INK, markerfacecolor="white", zorder=7)
+
+
+def _said(figure: object, envelope: Envelope) -> None:
+    wide, _ = figure.get_size_inches()  # type: ignore[attr-defined]
+    unit = energy_unit(envelope.case).replace(" per ", "\nper ")
+    text = (
+        "hatched: every limit holds\ndotted: by the central figure\nalone\n◇ the case, its flows\n"
+        f"thin lines: energy, {unit}"
+    )
+    figure.text(1.0 - 2.13 / wide, 0.02, text, fontsize=SMALL, va="bottom", color=GREY, linespacing=1.2)  # type: ignore[attr-defined]
+
+
+def _described(envelope: Envelope) -> Iterator[str]:
+    own = envelope.own
+    yield f"Flow across, {name_of(envelope.up.variable)} upwards; the window where every limit holds is hatched."
+    for one in own.upper:
+        low, high = (significant(to_display(flow, "m3/h")) for flow in (one.low, one.high))
+        yield f"At the value of the case from {low} to {high} m3/h."
+    if not own.upper:
+        yield "At the value of the case there is no flow at which every limit holds by the upper figure."
+    for number, boundary in enumerate(envelope.boundaries, 1):
+        yield f"{number}: {named(boundary, envelope)}."

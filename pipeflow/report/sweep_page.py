@@ -1,0 +1,144 @@
+"""The page of a sweep in a terminal: 80 columns of plain text."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from pipeflow.report.sweep_text import energy_unit, figure_and_unit, name_of, steps, title_of, told, unit_of
+from pipeflow.report.text import heading, paragraph, table
+from pipeflow.study.result import SAFETY_NOTICE
+from pipeflow.study.sweeping import Sweep, SweptPoint
+from pipeflow.units import significant, to_display
+from pipeflow.verdict import Check
+
+SHORT = {"laminar": "lam.", "transitional": "trans.", "turbulent": "turb.", "mixed": "mixed", "no flow": "rest"}
+SHOWN = {"ok": "ok", "caution": "caution", "fail": "FAIL"}
+MOST_COLUMNS = 9
+"""Columns of figures of a grid that fit a page."""
+
+
+def sweep_page(sweep: Sweep) -> str:
+    """Write the page."""
+    return "\n".join(_page(sweep)) + "\n"
+
+
+def _page(sweep: Sweep) -> Iterator[str]:
+    yield paragraph(title_of(sweep.case))
+    yield sweep.case.file
+    yield from (paragraph(told(axis), mark="  ") for axis in sweep.axes)
+    if len(sweep.axes) == 1:
+        yield from heading("The line over the range")
+        yield from sweep_table(sweep)
+        yield from heading("Chart")
+        from pipeflow.report.charts import sweep_in_terminal
+
+        yield sweep_in_terminal(sweep).rstrip("\n")
+        yield from heading("Limits")
+        yield from _limits(sweep)
+    else:
+        yield from _grid(sweep)
+    if sweep.cautions:
+        yield from heading("Cautions")
+        yield from (paragraph(caution, mark="! ") for caution in sweep.cautions)
+    yield from heading("Before relying on this")
+    yield paragraph(SAFETY_NOTICE)
+
+
+def sweep_table(sweep: Sweep) -> Iterator[str]:
+    """Lines of the table of a sweep of one input, and what they are of."""
+    (axis,) = sweep.axes
+    per = "t.km"
+    columns = (
+        f"{unit_of(axis.variable) or 'value'}", "regime", "fastest\nm/s", "loss\nm", "upper\nm", "total\nhead\nm",
+        "press.\nkPa", "power\nkW", f"kWh/\n{per}", "limits",
+    )  # fmt: skip
+    yield paragraph(f"by {name_of(axis.variable)}; at design flow")
+    yield from table(columns, [tuple(_row(sweep, point)) for point in sweep.points], words=(1, 9))
+    yield paragraph(
+        "Head loss by the central and the upper figure; total head, pressure required, hydraulic power and energy by "
+        f"the upper. Energy of the losses, {energy_unit(sweep.case)}. Limits as solve judges them.",
+        mark="  ",
+    )
+
+
+def _row(sweep: Sweep, point: SweptPoint) -> Iterator[str]:
+    yield figure_and_unit(sweep.axes[0].variable, point.values[0])[0]
+    yield SHORT[point.regime]
+    yield significant(point.velocity, 3)
+    yield significant(point.head_loss)
+    yield significant(point.head_loss_upper)
+    yield significant(point.total_head_upper)
+    yield significant(to_display(point.pressure_required_upper, "kPa"))
+    yield significant(to_display(point.power_upper, "kW"))
+    yield significant(point.specific_energy, 3)
+    yield SHOWN[point.status]
+
+
+def _limits(sweep: Sweep) -> Iterator[str]:
+    """Where each check fails or calls for thought, the failing first."""
+    found = list(_runs(sweep, "fail")) + list(_runs(sweep, "caution"))
+    yield from found or ["Every limit that the case states holds over the whole range."]
+
+
+def _runs(sweep: Sweep, status: str) -> Iterator[str]:
+    axis = sweep.axes[0]
+    every = [{check.name: check for check in point.checks} for point in sweep.points]
+    for name in dict.fromkeys(name for one in every for name in one):
+        chosen = [name in one and one[name].status == status for one in every]
+        if any(chosen):
+            runs = (_run(axis.variable, *ends) for ends in steps(axis.values, chosen))
+            check = next(one[name] for one, is_one in zip(every, chosen, strict=True) if is_one)
+            yield paragraph(f"{name.replace('_', ' ')}{_sense(check)}: {', '.join(runs)}", mark=f"{SHOWN[status]:<9}")
+
+
+def _run(variable: object, first: float, last: float) -> str:
+    shown = [figure_and_unit(variable, value) for value in (first, last)]  # type: ignore[arg-type]
+    unit = f" {shown[0][1]}" if shown[0][1] else ""
+    return f"at {shown[0][0]}{unit}" if first == last else f"{shown[0][0]} to {shown[1][0]}{unit}"
+
+
+def _sense(check: Check) -> str:
+    is_central = check.status == "caution" and check.value_upper is not None
+    return " (kept by the central figure alone)" if is_central else ""
+
+
+def _grid(sweep: Sweep) -> Iterator[str]:
+    """Head loss by the upper figure over two inputs, marked where a limit fails."""
+    first, second = sweep.axes
+    yield from heading(f"Head loss, m, upper figure: {name_of(first.variable)} across")
+    across = _chosen(len(first.values))
+    heads = [figure_and_unit(first.variable, first.values[i])[0] for i in across]
+    corner = f"{name_of(second.variable)[:20]}\n{unit_of(second.variable)}".rstrip("\n")
+    rows = [
+        [figure_and_unit(second.variable, value)[0], *(_cell(sweep, i, j) for i in across)]
+        for j, value in enumerate(second.values)
+    ]
+    yield from table((corner, *(f"{head}\n{unit_of(first.variable)}".rstrip() for head in heads)), rows)
+    yield paragraph("F a limit fails, c one is kept by the central figure alone.", mark="  ")
+    if len(across) < len(first.values):
+        yield paragraph(f"{len(across)} of {len(first.values)} columns; --csv writes every point.", mark="  ")
+    yield from heading("Limits")
+    yield from _share_of(sweep)
+
+
+def _chosen(count: int) -> list[int]:
+    """Places of the columns shown: evenly spread, the ends among them."""
+    shown = min(count, MOST_COLUMNS)
+    return [round(index * (count - 1) / (shown - 1)) for index in range(shown)]
+
+
+def _cell(sweep: Sweep, i: int, j: int) -> str:
+    point = sweep.points[i * len(sweep.axes[1].values) + j]
+    central_alone = any(check.status == "caution" and check.value_upper is not None for check in point.checks)
+    mark = "F" if point.status == "fail" else "c" if central_alone else " "
+    return f"{significant(point.head_loss_upper, 3)}{mark}"
+
+
+def _share_of(sweep: Sweep) -> Iterator[str]:
+    every = [check for point in sweep.points for check in point.checks]
+    failing = dict.fromkeys(check.name for check in every if check.status == "fail")
+    for name in failing:
+        count = sum(check.name == name and check.status == "fail" for check in every)
+        yield paragraph(f"{name.replace('_', ' ')}: at {count} of {len(sweep.points)} points", mark="FAIL  ")
+    if not failing:
+        yield "No limit fails at any point."

@@ -1,0 +1,81 @@
+"""Words and figures that the pages, tables and charts of sweeps and envelopes share."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from pipeflow.case.axes import Axis
+from pipeflow.case.model import Case
+from pipeflow.case.variables import Variable
+from pipeflow.study.boundaries import Boundary
+from pipeflow.units import format_value, significant
+
+NAMES = {
+    "fluid.solids.mass_fraction": "solids, fraction by mass",
+    "fluid.solids.volume_fraction": "solids, fraction by volume",
+    "flow": "flow",
+    "flow.dry_solids": "dry solids",
+    "fluid.rheology.yield_stress": "yield stress",
+}
+"""What an input is called on a page; another by its key path."""
+
+
+def name_of(variable: Variable) -> str:
+    """Name an input for a reader."""
+    path = variable.path
+    if path in NAMES:
+        return NAMES[path]
+    return path.removeprefix("fluid.rheology.").replace("_", " ") if path.startswith("fluid.rheology.") else path
+
+
+def figure_and_unit(variable: Variable, value: float, digits: int = 4) -> tuple[str, str]:
+    """A value in the unit an engineer reads it in, and that unit."""
+    if not variable.dimension:
+        return significant(value, digits), ""
+    figure, _, unit = format_value(value, variable.dimension, digits).partition(" ")
+    return figure, unit
+
+
+def unit_of(variable: Variable) -> str:
+    """Unit an input is shown in."""
+    return figure_and_unit(variable, variable.value)[1]
+
+
+def labelled(variable: Variable) -> str:
+    """``yield stress, Pa``: what stands on an axis."""
+    unit = unit_of(variable)
+    return f"{name_of(variable)}, {unit}" if unit else name_of(variable)
+
+
+def told(axis: Axis) -> str:
+    """``yield stress 5.000 to 20.00 Pa, 21 points``."""
+    low, high = (figure_and_unit(axis.variable, value)[0] for value in (axis.values[0], axis.values[-1]))
+    unit = unit_of(axis.variable)
+    return f"{name_of(axis.variable)} {low} to {high}{f' {unit}' if unit else ''}, {len(axis.values)} points"
+
+
+def energy_unit(case: Case) -> str:
+    """Unit of the specific energy: of dry solids where the case has them."""
+    return "kWh per t of dry solids and km" if case.solids else "kWh per t of slurry and km"
+
+
+def boundary_name(boundary: Boundary) -> str:
+    """Name a boundary for a reader: the figure is told where the two differ."""
+    name = boundary.name.replace("_", " ")
+    return f"{name}, upper figure" if boundary.figure == "upper" else name
+
+
+def title_of(case: Case) -> str:
+    """Title and revision."""
+    return case.title + (f", revision {case.revision}" if case.revision else "")
+
+
+def steps(values: tuple[float, ...], chosen: list[bool]) -> Iterator[tuple[float, float]]:
+    """First and last value of each run of chosen ones."""
+    start: float | None = None
+    for index, value in enumerate(values):
+        if chosen[index] and start is None:
+            start = value
+        if start is not None and (not chosen[index] or index == len(values) - 1):
+            yield start, value if chosen[index] else values[index - 1]
+            start = None
