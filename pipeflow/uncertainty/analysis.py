@@ -62,14 +62,14 @@ class Settings:
     seed : int
         Of the scrambling.
     chunk : int
-        Samples evaluated at a time, which bounds the memory; no figure depends on it.
+        Inputs evaluated at a time, which bounds the memory; no figure depends on it.
     workers : int
         Processes at work; no figure depends on it.
     """
 
     samples: int = 4096
     seed: int = 1
-    chunk: int = 4096
+    chunk: int = 8192
     workers: int = 1
 
     def __post_init__(self) -> None:
@@ -236,11 +236,13 @@ class _Sums:
     def __init__(self, factors: int) -> None:
         self.of = np.zeros((3, factors))
 
-    def add(self, factor: int, a: Array, b: Array, mixed: Array) -> None:
-        """Add one chunk; ``a``, ``b`` and ``mixed`` are f(A), f(B), f(AB_i) less a constant."""
-        sound = np.isfinite(a + b + mixed)
-        a, b, mixed = a[sound], b[sound], mixed[sound]
-        self.of[:, factor] += np.sum(b * (mixed - a)), np.sum((a - mixed) ** 2) / 2.0, sound.sum()
+    def add(self, found: Array) -> None:
+        """Add one chunk: f(A), f(B) and each f(AB_i) less a constant, a row each."""
+        a, b, *each = found
+        for factor, mixed in enumerate(each):
+            sound = np.isfinite(a + b + mixed)
+            first, total = b * (mixed - a), (a - mixed) ** 2 / 2.0
+            self.of[:, factor] += first[sound].sum(), total[sound].sum(), sound.sum()
 
     @property
     def means(self) -> tuple[Array, Array]:
@@ -258,52 +260,52 @@ def _replicate(
     number: int,
 ) -> _Part:
     columns = sum(factor.columns for factor in factors)
+    rows = max(settings.chunk // (len(factors) + 2), 1)
     sums = {name: _Sums(len(factors)) for name in centres}
     chunks: list[dict[str, Array]] = []
     lost = 0
-    for uniform in _points(2 * columns, settings, number):
-        a, b = uniform[:, :columns], uniform[:, columns:]
-        inputs = inputs_of(factors, a), inputs_of(factors, b)
-        at_a, at_b = (_both(evaluate, beside, one) for one in inputs)
-        chunks.append({name: np.stack([at_a[name], at_b[name]]) for name in at_a})
-        lost += sum(_lost([at[name] for name in centres]) for at in (at_a, at_b))
-        for index, (factor, own) in enumerate(_columns(factors)):
-            mixed = evaluate({**inputs[0], **factor.values(b[:, own])})
-            lost += _lost([mixed[name] for name in centres])
-            for name, centre in centres.items():
-                sums[name].add(index, at_a[name] - centre, at_b[name] - centre, mixed[name] - centre)
+    for uniform in _points(2 * columns, settings, number, rows):
+        both, mixed = _inputs(factors, uniform[:, :columns], uniform[:, columns:])
+        found = _by_block(evaluate, [*both, *mixed])
+        more = _by_block(beside, both) if beside else {}
+        if found.keys() & more.keys():
+            raise ValueError(f"outputs of one name: {', '.join(found.keys() & more.keys())}")
+        chunks.append({**more, **{name: values[:2] for name, values in found.items()}})
+        lost += int(np.sum(~np.isfinite(np.sum([found[name] for name in centres], axis=0))))
+        for name, centre in centres.items():
+            sums[name].add(found[name] - centre)
     outputs = {name: np.concatenate([chunk[name] for chunk in chunks], axis=1).reshape(-1) for name in chunks[0]}
     means = {name: sums[name].means for name in centres}
     return _Part(outputs, {k: v[0] for k, v in means.items()}, {k: v[1] for k, v in means.items()}, lost)
 
 
-def _both(evaluate: Evaluate, beside: Evaluate | None, inputs: Mapping[str, Array]) -> dict[str, Array]:
-    found, more = dict(evaluate(inputs)), beside(inputs) if beside else {}
-    if found.keys() & more.keys():
-        raise ValueError(f"outputs of one name: {', '.join(found.keys() & more.keys())}")
-    return {**found, **more}
+def _inputs(factors: Sequence[Factor], a: Array, b: Array) -> tuple[list[dict[str, Array]], list[dict[str, Array]]]:
+    """Inputs of A and B, and of every AB_i."""
+    at_a = inputs_of(factors, a)
+    mixed = [{**at_a, **factor.values(b[:, own])} for factor, own in _columns(factors)]
+    return [at_a, inputs_of(factors, b)], mixed
+
+
+def _by_block(evaluate: Evaluate, blocks: Sequence[Mapping[str, Array]]) -> dict[str, Array]:
+    """Evaluate blocks of samples at once; the outputs have a row a block."""
+    inputs = {name: np.concatenate([block[name] for block in blocks]) for name in blocks[0]}
+    return {name: np.asarray(values).reshape(len(blocks), -1) for name, values in evaluate(inputs).items()}
 
 
 def points(dimension: int, number: int, seed: int) -> Array:
     """Scrambled Sobol points above 0 and below 1, of shape (number, dimension); ``number`` is a power of two."""
-    (found,) = _points(dimension, Settings(number * REPLICATES, seed, number), 0)
+    (found,) = _points(dimension, Settings(number * REPLICATES, seed), 0, number)
     return found
 
 
-def _points(dimension: int, settings: Settings, number: int) -> Iterator[Array]:
-    """Scrambled Sobol points of one replicate, in chunks."""
+def _points(dimension: int, settings: Settings, number: int, rows: int) -> Iterator[Array]:
+    """Scrambled Sobol points of one replicate, so many rows at a time, rounded down to a power of two."""
     generator = np.random.default_rng([settings.seed, number])
     engine = qmc.Sobol(d=max(dimension, 1), scramble=True, rng=generator)
     left = settings.samples // REPLICATES
-    chunk = 1 << max(settings.chunk.bit_length() - 1, 0)
-    while left:
-        rows = min(chunk, left)
-        yield engine.random(rows)[:, :dimension] + HALF_CELL
-        left -= rows
-
-
-def _lost(outputs: Sequence[Array]) -> int:
-    return int(np.sum(~np.isfinite(np.sum(outputs, axis=0))))
+    chunk = min(1 << (rows.bit_length() - 1), left)
+    for _ in range(left // chunk):
+        yield engine.random(chunk)[:, :dimension] + HALF_CELL
 
 
 def _indices(name: str, factors: Sequence[str], parts: Sequence[_Part]) -> Iterator[Index]:

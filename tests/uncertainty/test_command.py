@@ -1,0 +1,158 @@
+"""``pipeflow solve --uncertainty``: the page, the document, and what is refused."""
+
+from __future__ import annotations
+
+import json
+from dataclasses import replace
+from pathlib import Path
+
+import pytest
+from typer.testing import CliRunner
+
+from pipeflow.case.loading import load_text
+from pipeflow.cli import app
+from pipeflow.report.uncertainty_page import tornado_lines, uncertainty_page
+from pipeflow.study.uncertainty import Bar, uncertainty
+
+CASE = """title: Sure or not
+fluid:
+  density: 1380 kg/m3
+  solids: {density: 2650 kg/m3, mass_fraction: 0.45, d85: 90 µm}
+  liquid: {density: 998 kg/m3, viscosity: 1 mPa.s}
+  rheology:
+    model: bingham
+    yield_stress: {law: power, a: 130 Pa, b: 4, tested: 0.40 .. 0.50}
+    plastic_viscosity: 20 mPa.s
+flow: 140 m3/h
+route:
+  - {pipe: a discharge line of a rather long name to the far thickener, diameter: 150 mm, length: 300 m}
+limits: {head_loss: 16 m}
+uncertainty:
+  fluid.solids.mass_fraction: ± 0.08
+  fluid.rheology.plastic_viscosity: normal 60 %
+  route[a discharge line of a rather long name to the far thickener].length: ± 5 m
+scenarios:
+  thin: {fluid.rheology.plastic_viscosity: 10 mPa.s}
+"""
+
+
+@pytest.fixture
+def case(tmp_path: Path) -> Path:
+    path = tmp_path / "line.yaml"
+    path.write_text(CASE, encoding="utf-8")
+    return path
+
+
+def run(*arguments: object):
+    return CliRunner().invoke(app, ["solve", *map(str, arguments)])
+
+
+def test_the_page_fits_80_columns_and_has_its_sections(case):
+    page = run(case, "--uncertainty", "--samples", 128).stdout
+    section = page[page.index("How sure is the answer") :]
+    assert max(map(len, section.splitlines())) <= 80
+    assert section.isprintable() or set(filter(lambda char: not char.isprintable(), section)) == {"\n"}
+    for said in (
+        "128 samples, drawn twice (seed 1)",
+        "its scenarios are not sampled",
+        "fluid.rheology.plastic_viscosity normal 60 %",
+        "Probability that a limit fails",
+        "What the spread of the head loss comes from",
+        "Head loss with one input changed",
+        "of 'normal 60 %' is not possible",
+        "a law of the rheology is asked beyond the range tested in",
+        "Not sampled, judged at the stated inputs alone:",
+    ):
+        assert said in " ".join(section.split()), said
+
+
+def test_without_it_nothing_of_it_is_printed(case):
+    assert "How sure" not in run(case).stdout
+    assert "uncertainty" not in json.loads(run(case, "--json").stdout)
+
+
+def test_the_document_is_one_line_of_json_with_its_figures(case):
+    answer = run(case, "--uncertainty", "--json", "--samples", 256, "--seed", 5)
+    (line,) = answer.stdout.splitlines()
+    found = json.loads(line)["uncertainty"]
+    assert (found["samples"], found["seed"], found["lines_solved"]) == (256, 5, 256 * 6)
+    head = found["figures"]["head_loss_m"]
+    assert head["p5"] < head["p50"] < head["p95"]
+    assert head["standard_errors"]["p95"] > 0
+    assert head["sensitivity"][0]["input"] == "fluid.solids.mass_fraction"
+    assert {"p5", "sensitivity"} <= found["figures"]["hydraulic_power_W"].keys() & found["figures"][
+        "total_head_m"
+    ].keys()
+    (limit, deposition) = found["limits"]
+    assert limit["name"] == "head_loss"
+    assert 0.0 < limit["probability_of_failing"] < 1.0
+    assert deposition["name"] == "deposition"
+    assert {one["input"] for one in found["tornado"]} == {one["name"] for one in found["inputs"]}
+    impossible = {one["name"]: one["impossible_share"] for one in found["inputs"]}
+    assert impossible["fluid.rheology.plastic_viscosity"] == pytest.approx(0.0478, abs=1e-4)
+    assert {"saltelli-2010", "jansen-1999", "gum-rectangular"} <= {one["key"] for one in found["methods"]}
+
+
+def test_the_same_command_prints_the_same_twice(case):
+    arguments = (case, "--uncertainty", "--json", "--samples", 64)
+    assert run(*arguments).stdout == run(*arguments).stdout
+
+
+@pytest.mark.parametrize(
+    ("arguments", "words"),
+    [
+        (("--uncertainty", "--samples", "0"), "--samples  found 0 samples; from 64 to"),
+        (("--uncertainty", "--samples", "-64"), "--samples  found -64 samples"),
+        (
+            ("--uncertainty", "--samples", "1000"),
+            "a power of two is needed, where the points are balanced: 512 or 1024",
+        ),
+        (("--uncertainty", "--samples", "1" + "0" * 30), "samples; from 64 to"),
+        (("--uncertainty", "--seed", "-1"), "--seed  found the seed -1"),
+        (("--samples", "64"), "--samples  is of --uncertainty, which is not asked for"),
+        (("--seed", "2"), "--seed  is of --uncertainty"),
+    ],
+)
+def test_samples_that_are_not_accepted(case, arguments, words):
+    answer = run(case, *arguments)
+    assert answer.exit_code == 2
+    assert words in answer.stderr
+    assert answer.stdout == ""
+
+
+def test_nothing_uncertain_is_told(tmp_path):
+    path = tmp_path / "sure.yaml"
+    text = CASE.partition("uncertainty:")[0]
+    newtonian = (
+        text[: text.index("    model")] + "    {model: newtonian, viscosity: 2 mPa.s}\n" + text[text.index("flow:") :]
+    )
+    path.write_text(newtonian, encoding="utf-8")
+    answer = run(path, "--uncertainty")
+    assert answer.exit_code == 2
+    assert answer.stderr == (
+        f"{path}  uncertainty  nothing in the case is uncertain; give it inputs with their tolerances "
+        "(docs/uncertainty.md)\n"
+    )
+
+
+def test_lines_without_an_answer_are_told():
+    result = uncertainty(load_text(CASE), samples=64)
+    page = " ".join(uncertainty_page(replace(result, lost=37)).split())
+    assert "no answer in 37 of the lines solved (9.6 %); no figure holds them" in page
+
+
+def test_bars_stand_on_either_side_of_the_middle():
+    bars = [
+        Bar("wide", {"head_loss": 10.0}, {"head_loss": 40.0}),
+        Bar("turned", {"head_loss": 25.0}, {"head_loss": 15.0}),
+        Bar("one side", {"head_loss": 20.0}, {"head_loss": 30.0}),
+    ]
+    lines = list(tornado_lines(bars, 20.0))
+    middles = {line.index("|") for line in lines}
+    assert len(middles) == 1
+    middle = middles.pop()
+    assert lines[0].count("-") == 10
+    assert lines[0].count("+") == 19
+    assert "+" in lines[1][:middle]
+    assert "-" in lines[1][middle:]
+    assert lines[2][middle - 1] == " "
