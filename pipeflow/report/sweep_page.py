@@ -34,7 +34,8 @@ def _page(sweep: Sweep) -> Iterator[str]:
 
         yield sweep_in_terminal(sweep).rstrip("\n")
         yield from heading("Limits")
-        yield from _limits(sweep)
+        found = [paragraph(text, mark=f"{status:<9}") for status, text in limits_over(sweep)]
+        yield from found or ["Every limit that the case states holds over the whole range."]
     else:
         yield from _grid(sweep)
     if sweep.cautions:
@@ -53,7 +54,7 @@ def sweep_table(sweep: Sweep) -> Iterator[str]:
         "press.\nkPa", "power\nkW", f"kWh/\n{per}", "limits",
     )  # fmt: skip
     yield paragraph(f"by {name_of(axis.variable)}; at design flow")
-    yield from table(columns, [tuple(_row(sweep, point)) for point in sweep.points], words=(1, 9))
+    yield from table(columns, [tuple(sweep_row(sweep, point)) for point in sweep.points], words=(1, 9))
     yield paragraph(
         "Head loss by the central and the upper figure; total head, pressure required, hydraulic power and energy by "
         f"the upper. Energy of the losses, {energy_unit(sweep.case)}. Limits as solve judges them.",
@@ -61,7 +62,8 @@ def sweep_table(sweep: Sweep) -> Iterator[str]:
     )
 
 
-def _row(sweep: Sweep, point: SweptPoint) -> Iterator[str]:
+def sweep_row(sweep: Sweep, point: SweptPoint) -> Iterator[str]:
+    """Cells of one point of a sweep of one input."""
     yield figure_and_unit(sweep.axes[0].variable, point.values[0])[0]
     yield SHORT[point.regime]
     yield significant(point.velocity, 3)
@@ -74,13 +76,13 @@ def _row(sweep: Sweep, point: SweptPoint) -> Iterator[str]:
     yield SHOWN[point.status]
 
 
-def _limits(sweep: Sweep) -> Iterator[str]:
-    """Where each check fails or calls for thought, the failing first."""
-    found = list(_runs(sweep, "fail")) + list(_runs(sweep, "caution"))
-    yield from found or ["Every limit that the case states holds over the whole range."]
+def limits_over(sweep: Sweep) -> Iterator[tuple[str, str]]:
+    """Where each check fails or calls for thought, the failing first: its status, and the values in words."""
+    yield from _runs(sweep, "fail")
+    yield from _runs(sweep, "caution")
 
 
-def _runs(sweep: Sweep, status: str) -> Iterator[str]:
+def _runs(sweep: Sweep, status: str) -> Iterator[tuple[str, str]]:
     axis = sweep.axes[0]
     every = [{check.name: check for check in point.checks} for point in sweep.points]
     for name in dict.fromkeys(name for one in every for name in one):
@@ -88,7 +90,7 @@ def _runs(sweep: Sweep, status: str) -> Iterator[str]:
         if any(chosen):
             runs = (_run(axis.variable, *ends) for ends in steps(axis.values, chosen))
             check = next(one[name] for one, is_one in zip(every, chosen, strict=True) if is_one)
-            yield paragraph(f"{name.replace('_', ' ')}{_sense(check)}: {', '.join(runs)}", mark=f"{SHOWN[status]:<9}")
+            yield SHOWN[status], f"{name.replace('_', ' ')}{_sense(check)}: {', '.join(runs)}"
 
 
 def _run(variable: object, first: float, last: float) -> str:

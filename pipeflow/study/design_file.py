@@ -12,6 +12,7 @@ from pipeflow.study.curve_result import CurveResult
 from pipeflow.study.result import Result
 from pipeflow.study.sizing import SizingResult, size
 from pipeflow.study.solving import solve
+from pipeflow.study.sweeping import Sweep, solids_sweep
 from pipeflow.verdict import Check
 
 
@@ -19,7 +20,8 @@ from pipeflow.verdict import Check
 class DesignFile:
     """A case solved, its system curves with the pumps, its sizes, and what rests on assumed inputs.
 
-    ``sizing`` is None where no size can be tried; ``why_not_sized`` then says what the case lacks.
+    ``sizing`` is None where no size can be tried; ``why_not_sized`` then says what the case lacks. ``solids`` is the
+    line at a little more and less solids, None where the rheology does not follow them.
     """
 
     result: Result
@@ -27,6 +29,7 @@ class DesignFile:
     sizing: SizingResult | None
     why_not_sized: str
     assumed: tuple[AssumedInput, ...]
+    solids: Sweep | None = None
 
     @property
     def case(self) -> Case:
@@ -58,7 +61,7 @@ class DesignFile:
 def design_file(case: Case) -> DesignFile:
     """Work a case out for its page."""
     sizing, why_not = _sizing(case)
-    return DesignFile(solve(case), curve(case), sizing, why_not, assumed_inputs(case))
+    return DesignFile(solve(case), curve(case), sizing, why_not, assumed_inputs(case), solids_sweep(case))
 
 
 def _sizing(case: Case) -> tuple[SizingResult | None, str]:

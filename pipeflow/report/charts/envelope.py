@@ -8,8 +8,8 @@ import numpy as np
 from matplotlib.axes import Axes
 
 from pipeflow.arrays import Array
-from pipeflow.report.charts.canvas import FILL, GREY, INK, SMALL, as_svg, drawing, shortened
-from pipeflow.report.charts.map_parts import contours, draw_boundaries, map_axes, shown
+from pipeflow.report.charts.canvas import FILL, INK, as_svg, drawing, shortened
+from pipeflow.report.charts.map_parts import contours, draw_boundaries, map_axes, said_below, shown
 from pipeflow.report.sweep_text import boundary_name, energy_unit, name_of
 from pipeflow.study.boundaries import Boundary
 from pipeflow.study.envelope import Envelope, Interval
@@ -27,10 +27,15 @@ def envelope_chart(envelope: Envelope) -> str:
         _hatch(axes, envelope)
         contours(axes, across, up, np.array(envelope.energy), 9)
         variables = envelope.flow.variable, envelope.up.variable
-        draw_boundaries(axes, envelope.boundaries, variables, lambda one: named(one, envelope))
+        draw_boundaries(axes, drawn(envelope), variables, lambda one: named(one, envelope))
         _present(axes, envelope)
-        _said(figure, envelope)
+        said_below(figure, _said(envelope))
         return as_svg(figure, NAME, f"Duty envelope: {envelope.case.title}", list(_described(envelope)))
+
+
+def drawn(envelope: Envelope) -> list[Boundary]:
+    """The boundaries that are more than one point at the edge of the map."""
+    return [one for one in envelope.boundaries if max(len(line) for line in one.lines) > 1]
 
 
 def named(one: Boundary, envelope: Envelope) -> str:
@@ -38,6 +43,7 @@ def named(one: Boundary, envelope: Envelope) -> str:
     stated = envelope.limits.get(one.name)
     sign = "≤" if stated and stated.sense == "at most" else "≥"
     limit = f" {sign} {format_si(stated.limit, stated.unit)}" if stated and stated.limit is not None else ""
+    limit = limit.replace(" ", "\u00a0").replace("\u00a0", " ", 1)
     pipe = f", {shortened(envelope.governing_pipe, 20)}" if one.name in REGIMES else ""
     return f"{shortened(boundary_name(one), 44)}{limit}{pipe}"
 
@@ -98,14 +104,11 @@ def _present(axes: Axes, envelope: Envelope) -> None:
     axes.plot([flows[1]], [value], marker="D", markersize=6, color=INK, markerfacecolor="white", zorder=7)
 
 
-def _said(figure: object, envelope: Envelope) -> None:
-    wide, _ = figure.get_size_inches()  # type: ignore[attr-defined]
-    unit = energy_unit(envelope.case).replace(" per ", "\nper ")
-    text = (
-        "hatched: every limit holds\ndotted: by the central figure\nalone\n◇ the case, its flows\n"
-        f"thin lines: energy, {unit}"
-    )
-    figure.text(1.0 - 2.13 / wide, 0.02, text, fontsize=SMALL, va="bottom", color=GREY, linespacing=1.2)  # type: ignore[attr-defined]
+def _said(envelope: Envelope) -> list[str]:
+    return [
+        "hatched: every limit holds; dotted: by the central figure alone; ◇ the case with its flows",
+        f"thin lines: energy of the losses, {energy_unit(envelope.case)}",
+    ]
 
 
 def _described(envelope: Envelope) -> Iterator[str]:
@@ -116,5 +119,5 @@ def _described(envelope: Envelope) -> Iterator[str]:
         yield f"At the value of the case from {low} to {high} m3/h."
     if not own.upper:
         yield "At the value of the case there is no flow at which every limit holds by the upper figure."
-    for number, boundary in enumerate(envelope.boundaries, 1):
+    for number, boundary in enumerate(drawn(envelope), 1):
         yield f"{number}: {named(boundary, envelope)}."

@@ -23,7 +23,7 @@ from pipeflow.study.limits_over import REGIMES
 from pipeflow.study.pumps_over import is_candidate
 from pipeflow.units import significant, to_display
 
-LEFT, RIGHT, UNDER, OVER, HEIGHT = 0.66, 2.3, 0.5, 0.15, 4.1
+LEFT, RIGHT, UNDER, OVER, HEIGHT = 0.66, 2.3, 0.88, 0.15, 4.1
 SAMPLE = 22.0
 """Length of the sample of a line in the key, points."""
 
@@ -34,6 +34,18 @@ def shown(variable: Variable, values: Sequence[float] | Array) -> Array:
     return np.array([to_display(float(value), unit) if unit else float(value) for value in values])
 
 
+def printed(variable: Variable) -> str:
+    """What stands on a printed axis."""
+    return labelled(variable).replace("m3", "m³")
+
+
+def said_below(figure: Figure, lines: Sequence[str]) -> None:
+    """Say below the panel what is drawn in it."""
+    wide, _ = figure.get_size_inches()
+    text: dict[str, Any] = {"fontsize": SMALL, "color": GREY, "ha": "left", "va": "bottom", "linespacing": 1.25}
+    figure.text(LEFT / wide, 0.012, "\n".join(lines), **text)
+
+
 def map_axes(across: Axis, up: Axis) -> tuple[Figure, Axes]:
     """A panel over the two inputs, room for the key beside it."""
     figure = canvas(UNDER + HEIGHT + OVER)
@@ -41,7 +53,7 @@ def map_axes(across: Axis, up: Axis) -> tuple[Figure, Axes]:
     for axis, given in ((axes.xaxis, across), (axes.yaxis, up)):
         ends = shown(given.variable, [given.values[0], given.values[-1]])
         _ticks(axis, float(ends[0]), float(ends[1]))
-        axis.set_label_text(labelled(given.variable))
+        axis.set_label_text(printed(given.variable))
     return figure, axes
 
 
@@ -134,7 +146,7 @@ def _key(axes: Axes, entries: Sequence[tuple[Look, str]]) -> None:
 def wrapped(text: str, room: float, size: float = SMALL) -> list[str]:
     """Break a text into lines no wider than ``room`` points; a word too long is cut."""
     lines = [""]
-    for word in text.split():
+    for word in text.split(" "):
         longer = f"{lines[-1]} {word}".strip()
         if size_of(longer, size)[0] <= room:
             lines[-1] = longer

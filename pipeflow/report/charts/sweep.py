@@ -22,12 +22,12 @@ from pipeflow.report.charts.canvas import (
     shortened,
 )
 from pipeflow.report.charts.labels import Above, Beside
-from pipeflow.report.charts.map_parts import shown
-from pipeflow.report.sweep_text import labelled, steps, told
+from pipeflow.report.charts.map_parts import printed, shown
+from pipeflow.report.sweep_text import steps, told
 from pipeflow.study.sweeping import Sweep
 from pipeflow.units import significant
 
-LEFT, RIGHT, UNDER, OVER, MAIN, SMALL_PANEL, BETWEEN = 0.66, 1.5, 0.5, 0.5, 2.6, 0.9, 0.18
+LEFT, RIGHT, UNDER, OVER, MAIN, SMALL_PANEL, BETWEEN = 0.8, 1.36, 0.5, 0.5, 2.6, 0.9, 0.18
 ALIKE = 5e-3
 NAME = "sweep"
 
@@ -63,7 +63,7 @@ def _figure(sweep: Sweep) -> Figure:
         axes.set_xlim(float(across[0]), float(across[-1]))
     for axes in panels[:-1]:
         axes.tick_params(labelbottom=False)
-    panels[-1].set_xlabel(labelled(sweep.axes[0].variable))
+    panels[-1].set_xlabel(printed(sweep.axes[0].variable))
     limit = sweep.case.limits.head_loss
     _pair(main, across, sweep.grid("head_loss"), sweep.grid("head_loss_upper"), limit, 7)
     main.set_ylabel("head loss, m of the slurry")

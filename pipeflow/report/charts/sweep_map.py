@@ -6,8 +6,8 @@ from collections.abc import Iterator
 
 import numpy as np
 
-from pipeflow.report.charts.canvas import GREY, SMALL, as_svg, drawing, shortened
-from pipeflow.report.charts.map_parts import contours, draw_boundaries, map_axes, shown
+from pipeflow.report.charts.canvas import GREY, as_svg, drawing, shortened
+from pipeflow.report.charts.map_parts import contours, draw_boundaries, map_axes, said_below, shown
 from pipeflow.report.sweep_text import boundary_name, told
 from pipeflow.study.sweeping import Sweep
 
@@ -26,9 +26,7 @@ def sweep_map(sweep: Sweep) -> str:
         holds = np.array([point.status != "fail" for point in sweep.points]).reshape(sweep.shape)
         x, y = (grid[holds] for grid in np.meshgrid(across, up, indexing="ij"))
         axes.plot(x, y, ".", color=GREY, markersize=3.0, zorder=3)
-        wide, _ = figure.get_size_inches()
-        said = "thin lines: head loss, m,\nupper figure\n· every limit holds at the point"
-        figure.text(1.0 - 2.13 / wide, 0.02, said, fontsize=SMALL, va="bottom", color=GREY, linespacing=1.2)
+        said_below(figure, ["thin lines: head loss in m by the upper figure; dots: points where every limit holds"])
         return as_svg(figure, NAME, f"Sweep: {sweep.case.title}", list(_described(sweep)))
 
 

@@ -9,6 +9,7 @@ from pipeflow.case.source_files import SourceFile
 from pipeflow.record.inputs import digest, encoded, without_folder
 from pipeflow.report.html.about_line import line_sections
 from pipeflow.report.html.about_pumps import pump_sections
+from pipeflow.report.html.about_solids import solids_sections
 from pipeflow.report.html.about_trust import safety_section, trust_sections
 from pipeflow.report.html.blocks import Block, Section, Table, Text, Verbatim, names_and_values, section
 from pipeflow.report.html.rendering import rendered
@@ -51,6 +52,7 @@ def report_page(found: DesignFile, files: Sequence[SourceFile]) -> str:
 def _sections(found: DesignFile, files: Sequence[SourceFile]) -> Iterator[Section]:
     yield from section("summary", "Summary", names_and_values("Summary", summary_rows(found)))
     yield from line_sections(found.result)
+    yield from solids_sections(found.solids)
     yield from pump_sections(found)
     yield from trust_sections(found)
     yield from safety_section()
