@@ -84,7 +84,7 @@ def test_charts_are_drawn(width, browser, pages):
     page = Page(browser, (pages / "thickener-underflow.html").as_uri(), width)
     try:
         sizes = page.value("[...document.querySelectorAll('svg')].map(one => one.getBoundingClientRect().width)")
-        assert len(sizes) == 3
+        assert len(sizes) >= 3
         assert all(500 <= size <= 700 for size in sizes)
         assert page.value("[...document.querySelectorAll('svg text')].every(one => one.getBBox().width > 0)")
     finally:
