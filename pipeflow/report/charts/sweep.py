@@ -27,7 +27,7 @@ from pipeflow.report.sweep_text import steps, told
 from pipeflow.study.sweeping import Sweep
 from pipeflow.units import significant
 
-LEFT, RIGHT, UNDER, OVER, MAIN, SMALL_PANEL, BETWEEN = 0.8, 1.36, 0.5, 0.5, 2.6, 0.9, 0.18
+LEFT, RIGHT, UNDER, OVER, OVER_NONE, MAIN, SMALL_PANEL, BETWEEN = 0.8, 1.36, 0.5, 0.5, 0.12, 2.6, 0.9, 0.18
 ALIKE = 5e-3
 NAME = "sweep"
 
@@ -52,7 +52,7 @@ def _figure(sweep: Sweep) -> Figure:
     has_energy = bool(np.isfinite(sweep.grid("specific_energy")).any())
     below = 2 if has_energy else 1
     base = UNDER + below * (SMALL_PANEL + BETWEEN)
-    figure = canvas(base + MAIN + OVER)
+    figure = canvas(base + MAIN + (OVER if sweep.fails else OVER_NONE))
     width = figure.get_size_inches()[0] - LEFT - RIGHT
     across = shown(sweep.axes[0].variable, sweep.axes[0].values)
     main = panel(figure, LEFT, base, width, MAIN)

@@ -13,7 +13,7 @@ from pipeflow.report.sweep_text import energy_unit
 from pipeflow.study.sweeping import Sweep
 
 COLUMNS = (
-    "solids", "regime", "fastest\nm/s", "head loss\nm", "upper\nm", "total head\nm", "pressure\nkPa", "power\nkW",
+    "solids", "regime", "head loss\nm", "upper\nm", "total head\nm", "pressure\nkPa", "power\nkW",
     "energy\nkWh/t.km", "limits",
 )  # fmt: skip
 
@@ -25,11 +25,11 @@ def solids_sections(sweep: Sweep | None) -> Iterator[Section]:
 
 
 def _solids(sweep: Sweep) -> Iterator[Block]:
-    rows = [tuple(sweep_row(sweep, point)) for point in sweep.points]
-    yield from table("The line by the mass fraction of the solids", COLUMNS, rows, (1, 9))
+    rows = [_without_velocity(tuple(sweep_row(sweep, point))) for point in sweep.points]
+    yield from table("The line by the mass fraction of the solids", COLUMNS, rows, (0, 1, 8))
     yield Text(
-        "At design flow; total head, pressure, hydraulic power and energy of the losses by the upper figure, the energy "
-        f"in {energy_unit(sweep.case)}. Limits over the whole range of flow, as the checks judge them."
+        "At design flow; total head, pressure, hydraulic power and energy of the losses by the upper figure, the "
+        f"energy in {energy_unit(sweep.case)}. Limits over the whole range of flow, as the checks judge them."
     )
     if len(sweep.points) > 1:
         yield Chart(Markup(sweep_chart_svg(sweep)), "Head loss, pressure required and energy by the solids; hatched "
@@ -38,3 +38,7 @@ def _solids(sweep: Sweep) -> Iterator[Block]:
     if found:
         yield Items(found)
     yield from (Text(caution, "strong") for caution in sweep.cautions)
+
+
+def _without_velocity(row: tuple[str, ...]) -> tuple[str, ...]:
+    return row[:2] + row[3:]
