@@ -1,7 +1,7 @@
 """Check the documents: ``python docs/check.py``.
 
-Links inside the project lead somewhere, every python and console snippet of README and docs runs, the generated pages
-are fresh, and every command, case key and method is documented.
+Links inside the project lead somewhere, every snippet of README and docs runs, loads or is marked as not run, the
+generated pages are fresh, and every command, case key and method is documented. The tutorial is run by its test.
 """
 
 from __future__ import annotations
@@ -17,6 +17,10 @@ from pipeflow.friction.criteria import CRITERIA
 from pipeflow.friction.methods import TURBULENT
 
 ROOT = Path(__file__).parent.parent
+sys.path.insert(0, str(ROOT / "tests" / "guide"))
+
+from snippets import faults  # noqa: E402
+
 PAGES = [ROOT / "README.md", ROOT / "DEVELOPERS.md", *sorted((ROOT / "docs").glob("*.md"))]
 LINK = re.compile(r"\]\(([^)#\s]+)(?:#[^)]*)?\)")
 PYTHON = re.compile(r"^```python\n(.*?)^```$", re.DOTALL | re.MULTILINE)
@@ -39,6 +43,12 @@ def failing_snippets() -> Iterator[str]:
             )
             if run.returncode:
                 yield f"{page.name}: python snippet {number} fails: {run.stderr.strip().splitlines()[-1]}"
+
+
+def wrong_snippets() -> Iterator[str]:
+    """Name commands in a page that the program does not know, and cases that do not load."""
+    for page in PAGES:
+        yield from faults(page)
 
 
 def failing_doctests() -> Iterator[str]:
@@ -78,7 +88,7 @@ def stale_pages() -> Iterator[str]:
 
 def main() -> int:
     """Print what is wrong."""
-    checks = (broken_links, failing_snippets, failing_doctests, undocumented, stale_pages)
+    checks = (broken_links, failing_snippets, wrong_snippets, failing_doctests, undocumented, stale_pages)
     found = [problem for check in checks for problem in check()]
     print("\n".join(found) or f"documents: {len(PAGES)} pages, {len(checks)} checks, nothing wrong")
     return 1 if found else 0

@@ -6,8 +6,9 @@ import re
 from collections.abc import Iterator
 from dataclasses import dataclass
 from pathlib import Path
+from textwrap import dedent
 
-_FENCE = re.compile(r"^```([^\n`]*)\n(.*?)^```$", re.DOTALL | re.MULTILINE)
+_FENCE = re.compile(r"^( *)```([^\n`]*)\n(.*?)^ *```$", re.DOTALL | re.MULTILINE)
 
 
 @dataclass(frozen=True)
@@ -23,7 +24,7 @@ class Block:
     file : str
         The file it is written to, or changes: ``file=NAME`` after the language; empty where it is none.
     text : str
-        What stands in it.
+        What stands in it, not indented.
     before : str
         The line before its fence, where a remark on it may stand.
     """
@@ -39,10 +40,10 @@ def blocks(page: Path) -> Iterator[Block]:
     """Read the fenced blocks of a page, in their order."""
     text = page.read_text(encoding="utf-8")
     for found in _FENCE.finditer(text):
-        language, _, rest = found[1].partition(" ")
+        language, _, rest = found[2].partition(" ")
         ahead = text[: found.start()].rstrip("\n").splitlines()
         line = text.count("\n", 0, found.start()) + 1
-        yield Block(line, language, rest.removeprefix("file="), found[2], ahead[-1] if ahead else "")
+        yield Block(line, language, rest.removeprefix("file="), dedent(found[3]), ahead[-1] if ahead else "")
 
 
 def changed(text: str, change: str) -> str:
