@@ -140,11 +140,11 @@ def _draw_own(axes: Axes, beside: Beside, placer: Placer, own: Condition) -> Non
     curve, flow = own.system, _flows(own.system.flow)
     central, upper = np.array(curve.pump_head), np.array(curve.pump_head_upper)
     apart = bool(np.any(upper - central > ALIKE * np.abs(central)))
-    axes.plot(flow, central, color=INK, linewidth=2.0, marker="o" if len(flow) == 1 else "", label="central")
+    axes.plot(flow, central, color=INK, linewidth=2.0, marker="o" if len(flow) == 1 else "")
     beside.add(flow[-1], central[-1], "the case, central" if apart else "the case", SMALL)
     placer.avoid(list(flow), list(central))
     if apart:
-        axes.plot(flow, upper, color=INK, linewidth=1.2, dashes=(8, 2.5), label="upper")
+        axes.plot(flow, upper, color=INK, linewidth=1.2, dashes=(8, 2.5))
         beside.add(flow[-1], upper[-1], "the case, upper", SMALL)
         placer.avoid(list(flow), list(upper))
     axes.axhline(curve.static_head[0], color=GREY, linewidth=0.8, dashes=(1, 2))
@@ -166,7 +166,8 @@ def _draw_condition(axes: Axes, beside: Beside, placer: Placer, condition: Condi
 def _draw_pump(axes: Axes, beside: Beside, placer: Placer, pump: PumpOnLine, index: int) -> None:
     mark = MARKS[index % len(MARKS)]
     if pump.water:
-        axes.plot(_flows(pump.water.flow), pump.water.head, color=PALE, linewidth=0.7, label=f"water {index}")
+        axes.plot(_flows(pump.water.flow), pump.water.head, color=PALE, linewidth=0.7)
+        placer.avoid(list(_flows(pump.water.flow)), pump.water.head, 3.0)
     curve = _shown(pump)
     flow, head = _flows(curve.flow), np.array(curve.head)
     every = max(len(flow) // 8, 1)
