@@ -2,8 +2,8 @@
 
 A command to type stands in a ``sh`` or ``console`` block, a case or parts of one in a ``yaml`` block. What cannot be
 run has the reason on the line before its fence: ``<!-- not run: why -->``. Blocks of other languages show what a file
-holds or what is printed. The tutorial, whose blocks build on each other, is run as a whole by its own test, and the first
-two blocks of the README are run by ``.ci/run``; ``python`` blocks are run by ``docs/check.py``.
+holds or what is printed. The tutorial, whose blocks build on each other, is run as a whole by its own test, the first
+two blocks of the README by ``.ci/run``, and ``python`` blocks by ``docs/check.py``.
 """
 
 from __future__ import annotations
