@@ -12,13 +12,13 @@ import json
 import math
 from collections.abc import Iterator, Mapping
 from dataclasses import MISSING, Field, fields, is_dataclass, replace
-from functools import cache
 from pathlib import PurePath
 from typing import Any
 
 import numpy as np
 
 from pipeflow.case.model import Case
+from pipeflow.record.kinds import classes, fits, kinds_of
 
 Json = Any
 """What ``json`` reads and writes: dict, list, str, float, int, bool or None."""
@@ -31,24 +31,6 @@ DIGITS = 12
 
 class UnknownInputsError(ValueError):
     """Inputs that this version of the program cannot make a case of; the message says why."""
-
-
-@cache
-def classes() -> dict[str, type[Any]]:
-    """Every class an input may be of, by its name."""
-    from pipeflow import sources
-    from pipeflow.case import model
-    from pipeflow.line import elements
-    from pipeflow.operability import pressures
-    from pipeflow.rheology import conditions, fitting, flowcurve, general, models, readings, sheet
-
-    rooms = (model, elements, pressures, models, general, conditions, sheet, fitting, flowcurve, readings, sources)
-    return {
-        name: found
-        for room in rooms
-        for name, found in vars(room).items()
-        if isinstance(found, type) and is_dataclass(found) and found.__module__ == room.__name__
-    }
 
 
 def without_folder(case: Case) -> Case:
@@ -131,7 +113,7 @@ def decoded(tree: Json) -> Any:
         return tree
     try:
         return _object(tree)
-    except (KeyError, TypeError, ValueError, OverflowError) as error:
+    except (KeyError, TypeError, ValueError, AttributeError, OverflowError) as error:
         if isinstance(error, UnknownInputsError):
             raise
         raise UnknownInputsError(f"its inputs are not as a record has them: {error}") from None
@@ -169,7 +151,11 @@ def _instance(kind: type[Any], told: dict[str, Json]) -> Any:
     lacking = [name for name, field in known.items() if name not in told and _default(field) is MISSING]
     if lacking:
         raise UnknownInputsError(f"its {kind.__name__} lacks {', '.join(lacking)}, which this version must have")
-    return kind(**{name: decoded(value) for name, value in told.items()})
+    values = {name: decoded(value) for name, value in told.items()}
+    wrong = [name for name, value in values.items() if not fits(value, kinds_of(kind.__name__)[name])]
+    if wrong:
+        raise UnknownInputsError(f"its {kind.__name__} has a {', '.join(wrong)} of another kind than this version's")
+    return kind(**values)
 
 
 def folded(tree: Json, seen: list[Json] | None = None) -> Json:
@@ -254,7 +240,9 @@ def differences(before: Json, after: Json, path: str = "") -> Iterator[str]:
 def _entries(tree: Json) -> dict[str, Json] | None:
     """What a node holds, by name; None for a leaf."""
     if isinstance(tree, dict):
-        inner = tree["entries"] if tree.get(MARK) == "map" else tree
-        return None if tree.get(MARK) in ("array", "number") else {k: v for k, v in inner.items() if k != MARK}
+        inner = tree.get("entries") if tree.get(MARK) == "map" else tree
+        if tree.get(MARK) in ("array", "number") or not isinstance(inner, dict):
+            return None
+        return {key: value for key, value in inner.items() if key != MARK}
     named = isinstance(tree, list) and tree and all(isinstance(one, dict) and "name" in one for one in tree)
     return {f"[{one['name']}": one for one in tree} if named else None

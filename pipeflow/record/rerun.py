@@ -288,8 +288,9 @@ def _without_effect(before: _Before, now: Record, explanations: dict[str, Explan
 
 
 def _scenarios(inputs: Json) -> dict[str, Json]:
-    entries: dict[str, Json] = inputs.get("scenarios", {}).get("entries", {})
-    return entries
+    held = inputs.get("scenarios")
+    entries = held.get("entries") if isinstance(held, dict) else None
+    return entries if isinstance(entries, dict) else {}
 
 
 def _unfelt(before: Json, after: Json) -> Iterator[str]:

@@ -95,10 +95,11 @@ def written(record: Record) -> str:
         "inputs": folded(record.inputs),
         "results": record.results,
     }
-    return json.dumps({**content, CHECKSUM: _checksum(content)}, indent=1, ensure_ascii=False, allow_nan=False) + "\n"
+    return json.dumps({**content, CHECKSUM: checksum(content)}, indent=1, ensure_ascii=False, allow_nan=False) + "\n"
 
 
-def _checksum(content: dict[str, Any]) -> str:
+def checksum(content: dict[str, Any]) -> str:
+    """SHA-256 of the content of a record, however it is spaced."""
     text = json.dumps(content, sort_keys=True, separators=(",", ":"), ensure_ascii=True)
     return hashlib.sha256(text.encode()).hexdigest()
 
@@ -138,8 +139,8 @@ def _understood(content: dict[str, Any]) -> Record:
     if found != FORMAT or isinstance(found, bool):
         age = "a newer" if isinstance(found, int | float) and found > FORMAT else "another"
         raise UnusableRecordError(f"of {age} format, {str(found)[:20]}; this version writes format {FORMAT}")
-    checksum = content.pop(CHECKSUM, None)
-    if checksum != _checksum(content):
+    stored = content.pop(CHECKSUM, None)
+    if stored != checksum(content):
         raise UnusableRecordError("damaged, or changed by hand: its checksum does not fit")
     if not isinstance(content.get("inputs"), dict) or content["inputs"].get("is") != "Case":
         raise UnusableRecordError("damaged: its inputs are no case")

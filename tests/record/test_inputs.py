@@ -14,7 +14,6 @@ from pipeflow.record import document
 from pipeflow.record.inputs import (
     MARK,
     UnknownInputsError,
-    classes,
     decoded,
     differences,
     digest,
@@ -23,6 +22,8 @@ from pipeflow.record.inputs import (
     unfolded,
     without_folder,
 )
+from pipeflow.record.kinds import classes
+from pipeflow.rheology.fitting import ModelFit
 from pipeflow.study import solve
 
 
@@ -73,9 +74,10 @@ def test_every_class_of_a_case_is_known(path):
 
 
 def test_numbers_that_json_has_not_come_back():
-    pipe = Pipe("p", np.array([0.1, np.nan, -0.0]), np.float64(np.inf), rise=np.asarray(2.5))
-    back = decoded(through_json(encoded(pipe)))
-    assert same(back, replace(pipe, length=float("inf")))
+    pipe = Pipe("p", 0.1, np.float64(np.inf), rise=np.asarray(2.5))
+    assert same(decoded(through_json(encoded(pipe))), replace(pipe, length=float("inf")))
+    fit = ModelFit("m", residuals=np.array([[0.1, np.nan], [-0.0, np.inf]]))
+    assert same(decoded(through_json(encoded(fit))), fit)
 
 
 @pytest.mark.parametrize(
@@ -111,6 +113,16 @@ def test_differences_name_elements():
         (lambda tree: tree["route"][0].pop("length"), "Pipe lacks length"),
         (lambda tree: tree["route"][0].update({MARK: "Popen"}), "'Popen'"),
         (lambda tree: tree["route"][0].update({MARK: "os.system"}), "'os.system'"),
+        (lambda tree: tree["route"][0].update(length="ten"), "Pipe has a length of another kind"),
+        (lambda tree: tree["route"][0].update(length=True), "Pipe has a length of another kind"),
+        (lambda tree: tree["route"].append(3.0), "Case has a route of another kind"),
+        (lambda tree: tree.update(flow=None), "Case has a flow of another kind"),
+        (lambda tree: tree["methods"].update(turbulent=1.0), "Methods has a turbulent of another kind"),
+        (lambda tree: tree["route"][0]["fittings"]["entries"].update(exit="x"), "Pipe has a fittings of another kind"),
+        (
+            lambda tree: tree["flow"].update(design={MARK: "array", "of": "<f8", "shape": [2], "values": [1.0, 2.0]}),
+            "FlowRange has a design of another kind",
+        ),
         (lambda tree: tree["route"][0].pop(MARK), "not as a record has them"),
         (lambda tree: tree["flow"].update(design={MARK: "number", "text": "ten"}), "not as a record has them"),
         (lambda tree: tree["flow"].update(design={MARK: "array", "of": "O", "shape": [1], "values": [1]}), "array"),

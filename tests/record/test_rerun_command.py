@@ -2,6 +2,7 @@
 
 import json
 import os
+import random
 import shutil
 import subprocess
 import sys
@@ -15,7 +16,10 @@ from pipeflow.cli import app
 from pipeflow.record.found import is_case
 from pipeflow.record.many import each
 from pipeflow.record.rerun import rerun
+from pipeflow.record.store import checksum
 from pipeflow.record.tolerance import tolerance_of
+from pipeflow.report.rerun_document import rerun_document
+from pipeflow.report.rerun_page import rerun_pages
 
 SCENARIO = "scenarios: {thick: {fluid.density: 1500 kg/m3}}\n"
 
@@ -282,6 +286,34 @@ def test_a_record_that_cannot_be_written_leaves_with_2(tmp_path):
     found = run(path, "--accept")
     assert found.exit_code == 2
     assert "can't be kept aside" in found.stderr
+
+
+def places(tree, path=()):
+    yield path
+    items = tree.items() if isinstance(tree, dict) else enumerate(tree) if isinstance(tree, list) else ()
+    for key, value in items:
+        yield from places(value, (*path, key))
+
+
+def test_a_record_of_any_content_ends_in_a_page(line):
+    """Values of every kind in any place, under a checksum that fits."""
+    path, draw = line.with_name("line.record.json"), random.Random(1)
+    put(line, yield_stress="12 Pa", length="220 m")
+    text = path.read_text(encoding="utf-8")
+    everywhere = [place for place in places(json.loads(text)) if place and place[0] in ("program", "inputs", "results")]
+    for _ in range(60):
+        content = json.loads(text)
+        *way, last = draw.choice(everywhere)
+        node = content
+        for step in way:
+            node = node[step]
+        node[last] = draw.choice([None, "x", -1, 1e308, True, [], {}, [1, 2], {"is": "Pipe"}, {"is": "map"}])
+        del content["sha256"]
+        path.write_text(json.dumps({**content, "sha256": checksum(content)}), encoding="utf-8")
+        found = rerun(str(line))
+        assert found.exit_code in (0, 1)
+        assert rerun_pages([found], (), (), 1e-3)
+        assert json.dumps(rerun_document(found, 1e-3), allow_nan=False)
 
 
 def test_control_characters_of_a_record_stay_off_the_terminal(line):
