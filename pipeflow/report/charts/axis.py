@@ -4,6 +4,9 @@ from __future__ import annotations
 
 import math
 
+LEAST_SPAN = 0.05
+"""An axis spans at least this share of its values: what differs by less is drawn as one height."""
+
 
 def round_ends(lowest: float, highest: float, most: int = 8) -> tuple[float, float, float]:
     """Round ends of an axis that holds two values, and the step of its ticks: 1, 2 or 5 of a power of ten.
@@ -13,7 +16,7 @@ def round_ends(lowest: float, highest: float, most: int = 8) -> tuple[float, flo
     >>> round_ends(0.0, 187.0)
     (0.0, 200.0, 50.0)
     """
-    span = highest - lowest if highest > lowest else abs(highest) or 1.0
+    span = max(highest - lowest, LEAST_SPAN * max(abs(lowest), abs(highest))) or 1.0
     power = 10.0 ** math.floor(math.log10(span / most))
     step = next(size * power for size in (1.0, 2.0, 5.0, 10.0) if size * power * most >= span * (1.0 - 1e-9))
     low, high = math.floor(lowest / step + 1e-9), math.ceil(highest / step - 1e-9)

@@ -56,6 +56,7 @@ _STYLE: dict[str, Any] = {
     "axes.spines.top": False,
     "axes.spines.right": False,
     "axes.unicode_minus": True,
+    "axes.formatter.useoffset": False,
     "xtick.color": INK,
     "ytick.color": INK,
     "xtick.direction": "in",
