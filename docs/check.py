@@ -61,8 +61,9 @@ def failing_doctests() -> Iterator[str]:
 
 
 def undocumented() -> Iterator[str]:
-    """Name methods and commands that no page speaks of."""
-    text = "\n".join(page.read_text(encoding="utf-8") for page in PAGES)
+    """Name methods and commands that no page speaks of, but for the one generated from the commands."""
+    written = [page for page in PAGES if page.name != "commands.md"]
+    text = "\n".join(page.read_text(encoding="utf-8") for page in written)
     yield from (f"method {key} is in no page" for key in (*TURBULENT, *CRITERIA) if f"`{key}`" not in text)
     help_text = subprocess.run(
         [sys.executable, "-c", "from pipeflow.cli import main; main()", "--help"],

@@ -23,6 +23,7 @@ READ_ON = {
     "size": "operability.md#sizing",
     "curve": "pumps.md",
     "sweep": "sweep.md",
+    "envelope": "sweep.md",
     "report": "report.md",
     "rerun": "rerun.md",
     "methods": "methods.md",
