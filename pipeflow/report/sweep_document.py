@@ -5,12 +5,11 @@ from __future__ import annotations
 import math
 from typing import Any
 
-from pipeflow.case.axes import Axis
 from pipeflow.report.sweep_text import energy_unit
 from pipeflow.study.boundaries import Boundary
 from pipeflow.study.envelope import Envelope, Interval
 from pipeflow.study.result import SAFETY_NOTICE
-from pipeflow.study.sweeping import Sweep, SweptPoint
+from pipeflow.study.sweeping import Axis, Sweep, SweptPoint
 from pipeflow.verdict import Check
 
 SI = {

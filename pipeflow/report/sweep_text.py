@@ -4,10 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from pipeflow.case.axes import Axis
 from pipeflow.case.model import Case
-from pipeflow.case.variables import Variable
 from pipeflow.study.boundaries import Boundary
+from pipeflow.study.sweeping import Axis, Variable
 from pipeflow.units import format_value, significant
 
 NAMES = {

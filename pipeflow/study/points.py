@@ -43,7 +43,8 @@ class Points:
         """What ``solve`` finds of one point."""
         case, line = self.cases[index], self.one(index)
         flows = (case.flow.design, case.flow.minimum, case.flow.maximum)
-        return tuple(rheology_checks(beyond_tested(case, line, flows), checks(case, line)))
+        with np.errstate(all="ignore"):
+            return tuple(rheology_checks(beyond_tested(case, line, flows), checks(case, line)))
 
 
 def points(case: Case, values: Mapping[str, Array], flow: Array | None = None) -> Points:

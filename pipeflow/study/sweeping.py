@@ -9,8 +9,9 @@ from typing import Final
 import numpy as np
 
 from pipeflow.arrays import Array
-from pipeflow.case.axes import Axis
+from pipeflow.case.axes import Axis as Axis
 from pipeflow.case.model import Case, shown_condition
+from pipeflow.case.variables import Variable as Variable
 from pipeflow.case.variables import variable
 from pipeflow.friction import Regime
 from pipeflow.operability.energy import specific_energy

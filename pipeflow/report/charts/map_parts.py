@@ -12,8 +12,6 @@ from matplotlib.figure import Figure
 from matplotlib.lines import Line2D
 
 from pipeflow.arrays import Array
-from pipeflow.case.axes import Axis
-from pipeflow.case.variables import Variable
 from pipeflow.report.charts.axis import round_ends
 from pipeflow.report.charts.canvas import DASHES, GREY, INK, SMALL, canvas, panel
 from pipeflow.report.charts.labels import POINTS_PER_INCH, size_of
@@ -21,6 +19,7 @@ from pipeflow.report.sweep_text import labelled, unit_of
 from pipeflow.study.boundaries import Boundary
 from pipeflow.study.limits_over import REGIMES
 from pipeflow.study.pumps_over import is_candidate
+from pipeflow.study.sweeping import Axis, Variable
 from pipeflow.units import significant, to_display
 
 LEFT, RIGHT, UNDER, OVER, HEIGHT = 0.66, 2.3, 0.88, 0.15, 4.1
