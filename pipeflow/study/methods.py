@@ -14,6 +14,7 @@ from pipeflow.line.kinetics import KINETIC_FACTORS
 from pipeflow.line.losses import CONTRACTION, EXPANSION
 from pipeflow.line.site import STANDARD_ATMOSPHERE
 from pipeflow.operability.deposition import FORMULAS
+from pipeflow.operability.energy import SPECIFIC_ENERGY
 from pipeflow.operability.entrance import LANGHAAR, POOLE_RIDLEY, TURBULENT_ENTRANCE
 from pipeflow.operability.pipe_wall import B31_3, B31_4, JOUKOWSKY, RATED
 from pipeflow.operability.product import HEATING
@@ -50,6 +51,7 @@ SLURRIES = "turbulent flow of settling solids in a Newtonian liquid"
 OPERABILITY = (
     LAMINAR_TRANSPORT, STATIC_SUSPENSION, STOKES, SCHILLER_NAUMANN, RICHARDSON_ZAKI, STEINOUR, LANGHAAR, POOLE_RIDLEY,
     TURBULENT_ENTRANCE, HEATING, RESTART, B31_3, B31_4, RATED, JOUKOWSKY, FASTEST_PARTICLE,
+    SPECIFIC_ENERGY,
 )  # fmt: skip
 
 FLOW_CURVES = (RABINOWITSCH, KRIEGER_MARON, BAGLEY, MOONEY_SLIP, TAYLOR, AKAIKE, ARRHENIUS, SOLIDS_LAWS)
