@@ -2,6 +2,7 @@
 
 import ast
 import inspect
+import re
 
 import pytest
 import snippets
@@ -64,6 +65,14 @@ def test_every_check_of_a_pump_is_on_its_page():
     names = {call.args[0].value for call in calls if isinstance(call.func, ast.Name) and call.func.id in makers}
     assert len(names) > 8
     assert [name for name in names if f"`{name}`" not in page] == []
+
+
+def test_the_readme_names_every_command_and_every_page():
+    readme = (snippets.ROOT / "README.md").read_text(encoding="utf-8")
+    named = re.findall(r"^\| `pipeflow (\w+)", readme, re.MULTILINE)
+    assert sorted(named) == sorted(snippets.commands())
+    pages = {page.name for page in (snippets.ROOT / "docs").glob("*.md")} - {"decisions.md"}
+    assert [page for page in sorted(pages) if f"(docs/{page})" not in readme] == []
 
 
 def test_the_reference_of_the_command_names_every_option():
