@@ -31,7 +31,7 @@ from pipeflow.study.curve_result import Condition, CurveResult, DrawnCurve, Duty
 from pipeflow.units import significant, to_display
 
 LEFT, RIGHT = 0.62, 1.62
-MAIN, SMALL_PANEL, BETWEEN, OVER, UNDER = 4.1, 1.0, 0.3, 0.6, 0.5
+MAIN, SMALL_PANEL, BETWEEN, OVER, UNDER = 3.6, 0.8, 0.22, 0.6, 0.5
 ALIKE = 5e-3
 """Central and upper curves within this share of each other are drawn as one."""
 NAME = "system"

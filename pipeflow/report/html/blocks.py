@@ -8,6 +8,11 @@ from typing import ClassVar
 
 from markupsafe import Markup
 
+NARROW = 40
+"""Letters of a line of a file that is shown in two columns."""
+SHORT = 8
+"""Rows of the longest table that is kept on one printed page."""
+
 
 @dataclass(frozen=True)
 class Text:
@@ -59,6 +64,11 @@ class Table:
     look: str = ""
     form: ClassVar[str] = "table"
 
+    @property
+    def is_short(self) -> bool:
+        """It is kept on one printed page."""
+        return len(self.rows) <= SHORT
+
 
 @dataclass(frozen=True)
 class Chart:
@@ -76,6 +86,11 @@ class Verbatim:
     caption: str
     lines: tuple[str, ...]
     form: ClassVar[str] = "verbatim"
+
+    @property
+    def is_narrow(self) -> bool:
+        """Nearly all of its lines fit two beside each other, so that the others may wrap."""
+        return 5 * sum(len(line) > NARROW for line in self.lines) <= len(self.lines)
 
 
 @dataclass(frozen=True)
