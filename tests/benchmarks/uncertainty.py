@@ -15,7 +15,7 @@ from pathlib import Path
 
 import numpy as np
 
-from pipeflow.case.loading import load_text
+from pipeflow.case.loading import load_case
 from pipeflow.case.model import Case
 from pipeflow.case.varying import varied
 from pipeflow.friction import solve_pipes
@@ -28,22 +28,13 @@ from pipeflow.study.uncertainty import uncertainty
 from pipeflow.uncertainty import inputs_of, points
 
 CASES = Path(__file__).parents[2] / "cases"
-BLOCK = """
-uncertainty:
-  fluid.density: ± 2 %
-  fluid.rheology.yield_stress: ± 20 %
-  fluid.rheology.consistency: normal 10 %
-  fluid.rheology.flow_index: ± 0.03
-  flow: ± 5 %
-"""
 SAMPLES = 2**17
 """Times the five inputs, the method and the two samples: 1 048 576 lines."""
 
 
 def demo() -> Case:
     """The largest demo, with five uncertain inputs beside the method."""
-    path = CASES / "thickener-underflow.yaml"
-    return load_text(path.read_text(encoding="utf-8") + BLOCK, str(path))
+    return load_case(CASES / "thickener-underflow.yaml")
 
 
 def seconds(work: Callable[[], object], times: int = 3) -> float:
