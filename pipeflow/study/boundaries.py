@@ -10,7 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from pipeflow.arrays import Array
-from pipeflow.rootfind import find_root
+from pipeflow.rootfind import find_between
 from pipeflow.study.contours import Edge, chains, crossed_edges
 from pipeflow.verdict import Check
 
@@ -143,17 +143,13 @@ def _roots(field: Field, x: Array, y: Array, excess: Mapping[Key, Array], asked:
         np.array([excess[key][j, i] for (key, _), (j, i) in zip(asked, ends, strict=True)]) for ends in (first, last)
     )
     places = x[first[:, 1]], x[last[:, 1]], y[first[:, 0]], y[last[:, 0]]
-    rising = np.sign(there - here)
 
-    def residual(share: Array, row: Array) -> tuple[Array, None]:
-        within = np.minimum(share, 1.0)
+    def residual(share: Array, row: NDArray[np.intp]) -> Array:
         x0, x1, y0, y1 = (one[row] for one in places)
-        found = field.excess(x0 + within * (x1 - x0), y0 + within * (y1 - y0))
-        own = np.array([found[asked[int(one)][0]][at] for at, one in enumerate(row)])
-        return rising[row] * own + np.maximum(share - 1.0, 0.0), None
+        found = field.excess(x0 + share * (x1 - x0), y0 + share * (y1 - y0))
+        return np.array([found[asked[int(one)][0]][at] for at, one in enumerate(row)])
 
-    start = np.clip(here / (here - there), 0.01, 0.99)
-    return find_root(residual, start, np.abs(there - here), (np.arange(len(asked)),), lower=0.0)
+    return find_between(residual, np.zeros(here.shape), np.ones(here.shape), here, there)
 
 
 def excess_of(check: Check) -> dict[Figure, float]:

@@ -3,10 +3,12 @@
 from __future__ import annotations
 
 import numpy as np
+import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 from hypothesis.extra.numpy import arrays
 
+from pipeflow.rootfind import find_between
 from pipeflow.study.boundaries import crossings
 from pipeflow.study.contours import chains, crossed_edges
 
@@ -58,3 +60,35 @@ def test_between_rows_is_looked_only_where_no_row_crosses():
 
     (flat,) = crossings(Flat(), grid, grid, along_rows=True).boundaries()
     assert np.abs(np.array(flat.lines[0])[:, 1] - 0.2).max() < 1e-9
+
+
+JUMPS = {
+    "straight": lambda x: x - 0.3,
+    "steep": lambda x: np.expm1(40.0 * (x - 0.3)),
+    "flat": lambda x: (x - 0.3) ** 9,
+    "jump": lambda x: np.where(x > 0.3, 1.0, -1.0),
+    "jump to nearly zero": lambda x: np.where(x > 0.3, 0.02 * (x - 0.3) + 1e-3, -1.0),
+    "from nearly zero": lambda x: np.where(x > 0.3, 1.0, 0.02 * (x - 0.3) - 1e-3),
+    "falling": lambda x: 0.3 - x,
+}
+
+
+@pytest.mark.parametrize("name", JUMPS)
+def test_a_change_of_sign_is_found_in_few_steps(name):
+    function, asked = JUMPS[name], []
+
+    def residual(x, rows):
+        asked.append(x.size)
+        return function(x)
+
+    ends = np.zeros(3), np.array([1.0, 0.6, 0.31])
+    found = find_between(residual, *ends, function(ends[0]), function(ends[1]))
+    # (x - 0.3)^9 is 0 to rounding over a stretch about its root
+    assert found == pytest.approx(0.3, abs=1e-3 if name == "flat" else 2e-9)
+    assert len(asked) <= 70
+
+
+def test_ends_at_the_root_and_no_brackets_at_all():
+    found = find_between(lambda x, rows: x, np.array([0.0]), np.array([1.0]), np.array([0.0]), np.array([1.0]))
+    assert found == pytest.approx(0.0, abs=1e-8)
+    assert find_between(lambda x, rows: x, np.empty(0), np.empty(0), np.empty(0), np.empty(0)).size == 0

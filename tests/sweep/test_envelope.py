@@ -133,6 +133,14 @@ def test_deposition_bounds_the_turbulent_side_only():
     assert "deposition" in low
 
 
+def test_every_root_is_found_though_some_figures_jump():
+    """Solids that settle out of turbulent flow only: the check jumps where the flow turns turbulent."""
+    for name in ("following", "settling"):
+        points = [point for one in envelope_of(name).boundaries for line in one.lines for point in line]
+        assert np.isfinite(points).all()
+        assert np.isfinite([(one.low, one.high) for row in envelope_of(name).rows for one in row.upper]).all()
+
+
 def test_the_static_yield_stress_follows_in_proportion():
     at = envelope_of("static").case_at(0.02, 12.0)
     assert at.fluid.rheology.yield_stress == 12.0
