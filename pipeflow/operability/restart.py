@@ -136,8 +136,8 @@ def restart_checks(state: LineState, stopped: Stopped, credited: float | None) -
         yield not_checked("restart_pressure", ("limits.restart_pressure",), "Pa", basis, value, RESTART.key)
     else:
         said = (
-            f"{basis}; credit 80 % of the least corrected pump head at 0 to 30 % flow, never the shut-off head on "
-            "water; local codes and a licensed engineer settle how it is restarted"
+            f"{basis}; credit 80 % of the least corrected pump head from 0 to 40 % of best-efficiency flow, never the "
+            "shut-off head on water; local codes and a licensed engineer settle how it is restarted"
         )
         yield _no_better(at_most("restart_pressure", value, value, credited, "Pa", said, RESTART.key), stopped)
     if stopped.pump_position:
