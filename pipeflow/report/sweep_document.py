@@ -7,9 +7,10 @@ from typing import Any
 
 from pipeflow.report.sweep_text import energy_unit
 from pipeflow.study.boundaries import Boundary
-from pipeflow.study.envelope import Envelope, Interval
+from pipeflow.study.envelope import Envelope
 from pipeflow.study.result import SAFETY_NOTICE
 from pipeflow.study.sweeping import Axis, Sweep, SweptPoint
+from pipeflow.study.window import Interval
 from pipeflow.verdict import Check
 
 SI = {
@@ -43,6 +44,9 @@ def envelope_document(envelope: Envelope) -> dict[str, Any]:
         "governing_pipe": envelope.governing_pipe or None,
         "boundaries": [_limited(one, envelope) for one in envelope.boundaries],
         "window": [list(row) for row in envelope.window],
+        "areas": {
+            figure: [[list(point) for point in ring] for ring in rings] for figure, rings in envelope.areas.items()
+        },
         "specific_energy": [[_number(value) for value in row] for row in envelope.energy],
         "energy_unit": energy_unit(envelope.case),
         "rows": [

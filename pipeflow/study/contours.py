@@ -56,3 +56,30 @@ def _walked(start: Edge, links: dict[Edge, list[Edge]], left: dict[Edge, list[Ed
         line.append(here)
         del left[here]
     return [*line, start] if len(line) > 2 and start in links[here] else line
+
+
+def rings(inside: NDArray[np.bool_]) -> Iterator[list[Edge]]:
+    """Closed lines around what is inside, that to their left; along the rim they cross edges that leave the grid.
+
+    The first point of such an edge may have the row or column -1.
+    """
+    padded = np.pad(inside, 1)
+    for chain in chains(padded):
+        ring = [(axis, j - 1, i - 1) for axis, j, i in chain]
+        yield ring if _is_left(padded, chain) else ring[::-1]
+
+
+def _is_left(padded: NDArray[np.bool_], chain: list[Edge]) -> bool:
+    """Whether what is inside lies to the left of the first step of a chain."""
+    (axis, j, i), after = chain[0], chain[1]
+    first = np.array(_middle(chain[0]))
+    step = np.array(_middle(after)) - first
+    lies = (i, j) if padded[j, i] else (i + (axis == 1), j + (axis == 0))
+    across = np.array(lies) - first
+    return bool(step[0] * across[1] - step[1] * across[0] > 0)
+
+
+def _middle(edge: Edge) -> tuple[float, float]:
+    """Middle of an edge: column, row."""
+    axis, j, i = edge
+    return i + 0.5 * (axis == 1), j + 0.5 * (axis == 0)

@@ -7,7 +7,6 @@ from dataclasses import dataclass
 from typing import Final, Literal
 
 import numpy as np
-from numpy.typing import NDArray
 
 from pipeflow.arrays import Array
 from pipeflow.case.axes import Axis
@@ -15,12 +14,14 @@ from pipeflow.case.model import Case
 from pipeflow.case.variables import Variable, variable, variables
 from pipeflow.errors import InputError, Problem
 from pipeflow.operability.energy import specific_energy
-from pipeflow.study.boundaries import Boundary, Crossings, Figure, Key, crossings
+from pipeflow.study.boundaries import Boundary, Figure, crossings
+from pipeflow.study.checks import carried_solids
 from pipeflow.study.flows import DESIGN, pipes_of
-from pipeflow.study.limits_over import REGIMES, LimitsOver, governing_pipe, with_static_yield_stress
+from pipeflow.study.limits_over import LimitsOver, governing_pipe, with_static_yield_stress
 from pipeflow.study.points import case_at
-from pipeflow.study.pumps_over import PUMPS, PumpsOver, is_candidate
+from pipeflow.study.pumps_over import PUMPS, PumpsOver
 from pipeflow.study.sweeping import SOLIDS
+from pipeflow.study.window import Interval, Ring, Window
 from pipeflow.verdict import Check
 
 COLUMNS, ROWS = 41, 17
@@ -29,16 +30,6 @@ FLOWS: Final = (0.4, 1.6)
 STRESSES: Final = (0.5, 2.0)
 """Ends of a parameter of the rheology, as shares of that of the case."""
 Standing = Literal["inside", "central", "outside"]
-
-
-@dataclass(frozen=True)
-class Interval:
-    """Flows, m³/s, between which every limit is kept; what ends them, empty where the map does."""
-
-    low: float
-    high: float
-    low_by: str
-    high_by: str
 
 
 @dataclass(frozen=True)
@@ -79,6 +70,8 @@ class Envelope:
         By value and flow: kWh for a tonne of dry solids (of slurry, without solids) and a kilometre, losses only.
     rows : tuple of WindowAt
         The window at every value.
+    areas : dict of Figure to tuple of Ring
+        The window by each figure as closed lines of points (flow, value), SI.
     governing_pipe : str
         The pipe that loses most, whose transition is drawn; empty without pipes.
     cautions : tuple of str
@@ -92,6 +85,7 @@ class Envelope:
     window: tuple[tuple[Standing, ...], ...]
     energy: tuple[tuple[float, ...], ...]
     rows: tuple[WindowAt, ...]
+    areas: dict[Figure, tuple[Ring, ...]]
     governing_pipe: str
     cautions: tuple[str, ...]
 
@@ -162,6 +156,7 @@ def envelope(case: Case, flow: Axis | None = None, up: Axis | None = None) -> En
     found = crossings(limits, across, up.array)
     if case.pumps:
         found = found.joined(crossings(PumpsOver(case, path), across, up.array, along_rows=True))
+    central, upper = Window(found, "central"), Window(found, "upper")
     pipe = governing_pipe(case)
     return Envelope(
         case=case,
@@ -169,9 +164,13 @@ def envelope(case: Case, flow: Axis | None = None, up: Axis | None = None) -> En
         up=up,
         boundaries=tuple(one for one in found.boundaries() if one.name != PUMPS),
         limits=dict(_limits(limits, across, up.array)),
-        window=_window(found),
+        window=_standings(central, upper),
         energy=tuple(map(tuple, _energy(limits, across, up.array).tolist())),
-        rows=tuple(_rows(found)),
+        rows=tuple(
+            WindowAt(float(value), tuple(upper.intervals(j)), tuple(central.intervals(j)))
+            for j, value in enumerate(found.y)
+        ),
+        areas={"upper": upper.areas(), "central": central.areas()},
         governing_pipe="" if pipe is None else pipes_of(case)[pipe].name,
         cautions=tuple(_cautions(case, up)),
     )
@@ -206,51 +205,9 @@ def _energy(limits: LimitsOver, flow: Array, up: Array) -> Array:
         return specific_energy(loss, length or np.nan, density, share).reshape(x.shape)
 
 
-def _counted(found: Crossings, figure: Figure) -> list[Key]:
-    """What the window rests on: every limit, and that some pump serves."""
-    return [key for key in found.excess if key[1] == figure and key[0] not in REGIMES and not is_candidate(key[0])]
-
-
-def _beyond(found: Crossings, figure: Figure) -> NDArray[np.bool_]:
-    shape = (found.y.size, found.x.size)
-    every = [found.excess[key] > 0 for key in _counted(found, figure)]
-    return np.asarray(np.any([*every, np.zeros(shape, dtype=bool)], axis=0))
-
-
-def _window(found: Crossings) -> tuple[tuple[Standing, ...], ...]:
-    central, upper = _beyond(found, "central"), _beyond(found, "upper")
-    names = np.where(central, "outside", np.where(upper, "central", "inside"))
+def _standings(central: Window, upper: Window) -> tuple[tuple[Standing, ...], ...]:
+    names = np.where(central.beyond, "outside", np.where(upper.beyond, "central", "inside"))
     return tuple(map(tuple, names.tolist()))
-
-
-def _rows(found: Crossings) -> Iterator[WindowAt]:
-    upper, central = _beyond(found, "upper"), _beyond(found, "central")
-    for j, value in enumerate(found.y):
-        yield WindowAt(
-            float(value),
-            tuple(_intervals(found, "upper", upper[j], j)),
-            tuple(_intervals(found, "central", central[j], j)),
-        )
-
-
-def _intervals(found: Crossings, figure: Figure, beyond: NDArray[np.bool_], j: int) -> Iterator[Interval]:
-    """Flows of a row where nothing is beyond its limit, each end the root of the limit that comes last or first."""
-    low: tuple[float, str] | None = None if beyond[0] else (float(found.x[0]), "")
-    for i in range(found.x.size - 1):
-        if beyond[i] == beyond[i + 1]:
-            continue
-        ends = [
-            (found.place(key, (1, j, i))[0], key[0])
-            for key in _counted(found, figure)
-            if (1, j, i) in found.roots[key] and (found.excess[key][j, i] > 0) == beyond[i]
-        ]
-        if beyond[i]:
-            low = max(ends)
-        elif low is not None:
-            yield Interval(low[0], min(ends)[0], low[1], min(ends)[1])
-            low = None
-    if low is not None:
-        yield Interval(low[0], float(found.x[-1]), low[1], "")
 
 
 def _limits(over: LimitsOver, flow: Array, up: Array) -> Iterator[tuple[str, Stated]]:
@@ -277,6 +234,10 @@ def _cautions(case: Case, up: Axis) -> Iterator[str]:
         yield "the map goes past the solids tested: the rheology there is a guess"
     if path == SOLIDS and not laws:
         yield "the rheology of this case does not follow the solids: only density and settling change with them"
+    if carried_solids(case) is not None:
+        yield "no formula speaks of deposition outside turbulent flow: solids may settle there, whatever the map shows"
+    if case.scenarios:
+        yield "the scenarios of the case are not asked"
     yield from _about_pumps(case)
 
 

@@ -10,7 +10,7 @@ from hypothesis.extra.numpy import arrays
 
 from pipeflow.rootfind import find_between
 from pipeflow.study.boundaries import crossings
-from pipeflow.study.contours import chains, crossed_edges
+from pipeflow.study.contours import chains, crossed_edges, rings
 
 
 def test_a_step_is_one_line():
@@ -92,3 +92,28 @@ def test_ends_at_the_root_and_no_brackets_at_all():
     found = find_between(lambda x, rows: x, np.array([0.0]), np.array([1.0]), np.array([0.0]), np.array([1.0]))
     assert found == pytest.approx(0.0, abs=1e-8)
     assert find_between(lambda x, rows: x, np.empty(0), np.empty(0), np.empty(0), np.empty(0)).size == 0
+
+
+def area(ring) -> float:
+    """Signed area of a ring through the middles of its edges, above 0 the left way round."""
+    x, y = np.array([(i + 0.5 * (axis == 1), j + 0.5 * (axis == 0)) for axis, j, i in ring]).T
+    return 0.5 * float(np.sum(x * np.roll(y, -1) - y * np.roll(x, -1)))
+
+
+@given(arrays(bool, st.tuples(st.integers(1, 6), st.integers(1, 6))))
+def test_rings_are_closed_and_run_left_around_what_is_inside(inside):
+    padded = np.pad(inside, 1)
+    found = list(rings(inside))
+    assert all(ring[0] == ring[-1] for ring in found)
+    # a cell with k points inside has an area of k/4 within the lines through the middles of its edges, less 1/8 of
+    # each corner cut off or added
+    cells = padded[:-1, :-1].astype(int) + padded[1:, :-1] + padded[:-1, 1:] + padded[1:, 1:]
+    diagonal = (cells == 2) & (padded[:-1, :-1] == padded[1:, 1:])
+    expected = np.select([diagonal, cells == 1, cells == 2, cells == 3, cells == 4], [0.25, 0.125, 0.5, 0.875, 1.0])
+    assert sum(area(ring) for ring in found) == pytest.approx(float(expected.sum()))
+
+
+def test_a_hole_runs_the_other_way_round():
+    inside = np.ones((5, 5), dtype=bool)
+    inside[2, 2] = False
+    assert sorted(np.sign([area(ring) for ring in rings(inside)])) == [-1.0, 1.0]

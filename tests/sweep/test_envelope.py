@@ -85,6 +85,32 @@ def test_the_window_agrees_with_solve_on_random_points(found):
     assert {"inside", "outside"} <= seen
 
 
+def within(rings, flow, value) -> bool:
+    """Whether a point lies within closed lines, by how often a ray from it crosses them."""
+    crossed = 0
+    for ring in rings:
+        for (x0, y0), (x1, y1) in zip(ring, (*ring[1:], ring[0]), strict=True):
+            if (y0 > value) != (y1 > value) and flow < x0 + (value - y0) / (y1 - y0) * (x1 - x0):
+                crossed += 1
+    return crossed % 2 == 1
+
+
+@every_line
+def test_the_areas_drawn_agree_with_solve_on_random_points(found):
+    """Between the rows too; near a boundary, which is drawn straight from row to row, nothing is asked."""
+    random, asked = np.random.default_rng(3), 0
+    for _ in range(16):
+        flow = random.uniform(found.flow.values[0], found.flow.values[-1])
+        value = random.uniform(found.up.values[0], found.up.values[-1])
+        near = {standing(found.case_at(flow * share, value)) for share in (0.95, 1.0, 1.05)}
+        if len(near) == 1:
+            (expected,) = near
+            assert within(found.areas["upper"], flow, value) is (expected == "inside")
+            assert within(found.areas["central"], flow, value) is (expected != "outside")
+            asked += 1
+    assert asked > 5
+
+
 @every_line
 def test_the_grid_of_the_window_agrees_with_solve(found):
     random = np.random.default_rng(11)
@@ -129,8 +155,9 @@ def test_the_edges_of_the_transition_are_those_of_the_governing_pipe(found):
 def test_deposition_bounds_the_turbulent_side_only():
     found = envelope_of("settling")
     assert "deposition" in {boundary.name for boundary in found.boundaries}
-    low = {row.upper[0].low_by for row in found.rows if row.upper}
+    low = {one.low_by for row in found.rows for one in row.upper}
     assert "deposition" in low
+    assert any("solids may settle there, whatever the map shows" in caution for caution in found.cautions)
 
 
 def test_every_root_is_found_though_some_figures_jump():

@@ -3,20 +3,24 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from typing import Any, Final
 
 import numpy as np
 from matplotlib.axes import Axes
+from matplotlib.patches import PathPatch
+from matplotlib.path import Path
 
-from pipeflow.arrays import Array
-from pipeflow.report.charts.canvas import FILL, INK, as_svg, drawing, shortened
+from pipeflow.report.charts.canvas import FILL, INK, PALE, as_svg, drawing, shortened
 from pipeflow.report.charts.map_parts import contours, draw_boundaries, map_axes, said_below, shown
 from pipeflow.report.sweep_text import boundary_name, energy_unit, name_of
-from pipeflow.study.boundaries import Boundary
-from pipeflow.study.envelope import Envelope, Interval
+from pipeflow.study.boundaries import Boundary, Figure
+from pipeflow.study.envelope import Envelope
 from pipeflow.study.limits_over import REGIMES
 from pipeflow.units import format_si, significant, to_display
 
 NAME = "envelope"
+LOOKS: Final[tuple[tuple[Figure, str, str], ...]] = (("central", "....", "white"), ("upper", "////", FILL))
+"""Hatch and ground of the window by each figure."""
 
 
 def envelope_chart(envelope: Envelope) -> str:
@@ -49,50 +53,15 @@ def named(one: Boundary, envelope: Envelope) -> str:
 
 
 def _hatch(axes: Axes, envelope: Envelope) -> None:
-    """The window by the upper figure, and what the central one alone adds, from row to row."""
-    for figure, hatch, ground in (("central", "....", "none"), ("upper", "////", FILL)):
-        for y, low, high in _strips(envelope, figure):
-            axes.fill_betweenx(
-                y, low, high, facecolor=ground, hatch=hatch, edgecolor="#9a9a9a", linewidth=0.0, zorder=1
-            )
-
-
-def _strips(envelope: Envelope, figure: str) -> Iterator[tuple[Array, Array, Array]]:
-    """The first, second, … interval of the rows one above another, as far as they go, in the units of the axes."""
-    rows = [tuple(getattr(row, figure)) for row in envelope.rows]
-    values = [row.value for row in envelope.rows]
-    for rank in range(max((len(row) for row in rows), default=0)):
-        run: list[tuple[float, Interval]] = []
-        for j, row in enumerate((*rows, ())):
-            if rank < len(row):
-                if not run and j:
-                    run += _reach(envelope, row[rank], values[j], values[j - 1])
-                run.append((values[j], row[rank]))
-            elif run:
-                after = values[j] if j < len(values) else values[-1]
-                run += _reach(envelope, run[-1][1], run[-1][0], after)
-                yield _strip(envelope, run)
-                run = []
-
-
-def _reach(envelope: Envelope, interval: Interval, here: float, there: float) -> list[tuple[float, Interval]]:
-    """How far an interval goes on between two rows, the next of which has none: to the first boundary across it."""
-    low, high = min(here, there), max(here, there)
-    ends = [
-        y
-        for one in envelope.boundaries
-        if one.name not in REGIMES
-        for line in one.lines
-        for x, y in line
-        if low < y < high and interval.low <= x <= interval.high
-    ]
-    return [(min(ends, key=lambda y: abs(y - here)), interval)] if ends else []
-
-
-def _strip(envelope: Envelope, run: list[tuple[float, Interval]]) -> tuple[Array, Array, Array]:
-    y = shown(envelope.up.variable, [value for value, _ in run])
-    flow = envelope.flow.variable
-    return y, shown(flow, [one.low for _, one in run]), shown(flow, [one.high for _, one in run])
+    """The window by the central figure dotted, by the upper one hatched over it."""
+    for figure, hatch, ground in LOOKS:
+        rings = [np.array([*ring, ring[0]]) for ring in envelope.areas[figure]]
+        if rings:
+            variables = envelope.flow.variable, envelope.up.variable
+            corners = [np.column_stack([shown(one, ring[:, at]) for at, one in enumerate(variables)]) for ring in rings]
+            path = Path.make_compound_path(*(Path(ring, closed=True) for ring in corners))
+            look: dict[str, Any] = {"facecolor": ground, "edgecolor": PALE, "hatch": hatch, "linewidth": 0.0}
+            axes.add_patch(PathPatch(path, zorder=1, **look))
 
 
 def _present(axes: Axes, envelope: Envelope) -> None:
