@@ -10,7 +10,7 @@ import xml.etree.ElementTree as ElementTree
 from pathlib import Path
 
 import pytest
-from lines import BINGHAM, FOLLOWING, FORM, LIMITED
+from swept_lines import BINGHAM, FOLLOWING, FORM, LIMITED
 from typer.testing import CliRunner
 
 from pipeflow.cli import app

@@ -7,7 +7,7 @@ from pathlib import Path
 
 import numpy as np
 import pytest
-from lines import BINGHAM, FOLLOWING, LIMITED, NEWTONIAN, SETTLING, STATIC, line
+from swept_lines import BINGHAM, FOLLOWING, LIMITED, NEWTONIAN, SETTLING, STATIC, line
 
 from pipeflow.case.axes import Axis
 from pipeflow.case.loading import load_case

@@ -6,7 +6,7 @@ import math
 
 import numpy as np
 import pytest
-from lines import BINGHAM, FOLLOWING, LIMITED, NEWTONIAN, SETTLING, line
+from swept_lines import BINGHAM, FOLLOWING, LIMITED, NEWTONIAN, SETTLING, line
 
 from pipeflow.case.axes import Axis
 from pipeflow.case.variables import variable
