@@ -244,5 +244,9 @@ def _entries(tree: Json) -> dict[str, Json] | None:
         if tree.get(MARK) in ("array", "number") or not isinstance(inner, dict):
             return None
         return {key: value for key, value in inner.items() if key != MARK}
-    named = isinstance(tree, list) and tree and all(isinstance(one, dict) and "name" in one for one in tree)
-    return {f"[{one['name']}": one for one in tree} if named else None
+    if not isinstance(tree, list) or not tree:
+        return None
+    for label in ("name", "path"):
+        if all(isinstance(one, dict) and label in one for one in tree):
+            return {f"[{one[label]}": one for one in tree}
+    return None

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field, replace
 from typing import Literal
@@ -49,6 +50,8 @@ FELT = (
 """Inputs that reach the totals, or are told otherwise; by their paths in a laid-out case."""
 ALONG = ("sizes", "default_roughness", "followed", "fitted", "sheets", "density_is_mixed")
 """What goes along with other inputs, or is shown by them."""
+_FOLLOWS = re.compile(r"uncertainty\[.*\]\.(middle|spread|least|most)")
+"""Figures of a stated tolerance, which follow the input it is of."""
 AS_WRITTEN = {
     "solids": "fluid.solids",
     "liquid": "fluid.liquid",
@@ -297,7 +300,7 @@ def _unfelt(before: Json, after: Json) -> Iterator[str]:
     changed = list(differences(before, after))
     # a flow given by one figure is least, design and most at once
     felt_here = (*FELT, "flow") if "flow.design" in changed else FELT
-    for path in changed:
+    for path in (path for path in changed if not _FOLLOWS.fullmatch(path)):
         head, _, rest = path.partition(".")
         is_felt = any(path == felt or path.startswith((f"{felt}.", f"{felt}[")) for felt in felt_here)
         if not is_felt and head not in ALONG:
