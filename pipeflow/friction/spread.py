@@ -90,6 +90,11 @@ def method_spread(
     return Spread(np.where(np.isnan(central.wall_shear_stress), np.nan, upper), by_method, left_out)
 
 
+def not_worked_out(central: PipeFlow) -> Spread:
+    """Stand for a spread that was not asked for: nan, and no method."""
+    return Spread(np.full(central.status.shape, np.nan), {}, {})
+
+
 def _flat(flow: PipeFlow) -> PipeFlow:
     return PipeFlow(*(getattr(flow, field.name).reshape(-1) for field in fields(PipeFlow)))
 

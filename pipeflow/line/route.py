@@ -11,7 +11,7 @@ import numpy as np
 from pipeflow.arrays import Array, FloatOrArray
 from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.friction import PipeFlow, solve_pipes
-from pipeflow.friction.spread import method_spread
+from pipeflow.friction.spread import method_spread, not_worked_out
 from pipeflow.line.elements import Element, Equipment, Fluid, Pipe, Vessel
 from pipeflow.line.fittings import DEFAULT_METHOD
 from pipeflow.line.losses import equipment_loss, minor_losses, side_by_side
@@ -83,6 +83,7 @@ def solve(
     fittings: str | None = None,
     particle_size: FloatOrArray = np.nan,
     with_edges: bool = True,
+    with_upper: bool = True,
 ) -> LineFlow:
     """Solve a line for any number of flows, fluids and dimensions at once.
 
@@ -100,6 +101,8 @@ def solve(
         d85 of the solids, m, for the methods that need it.
     with_edges : bool
         Work the ends of laminar and the start of turbulent flow out for laminar pipes too; no loss depends on it.
+    with_upper : bool
+        Solve by the other methods of the family too; without, the upper figures are nan.
 
     Returns
     -------
@@ -115,7 +118,9 @@ def solve(
     roughness = side_by_side([pipe.roughness for pipe in pipes])
     given: dict[str, Any] = {"roughness": roughness, "particle_size": _last_axis(particle_size), "critical": critical}
     solved = solve_pipes(velocity, diameter, density, rheology, method=turbulent, with_edges=with_edges, **given)
-    spread = method_spread(solved, velocity, diameter, density, rheology, method=turbulent, **given)
+    spread = not_worked_out(solved)
+    if with_upper:
+        spread = method_spread(solved, velocity, diameter, density, rheology, method=turbulent, **given)
 
     gradient_length = 4.0 * side_by_side([pipe.length for pipe in pipes]) / diameter
     friction, friction_upper = solved.wall_shear_stress * gradient_length, spread.upper * gradient_length

@@ -100,7 +100,7 @@ class WaterCurve:
             return float(self.flow[row])
         return _vertex(self.flow[row - 1 : row + 2], self.efficiency[row - 1 : row + 2])
 
-    @property
+    @cached_property
     def best_head(self) -> float | None:
         """Head at the best-efficiency flow, m; None without an efficiency."""
         return None if self.best_flow is None else float(self.head_at(self.best_flow))

@@ -49,8 +49,8 @@ class Demand:
     _kept: dict[bytes, Heads] = field(default_factory=dict)
 
     def central(self, flow: Array) -> Array:
-        """Head asked for by the central method, m."""
-        return self.at(flow).central
+        """Head asked for by the central method, m; the others are not solved for it."""
+        return heads_along(self.case, line_at(self.case, flow, with_edges=False, with_upper=False)).central.pump_head
 
     def upper(self, flow: Array) -> Array:
         """Head asked for by the highest method, m."""

@@ -16,8 +16,8 @@ DESIGN, MINIMUM, MAXIMUM = 0, 1, 2
 FLOW_NAMES = ("design flow", "minimum flow", "maximum flow")
 
 
-def line_at(case: Case, flow: FloatOrArray, *, with_edges: bool = True) -> LineFlow:
-    """Solve the line of a case at these flows, m³/s; ``with_edges`` as for :func:`pipeflow.line.route.solve`."""
+def line_at(case: Case, flow: FloatOrArray, *, with_edges: bool = True, with_upper: bool = True) -> LineFlow:
+    """Solve the line of a case at these flows, m³/s; what it is solved with as :func:`pipeflow.line.route.solve`."""
     return route.solve(
         flow,
         case.fluid,
@@ -29,6 +29,7 @@ def line_at(case: Case, flow: FloatOrArray, *, with_edges: bool = True) -> LineF
         fittings=case.methods.fittings,
         particle_size=case.particle_size,
         with_edges=with_edges,
+        with_upper=with_upper,
     )
 
 
