@@ -7,9 +7,6 @@ import hashlib
 import json
 import os
 import platform
-import stat
-import tempfile
-from collections.abc import Iterator
 from dataclasses import dataclass
 from functools import cache
 from importlib.metadata import version
@@ -25,6 +22,7 @@ from pipeflow.errors import InputError
 from pipeflow.record.document import document
 from pipeflow.record.inputs import Json, digest, encoded, folded, unfolded
 from pipeflow.study.result import Result
+from pipeflow.writing import mode_of, replace_file
 
 FORMAT = 1
 MAX_BYTES = 16 * 1024 * 1024
@@ -157,10 +155,7 @@ def _understood(content: dict[str, Any]) -> Record:
 
 
 def write(path: Path, text: str) -> None:
-    """Write a record so that at every moment the old one or the new one is there, whole.
-
-    The text goes to a file of its own beside the record, is forced to the disk, and takes the record's place in one
-    step; two at once each have their own file. A symbolic link is followed, permissions are kept.
+    """Write a record in the place of an old one, as :func:`pipeflow.writing.replace_file` does.
 
     Raises
     ------
@@ -168,52 +163,9 @@ def write(path: Path, text: str) -> None:
         The folder cannot be written, the disk is full, or what stands there is no file.
     """
     try:
-        _replace(Path(os.path.realpath(path)), text)
+        replace_file(path, text)
     except OSError as error:
         raise refusal(path, f"the record can't be written: {error.strerror or error}") from None
-
-
-def _replace(path: Path, text: str) -> None:
-    mode = _mode(path)
-    with _beside(path) as (handle, temporary):
-        with os.fdopen(handle, "w", encoding="utf-8", newline="\n") as file:
-            file.write(text)
-            file.flush()
-            os.fsync(file.fileno())
-        temporary.chmod(mode)
-        temporary.replace(path)
-    # the record is in place; that its name outlives a power failure is a matter of the system from here on
-    with contextlib.suppress(OSError):
-        folder = os.open(path.parent, os.O_RDONLY)
-        try:
-            os.fsync(folder)
-        finally:
-            os.close(folder)
-
-
-def _mode(path: Path) -> int:
-    """Permissions of the file that is there, or those that a new file gets."""
-    try:
-        status = path.stat()
-    except FileNotFoundError:
-        mask = os.umask(0)
-        os.umask(mask)
-        return 0o666 & ~mask
-    if not stat.S_ISREG(status.st_mode):
-        raise OSError(None, "what stands in its place is no regular file")
-    return stat.S_IMODE(status.st_mode)
-
-
-@contextlib.contextmanager
-def _beside(path: Path) -> Iterator[tuple[int, Path]]:
-    """Open a file of a name of its own in the same folder, hidden; it is gone afterwards unless it was moved."""
-    handle, name = tempfile.mkstemp(prefix=".record-", suffix=".tmp", dir=path.parent)
-    try:
-        yield handle, Path(name)
-    except BaseException:
-        with contextlib.suppress(OSError):
-            Path(name).unlink()
-        raise
 
 
 def keep_aside(path: Path) -> Path:
@@ -225,7 +177,7 @@ def keep_aside(path: Path) -> Path:
         It cannot be read or copied.
     """
     try:
-        _mode(path)
+        mode_of(path)
         content = path.read_bytes()
         for number in range(1, 1000):
             aside = path.with_name(f"{path.name}{KEPT}{'' if number == 1 else f'-{number}'}")
