@@ -16,7 +16,7 @@ import pipeflow
 PACKAGE = Path(pipeflow.__file__).parent
 MODULES = sorted(path for path in PACKAGE.rglob("*.py"))
 
-GROUND = ("errors", "constants", "sources", "verdict", "arrays", "rootfind", "quadrature", "writing")
+GROUND = ("errors", "constants", "sources", "verdict", "arrays", "rootfind", "quadrature", "writing", "documents")
 INPUTS = (
     "line.elements",
     "line.catalogue",

@@ -2,23 +2,12 @@
 
 from __future__ import annotations
 
-import math
-from dataclasses import fields
 from typing import Any
 
+from pipeflow.documents import laid_out
 from pipeflow.sources import Source
-from pipeflow.study.result import (
-    SAFETY_NOTICE,
-    ElementResult,
-    MethodUse,
-    ProfilePoint,
-    ProfileResult,
-    Result,
-    SlackResult,
-    Totals,
-)
+from pipeflow.study.result import SAFETY_NOTICE, MethodUse, Result
 from pipeflow.study.rheology_document import rheology_document
-from pipeflow.verdict import Check
 
 _UNITS = {
     "rise": "m",
@@ -63,7 +52,7 @@ _UNITS = {
 def document(result: Result) -> dict[str, Any]:
     """Lay a result out as the document that ``--json`` prints and records store."""
     case = result.case
-    laid_out: dict[str, Any] = {
+    told: dict[str, Any] = {
         "title": case.title,
         "revision": case.revision,
         "file": case.file,
@@ -72,41 +61,19 @@ def document(result: Result) -> dict[str, Any]:
         "flow_m3_s": case.flow.design,
         "flow_minimum_m3_s": case.flow.minimum,
         "flow_maximum_m3_s": case.flow.maximum,
-        "elements": [_fields(element) for element in result.elements],
-        "totals": _fields(result.totals),
+        "elements": [laid_out(element, _UNITS) for element in result.elements],
+        "totals": laid_out(result.totals, _UNITS),
         "method_spread": {"head_loss_m": result.spread.head_loss, "left_out": result.spread.left_out},
-        "profile": _profile(result.profile),
-        "checks": [_fields(check) for check in result.checks],
+        "profile": laid_out(result.profile, _UNITS),
+        "checks": [laid_out(check, _UNITS) for check in result.checks],
         "cautions": list(result.cautions),
         **rheology_document(case, result.rheology),
         "methods": [_method(use) for use in result.methods],
         "safety_notice": SAFETY_NOTICE,
     }
     if result.scenarios:
-        laid_out["scenarios"] = {name: document(scenario) for name, scenario in result.scenarios.items()}
-    return laid_out
-
-
-def _fields(item: ElementResult | Totals | ProfileResult | ProfilePoint | SlackResult | Check) -> dict[str, Any]:
-    return {_key(field.name): _finite(getattr(item, field.name)) for field in fields(item)}
-
-
-def _key(name: str) -> str:
-    return f"{name}_{_UNITS[name]}" if name in _UNITS else name
-
-
-def _finite(value: Any) -> Any:
-    return None if isinstance(value, float) and not math.isfinite(value) else value
-
-
-def _profile(profile: ProfileResult) -> dict[str, Any]:
-    return {
-        **_fields(profile),
-        "points": [_fields(point) for point in profile.points],
-        "after_pump": _fields(profile.after_pump),
-        "slack": profile.slack and _fields(profile.slack),
-        "slack_upper": profile.slack_upper and _fields(profile.slack_upper),
-    }
+        told["scenarios"] = {name: document(scenario) for name, scenario in result.scenarios.items()}
+    return told
 
 
 def _method(use: MethodUse) -> dict[str, Any]:

@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Iterator
-from dataclasses import fields, is_dataclass
 from typing import Any
 
+from pipeflow.documents import key_of, laid_out, plain
 from pipeflow.study.curve_result import Condition, CurveResult, SystemCurve
 from pipeflow.study.result import SAFETY_NOTICE
 
@@ -43,7 +42,7 @@ _COLUMNS = ("flow", "total_head", "total_head_upper", "pump_head", "pump_head_up
 def curve_document(result: CurveResult) -> dict[str, Any]:
     """Lay the system curves of a case and its pumps out as the document that ``curve --json`` prints."""
     case, own = result.case, result.own
-    laid_out: dict[str, Any] = {
+    told: dict[str, Any] = {
         "title": case.title,
         "revision": case.revision,
         "file": case.file,
@@ -57,7 +56,7 @@ def curve_document(result: CurveResult) -> dict[str, Any]:
             "low_m": list(result.envelope_low),
             "high_m": list(result.envelope_high),
         },
-        "ranking": [laid_out_fields(one) for one in result.ranking],
+        "ranking": [laid_out(one, _UNITS) for one in result.ranking],
         "selected": next((one.name for one in result.ranking if one.holds), None),
         "cautions": [*result.cautions, *_cautions(own)],
         "methods": [
@@ -66,10 +65,10 @@ def curve_document(result: CurveResult) -> dict[str, Any]:
         "safety_notice": SAFETY_NOTICE,
     }
     if len(result.conditions) > 1:
-        laid_out["scenarios"] = {
+        told["scenarios"] = {
             one.name: {**_condition(one), "cautions": list(_cautions(one))} for one in result.conditions[1:]
         }
-    return laid_out
+    return told
 
 
 def _condition(one: Condition) -> dict[str, Any]:
@@ -78,11 +77,12 @@ def _condition(one: Condition) -> dict[str, Any]:
         "kind": one.kind,
         "system": _rows(system),
         "boundaries": {
-            _key(name): getattr(system, name) for name in ("laminar_until", "turbulent_from", "deposition_flow")
+            key_of(name, _UNITS): getattr(system, name)
+            for name in ("laminar_until", "turbulent_from", "deposition_flow")
         },
-        "flat_bands": [laid_out_fields(band) for band in system.flat_bands],
-        "pumps": [laid_out_fields(pump) for pump in one.pumps],
-        "flushes": [laid_out_fields(flush) for flush in one.flushes],
+        "flat_bands": [laid_out(band, _UNITS) for band in system.flat_bands],
+        "pumps": [laid_out(pump, _UNITS) for pump in one.pumps],
+        "flushes": [laid_out(flush, _UNITS) for flush in one.flushes],
     }
 
 
@@ -93,21 +93,7 @@ def _cautions(one: Condition) -> Iterator[str]:
 
 def _rows(system: SystemCurve) -> list[dict[str, Any]]:
     columns = zip(*(getattr(system, name) for name in _COLUMNS), strict=True)
-    return [{_key(name): _plain(value) for name, value in zip(_COLUMNS, row, strict=True)} for row in columns]
-
-
-def laid_out_fields(item: Any) -> dict[str, Any]:
-    """Lay a dataclass out, and those in it."""
-    return {_key(field.name): _plain(getattr(item, field.name)) for field in fields(item)}
-
-
-def _key(name: str) -> str:
-    return f"{name}_{_UNITS[name]}" if name in _UNITS else name
-
-
-def _plain(value: Any) -> Any:
-    if is_dataclass(value) and not isinstance(value, type):
-        return laid_out_fields(value)
-    if isinstance(value, tuple):
-        return [_plain(one) for one in value]
-    return None if isinstance(value, float) and not math.isfinite(value) else value
+    return [
+        {key_of(name, _UNITS): plain(value, _UNITS) for name, value in zip(_COLUMNS, row, strict=True)}
+        for row in columns
+    ]

@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-import math
-from dataclasses import fields
 from typing import Any
 
+from pipeflow.documents import laid_out, plain
 from pipeflow.study.result import SAFETY_NOTICE
 from pipeflow.study.sizing import Candidate, SizingResult
 from pipeflow.study.solve_for import Answer
@@ -51,17 +50,7 @@ def size_document(result: SizingResult) -> dict[str, Any]:
 
 
 def _candidate(one: Candidate) -> dict[str, Any]:
-    return {
-        f"{field.name}_{_UNITS[field.name]}" if field.name in _UNITS else field.name: _plain(getattr(one, field.name))
-        for field in fields(one)
-        if field.name != "excess"
-    }
-
-
-def _plain(value: Any) -> Any:
-    if isinstance(value, tuple):
-        return list(value)
-    return None if isinstance(value, float) and not math.isfinite(value) else value
+    return {key: value for key, value in laid_out(one, _UNITS).items() if key != "excess"}
 
 
 def answer_document(answer: Answer) -> dict[str, Any]:
@@ -77,5 +66,5 @@ def answer_document(answer: Answer) -> dict[str, Any]:
         "limit": answer.limit,
         "scenario": answer.scenario,
         "note": answer.note,
-        "each_limit": {name: _plain(value) for name, value in answer.each.items()},
+        "each_limit": {name: plain(value, {}) for name, value in answer.each.items()},
     }
