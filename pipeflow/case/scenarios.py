@@ -108,14 +108,34 @@ def _read_one(
 
 def _all_made(tree: Node, changes: list[_Change]) -> tuple[Node, list[Finding]]:
     wrong = []
+    redrawn = {change.path.removesuffix(".curve") for change in changes if change.path.endswith(".curve")}
     for change in changes:
         try:
+            if change.path.removesuffix(".speed") not in redrawn:
+                tree = _with_speed_of_curve(tree, change.path)
             tree = _made(tree, change)
         except _UnsureError:
             continue
         except _PathError as error:
             wrong.append(Finding(change.key.line, change.key.column, shown(change.path), str(error)))
     return tree, wrong
+
+
+def _with_speed_of_curve(tree: Node, path: str) -> Node:
+    """Keep the speed the case gives a pump as that of its curve, where a change gives it another to run at.
+
+    Without this the curve would move with the speed, and the change do nothing.
+    """
+    if not (path.startswith("pumps[") and path.endswith("].speed")):
+        return tree
+    pumps, step, _ = _steps(tree, path)
+    items = tree.values[pumps] if isinstance(tree, Mapping) else None
+    assert isinstance(items, Sequence)
+    pump = items.items[items.names.index(step[1:-1])]
+    if not isinstance(pump, Mapping) or "curve_speed" in pump.values or "speed" not in pump.values:
+        return tree
+    kept = _Change(f"{path.removesuffix('speed')}curve_speed", pump.keys["speed"], pump.values["speed"])
+    return _made(tree, kept)
 
 
 def _made(tree: Node, change: _Change) -> Node:

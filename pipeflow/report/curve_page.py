@@ -218,8 +218,9 @@ def flush_text(one: Condition, flush: Flush) -> str:
 def ranking_rows(ranking: Sequence[Ranked]) -> Iterator[tuple[str, tuple[str, ...]]]:
     """Each candidate in its rank with its verdict, and why it is out."""
     for one in ranking:
-        power = f", {format_value(one.shaft_power, 'kW')} at the shaft" if one.shaft_power else ""
-        motor = f", motor {format_value(one.standard_motor, 'kW', 3)}" if one.standard_motor else ""
+        shaft, each = ("shaft", "motor") if one.number == 1 else (f"{one.number} shafts together", "each motor")
+        power = f", {format_value(one.shaft_power, 'kW')} at the {shaft}" if one.shaft_power else ""
+        motor = f", {each} {format_value(one.standard_motor, 'kW', 3)}" if one.standard_motor else ""
         verdict = "holds in every condition" if one.holds else "out"
         yield f"{one.name}: {verdict}{power}{motor}", one.reasons
 

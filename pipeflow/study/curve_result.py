@@ -189,8 +189,8 @@ class Condition:
 class Ranked:
     """A candidate in its rank: whether it holds in every condition, and why not.
 
-    ``shaft_power`` is that of the case itself, ``standard_motor`` the size that covers every condition with the margin,
-    W.
+    ``shaft_power`` is that of the case itself, all ``number`` pumps together, ``standard_motor`` the size of each motor
+    that covers every condition with the margin, W.
     """
 
     name: str
@@ -198,6 +198,7 @@ class Ranked:
     shaft_power: float | None
     standard_motor: float | None
     reasons: tuple[str, ...]
+    number: int = 1
 
 
 @dataclass(frozen=True)

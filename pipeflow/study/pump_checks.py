@@ -10,6 +10,7 @@ import numpy as np
 from pipeflow.arrays import Array
 from pipeflow.case.model import Case, Pump
 from pipeflow.operability.limits import at_least, at_most, not_checked
+from pipeflow.pumping.duty import LINE_ASKS_MORE, RUN_OUT
 from pipeflow.study.checks import allowed_pressures
 from pipeflow.study.conditions import restart_pressure
 from pipeflow.study.curve_result import DutyPoint
@@ -48,9 +49,12 @@ def flow_check(case: Case, duty: DutyPoint | None, upper: DutyPoint | None, reas
     return replace(found, status="caution") if found.status == "fail" and (central or 0.0) >= wanted else found
 
 
-def run_out_check(reason: str) -> Check:
-    """Say that the line full of water holds no duty; throttled, it can be started."""
-    return Check("run_out", "caution", None, None, "", f"{reason}; it is started, flushed and tested throttled")
+def water_check(reason: str) -> Check:
+    """Say that the line full of water holds no duty: a pump that would run out can still be started throttled."""
+    if reason == RUN_OUT:
+        return Check("run_out", "caution", None, None, "", f"{reason}; it is started, flushed and tested throttled")
+    so = "; it cannot flush the line by itself" if reason == LINE_ASKS_MORE else ""
+    return Check("duty_on_water", "caution", None, None, "", f"{reason}{so}")
 
 
 def established_check(duties: Sequence[DutyPoint]) -> Check | None:
@@ -78,10 +82,13 @@ def share_check(duties: Sequence[DutyPoint]) -> Check | None:
 def motor_check(pump: Pump, duties: Sequence[DutyPoint]) -> Check | None:
     """Hold the power asked for, the lower efficiency and the margin in it, against a motor that is there."""
     asked = [duty.motor_power for duty in duties if duty.motor_power is not None]
-    if pump.motor_power is None or not asked:
+    if pump.motor_power is None:
         return None
-    value = max(asked) / pump.number
-    basis = f"by the lower of the two efficiencies, {pump.motor_margin:.0%} spare"
+    each = "each motor, " if pump.number > 1 else ""
+    basis = f"{each}by the lower of the two efficiencies, {pump.motor_margin:.0%} spare"
+    if not asked:
+        return not_checked("motor_power", (_efficiency_at_duty(pump),), "W", basis)
+    value = max(asked)
     return at_most("motor_power", value, value, pump.motor_power, "W", basis)
 
 
@@ -104,9 +111,17 @@ def npsh_check(available: float | None, asked: float, needs: tuple[str, ...]) ->
 
 def torque_check(pump: Pump, torque: float | None) -> Check | None:
     """Hold the torque against the limit of the shaft."""
-    if pump.torque_limit is None or torque is None:
+    if pump.torque_limit is None:
         return None
-    return at_most("torque", torque, torque, pump.torque_limit, "N.m", "at the highest pressure of a duty")
+    basis = "at the highest pressure of a duty"
+    if torque is None:
+        return not_checked("torque", (_efficiency_at_duty(pump),), "N.m", basis)
+    return at_most("torque", torque, torque, pump.torque_limit, "N.m", basis)
+
+
+def _efficiency_at_duty(pump: Pump) -> str:
+    """What a power that has no figure needs: a row of no efficiency says nothing of the power there."""
+    return f"an efficiency above 0 in {pump.curve} on both sides of the duty"
 
 
 def restart_check(required: float, credit: float | None, basis: str, *, is_established: bool) -> Check:
@@ -121,6 +136,14 @@ def restart_check(required: float, credit: float | None, basis: str, *, is_estab
     if found.status == "ok" and not is_established:
         return replace(found, status="caution", basis=f"{said}; not established there, the vendor must confirm it")
     return found
+
+
+def relief_above_duty(pump: Pump, pressure: float) -> Check | None:
+    """Hold the relief setting above the highest pressure of a duty, Pa: below it the valve stands open."""
+    if pump.relief_pressure is None:
+        return None
+    basis = "setting, above the highest pressure of a duty, at which it must stay shut"
+    return at_least("relief_above_duty", pump.relief_pressure, pressure, "Pa", basis)
 
 
 def relief_checks(pump: Pump, restart: float | None, allowed: float | None) -> Iterator[Check]:

@@ -140,13 +140,13 @@ class _Candidate:
             yield from self._restart(machine)
             return
         if self.kind == "water" and duty is None:
-            yield pump_checks.run_out_check(reason)
+            yield pump_checks.water_check(reason)
         elif self.kind != "water":
             yield pump_checks.flow_check(self.case, duty, upper, reason)
             yield from filter(None, [pump_checks.established_check(both), pump_checks.share_check(both)])
         if both:
             yield self._npsh(machine, both)
-            yield from filter(None, [pump_checks.motor_check(self.pump, both), self._torque(machine, both)])
+            yield from filter(None, [pump_checks.motor_check(self.pump, both), *self._of_displacement(machine, both)])
         if self.kind == "case" and isinstance(machine, DisplacementPump):
             yield from pump_checks.relief_checks(self.pump, *pump_checks.pressures_around(self.case))
 
@@ -163,11 +163,12 @@ class _Candidate:
         available = self._npsh_available(machine, flow)
         return pump_checks.npsh_check(available, float(npsh_asked(required)), needs)
 
-    def _torque(self, machine: Machine, both: list[DutyPoint]) -> Check | None:
-        if not isinstance(machine, DisplacementPump):
-            return None
-        weight = machine.density * STANDARD_GRAVITY
-        return pump_checks.torque_check(self.pump, _known(machine.torque(weight * max(one.head for one in both))))
+    def _of_displacement(self, machine: Machine, both: list[DutyPoint]) -> Iterator[Check | None]:
+        """Torque and relief at the highest pressure of a duty."""
+        if isinstance(machine, DisplacementPump):
+            pressure = machine.density * STANDARD_GRAVITY * max(one.head for one in both)
+            yield pump_checks.torque_check(self.pump, _known(machine.torque(pressure)))
+            yield pump_checks.relief_above_duty(self.pump, pressure)
 
     def _restart(self, machine: Machine) -> Iterator[Check]:
         """Hold the head that sets the line going against what the pump may be credited with at low flow."""
@@ -197,7 +198,10 @@ class _Candidate:
             )
         flows = self.case.flow
         if duty is not None and duty.flow > flows.maximum * (1.0 + 1e-6) > 0:
-            yield f"it gives more than maximum flow, {format_value(flows.maximum, 'm3/h')}: throttle, trim or slow it"
+            less = (
+                "slow it, never throttle it" if isinstance(machine, DisplacementPump) else "throttle, trim or slow it"
+            )
+            yield f"it gives more than maximum flow, {format_value(flows.maximum, 'm3/h')}: {less}"
         if isinstance(machine, DisplacementPump):
             yield DEAD_HEAD
             if thinner_than_tested(self.pump, self.case):

@@ -24,7 +24,8 @@ def _ranked(index: int, conditions: Sequence[Condition]) -> Ranked:
     own = conditions[0].pumps[index]
     reasons = tuple(reason for condition in conditions for reason in _reasons(condition.name, condition.pumps[index]))
     duty = own.duty_upper or own.duty
-    return Ranked(own.name, not reasons, duty.shaft_power if duty else None, _motor(index, conditions), reasons)
+    power, number = duty.shaft_power if duty else None, conditions[0].case.pumps[index].number
+    return Ranked(own.name, not reasons, power, _motor(index, conditions), reasons, number)
 
 
 def _motor(index: int, conditions: Sequence[Condition]) -> float | None:

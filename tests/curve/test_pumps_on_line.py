@@ -15,6 +15,7 @@ from typer.testing import CliRunner
 
 from pipeflow import load_case, solve
 from pipeflow.cli import app
+from pipeflow.report.curve_page import ranking_rows
 from pipeflow.study.curve import curve
 
 RUN = CliRunner()
@@ -143,6 +144,44 @@ def test_two_in_series_are_one_of_twice_the_head(tmp_path):
     assert first.shaft_power == pytest.approx(second.shaft_power, rel=1e-10)
 
 
+def test_the_motor_of_each_of_two_pumps_covers_its_half(tmp_path):
+    """``rho g Q H/eta`` of both on water, a half of it with its 15 % against one motor."""
+    rows = [(0, 22, 1), (60, 21, 50), (100, 18.5, 70), (140, 14, 66)]
+    more = "number: 2\narrangement: parallel\nmotor: {power: 5.5 kW}"
+    result = curve(load_case(line_with(tmp_path, WATER, "flow: 60 m3/h", rows=rows, more=more)))
+    pump = by_name(result)
+    duty, check = pump.duty, check_of(pump, "motor_power")
+    both = 998.2 * GRAVITY * duty.flow * duty.head / duty.efficiency
+    assert check.value == pytest.approx(1.15 * both / 2, rel=1e-9)
+    assert check.status == "fail"
+    assert result.ranking[0].standard_motor == duty.standard_motor == pytest.approx(11000)
+    (verdict, _) = next(ranking_rows(result.ranking))
+    assert verdict.endswith("at the 2 shafts together, each motor 11.0 kW")
+
+
+def test_a_scenario_that_slows_the_pump_moves_its_curve(tmp_path):
+    """The case gives a speed alone, that of the curve; the scenario runs at 0.9 of it, by the affinity laws."""
+    scenarios = "scenarios:\n  slow: {'pumps[candidate].speed': 1332 rpm}\n"
+    case = load_case(line_with(tmp_path, WATER, "flow: 60 m3/h", scenarios=scenarios))
+    duty = by_name(curve(case), "slow").duty
+    expected = 0.81 * pump_head_on_water(case.pumps[0].table, duty.flow / 0.9)
+    assert duty.head == pytest.approx(expected, rel=1e-9)
+    assert by_name(curve(case)).duty.head == pytest.approx(
+        pump_head_on_water(case.pumps[0].table, by_name(curve(case)).duty.flow), rel=1e-9
+    )
+
+
+def test_a_pump_too_weak_on_water_is_not_said_to_be_throttled(tmp_path):
+    """Into a vessel under pressure water asks for more head than the slurry."""
+    fluid = "{density: 2000 kg/m3, rheology: {model: newtonian, viscosity: 1 mPa.s}}"
+    ends = "source: {level: 3.2 m}\ndestination: {level: 2 m, pressure: 250 kPa}"
+    pump = by_name(curve(load_case(line_with(tmp_path, fluid, "flow: 40 m3/h", ends=ends))), "water")
+    assert pump.duty is None
+    check = check_of(pump, "duty_on_water")
+    assert "cannot flush" in check.basis
+    assert "throttled" not in check.basis
+
+
 def test_a_drooping_curve_may_cross_twice_and_the_stable_one_is_the_duty(tmp_path):
     """At rest the pump gives less than the static head, 28.5 m; past its droop it gives more."""
     rows = [(0, 27, 5), (20, 31, 30), (60, 36, 60), (100, 35.5, 70), (160, 22, 60)]
@@ -263,6 +302,30 @@ class TestPositiveDisplacement:
     def test_torque_past_its_limit_fails(self, tmp_path):
         line = self.line(tmp_path, "relief_pressure: 1600 kPa\ntorque_limit: 100 N.m")
         assert check_of(by_name(curve(load_case(line))), "torque").status == "fail"
+
+    def test_relief_below_the_pressure_it_runs_at_fails(self, tmp_path):
+        """On a Newtonian liquid, which asks for no more at a restart than when it runs."""
+        fluid = "{density: 1420 kg/m3, rheology: {model: newtonian, viscosity: 100 mPa.s}}"
+        case = load_case(self.line(tmp_path, "relief_pressure: 200 kPa", fluid=fluid))
+        pump = by_name(curve(case))
+        check = check_of(pump, "relief_above_duty")
+        assert check.limit == pytest.approx(case.fluid.density * GRAVITY * pump.duty_upper.head, rel=1e-12)
+        assert check.limit > check.value
+        assert check.status == "fail"
+
+    def test_a_power_without_a_figure_is_not_checked(self, tmp_path):
+        """The row without efficiency is the one below the duty."""
+        more = f"{self.MORE}\nmotor: {{power: 30 kW}}"
+        rows = ((0, 100, 0), (1200, 90, 62), (2400, 76, 55))
+        path = line_with(tmp_path, kind="positive-displacement", rows=rows, speed="200 rpm", more=more)
+        pump = by_name(curve(load_case(path)))
+        assert pump.duty.shaft_power is None
+        assert [check_of(pump, name).status for name in ("motor_power", "torque")] == ["not checked"] * 2
+
+    def test_it_is_never_told_to_be_throttled(self, tmp_path):
+        pump = by_name(curve(load_case(self.line(tmp_path, flow="flow: 60 m3/h"))))
+        said = next(caution for caution in pump.cautions if "more than maximum flow" in caution)
+        assert said.endswith("slow it, never throttle it")
 
     def test_speed_follows_the_flow_wanted(self, tmp_path):
         more = f"{self.MORE}\nvariable_speed: {{minimum: 50 rpm, maximum: 400 rpm}}"
