@@ -13,7 +13,11 @@ from pipeflow.study.result import Result
 from pipeflow.study.sizing import SizingResult, size
 from pipeflow.study.solving import solve
 from pipeflow.study.sweeping import Sweep, solids_sweep
+from pipeflow.study.uncertainty import UncertaintyResult, uncertainty
 from pipeflow.verdict import Check
+
+SAMPLES = 1024
+"""Enough to tell the quantiles to a hundredth, and quick enough for a page."""
 
 
 @dataclass(frozen=True)
@@ -21,7 +25,8 @@ class DesignFile:
     """A case solved, its system curves with the pumps, its sizes, and what rests on assumed inputs.
 
     ``sizing`` is None where no size can be tried; ``why_not_sized`` then says what the case lacks. ``solids`` is the
-    line at a little more and less solids, None where the rheology does not follow them.
+    line at a little more and less solids, None where the rheology does not follow them; ``uncertainty`` is None where
+    the case neither states any nor rests on readings.
     """
 
     result: Result
@@ -30,6 +35,7 @@ class DesignFile:
     why_not_sized: str
     assumed: tuple[AssumedInput, ...]
     solids: Sweep | None = None
+    uncertainty: UncertaintyResult | None = None
 
     @property
     def case(self) -> Case:
@@ -61,7 +67,16 @@ class DesignFile:
 def design_file(case: Case) -> DesignFile:
     """Work a case out for its page."""
     sizing, why_not = _sizing(case)
-    return DesignFile(solve(case), curve(case), sizing, why_not, assumed_inputs(case), solids_sweep(case))
+    result = solve(case)
+    return DesignFile(
+        result, curve(case), sizing, why_not, assumed_inputs(case), solids_sweep(case), _sampled(case, result)
+    )
+
+
+def _sampled(case: Case, result: Result) -> UncertaintyResult | None:
+    if not case.uncertainty and not case.sheets:
+        return None
+    return uncertainty(case, samples=SAMPLES, checks=[check.name for check in result.checks], workers=1)
 
 
 def _sizing(case: Case) -> tuple[SizingResult | None, str]:

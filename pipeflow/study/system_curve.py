@@ -52,7 +52,7 @@ def _edges(case: Case) -> Array:
     pipes = pipes_of(case)
     if not pipes:
         return np.empty(0)
-    line = line_at(case, case.flow.design or case.flow.maximum or 1e-3)
+    line = line_at(case, case.flow.design or case.flow.maximum or 1e-3, with_upper=False)
     area = np.pi / 4.0 * np.array([pipe.diameter for pipe in pipes]) ** 2
     both = [line.pipes.critical_velocity * area, line.pipes.turbulent_velocity * area]
     edges: Array = np.stack(both, axis=-1).ravel()
@@ -76,7 +76,7 @@ def system_curve(case: Case, flow: Array) -> SystemCurve:
         laminar_until=_within(first.min() if first.size else np.nan, flow),
         turbulent_from=_within(last.max() if last.size else np.nan, flow),
         deposition_flow=_deposition_flow(case, line),
-        flat_bands=tuple(_flat_bands(case)),
+        flat_bands=tuple(_flat_bands(case, edges)),
     )
 
 
@@ -112,11 +112,13 @@ def _deposition_flow(case: Case, line: LineFlow) -> float | None:
     return float((np.array(velocities) * np.pi / 4.0 * bores**2).max())
 
 
-def _flat_bands(case: Case) -> Iterator[FlatBand]:
-    """Transitions in which the stress hardly rises with the velocity."""
-    pipes, edges = pipes_of(case), _edges(case)
+def _flat_bands(case: Case, edges: Array) -> Iterator[FlatBand]:
+    """Transitions, between the flows of ``edges`` in turn, in which the stress hardly rises with the velocity."""
+    pipes = pipes_of(case)
+    if not pipes:
+        return
     ends = np.where(np.isfinite(edges), edges, 0.0)
-    stress = line_at(case, ends).pipes.wall_shear_stress if pipes else np.empty((0, 0))
+    stress = line_at(case, ends, with_edges=False, with_upper=False).pipes.wall_shear_stress
     for index, pipe in enumerate(pipes):
         low, high = (float(edge) for edge in edges[2 * index : 2 * index + 2])
         if not 0.0 < low < high:

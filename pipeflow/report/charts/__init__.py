@@ -13,6 +13,7 @@ if TYPE_CHECKING:
     from pipeflow.study.envelope import Envelope
     from pipeflow.study.result import Result
     from pipeflow.study.sweeping import Sweep
+    from pipeflow.study.uncertainty import UncertaintyResult
 
 
 def system_chart_svg(result: CurveResult) -> str:
@@ -34,6 +35,13 @@ def flow_curve_chart_svg(result: Result) -> str:
     from pipeflow.report.charts.flow_curve import flow_curve_chart
 
     return flow_curve_chart(result)
+
+
+def tornado_chart_svg(result: UncertaintyResult) -> str:
+    """Head loss by each uncertain input, an SVG document 170 mm wide; empty where none moves it."""
+    from pipeflow.report.charts.tornado import tornado_chart
+
+    return tornado_chart(result)
 
 
 def terminal_chart(result: CurveResult) -> str:

@@ -11,6 +11,7 @@ from pipeflow.report.html.about_line import line_sections
 from pipeflow.report.html.about_pumps import pump_sections
 from pipeflow.report.html.about_solids import solids_sections
 from pipeflow.report.html.about_trust import safety_section, trust_sections
+from pipeflow.report.html.about_uncertainty import uncertainty_sections
 from pipeflow.report.html.blocks import Block, Section, Table, Text, Verbatim, names_and_values, section
 from pipeflow.report.html.rendering import rendered
 from pipeflow.report.html.summary import job_rows, signatures, summary_rows
@@ -53,6 +54,7 @@ def _sections(found: DesignFile, files: Sequence[SourceFile]) -> Iterator[Sectio
     yield from section("summary", "Summary", names_and_values("Summary", summary_rows(found)))
     yield from line_sections(found.result)
     yield from solids_sections(found.solids)
+    yield from uncertainty_sections(found.uncertainty)
     yield from pump_sections(found)
     yield from trust_sections(found)
     yield from safety_section()
