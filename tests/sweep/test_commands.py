@@ -61,6 +61,7 @@ def test_the_unit_may_stand_once_or_twice(case):
     pages = [run("sweep", case, f"{STRESS}={text}", "--points", 3).stdout
              for text in ("4..8Pa", "4 Pa..8 Pa", "4000 mPa .. 8 Pa", " 4 ..8 Pa ")]  # fmt: skip
     assert len(set(pages)) == 1
+    assert "head loss, m: central and upper figure" in pages[-1]
 
 
 def test_a_sweep_that_holds_everywhere_leaves_with_0(tmp_path):

@@ -71,6 +71,6 @@ def envelope_chart_svg(envelope: Envelope) -> str:
 
 def sweep_in_terminal(sweep: Sweep) -> str:
     """Head loss over one input, in plain text of 80 columns."""
-    from pipeflow.report.charts.sweep_in_terminal import losses_in_terminal
+    from pipeflow.report.charts.terminal_losses import losses_in_terminal
 
     return losses_in_terminal(sweep)
