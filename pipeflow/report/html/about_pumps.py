@@ -15,6 +15,7 @@ from pipeflow.report.curve_page import (
     findings,
     flush_text,
     ranking_rows,
+    speeds_text,
 )
 from pipeflow.report.html.blocks import Block, Chart, Items, Section, Subsection, Text, section, table
 from pipeflow.report.size_page import COLUMNS, candidate_row, choice_texts, failing_sizes, near_sizes
@@ -71,9 +72,8 @@ def _pump(result: CurveResult, index: int) -> Iterator[Block]:
     pump = result.own.pumps[index]
     everywhere = [(one, one.pumps[index]) for one in result.conditions]
     yield Subsection(f"Pump: {pump.name}")
-    speed = f", {format_value(pump.speed, 'rpm')}" if pump.speed else ""
     correction = f" {correction_text(pump.correction)}" if pump.correction else ""
-    yield Text(f"{pump.kind}{speed}.{correction}")
+    yield Text(f"{pump.kind}{speeds_text(everywhere)}.{correction}")
     rows = [row for condition, one in everywhere for row in duty_rows(condition.name, one)]
     yield from table(f"Duties of {pump.name}", DUTY_COLUMNS, rows, (0, 8))
     found = tuple(text if mark == "!" else f"{mark.upper()}: {text}" for mark, text in findings(everywhere))

@@ -7,7 +7,7 @@ from collections.abc import Iterator
 from markupsafe import Markup
 
 from pipeflow.report.charts import tornado_chart_svg
-from pipeflow.report.html.blocks import Block, Chart, Items, Section, Text, section, table
+from pipeflow.report.html.blocks import Block, Chart, Items, Section, Subsection, Text, section, table
 from pipeflow.report.uncertainty_page import figure_row, index_row, odds_row, uncertainty_cautions
 from pipeflow.study.sampled_line import HEAD_LOSS
 from pipeflow.study.uncertainty import UncertaintyResult
@@ -33,8 +33,11 @@ def _uncertainty(found: UncertaintyResult) -> Iterator[Block]:
     yield from table("Figures over the samples", FIGURE_COLUMNS, figures, (0,))
     limits = [odds_row(odds, found.samples) for odds in found.limits]
     columns = ("limit", "", "fails in", "± error", "judged")
-    yield from table("Probability that a limit fails", columns, limits, (0, 1, 4))
+    if limits:
+        yield Subsection("Probability that a limit fails")
+        yield from table("Probability that a limit fails", columns, limits, (0, 1, 4))
     shares = [index_row(index) for index in found.figures[HEAD_LOSS].indices]
+    yield Subsection("What the spread of the head loss comes from")
     yield from table("Share of the variance of the head loss", INDEX_COLUMNS, shares, (0,))
     chart = tornado_chart_svg(found)
     if chart:
