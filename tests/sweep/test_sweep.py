@@ -11,6 +11,8 @@ from swept_lines import BINGHAM, FOLLOWING, LIMITED, NEWTONIAN, SETTLING, line
 from pipeflow.case.axes import Axis
 from pipeflow.case.variables import variable
 from pipeflow.operability.energy import specific_energy
+from pipeflow.report.html.about_solids import solids_sections
+from pipeflow.report.html.blocks import Table
 from pipeflow.study.points import case_at, points
 from pipeflow.study.solving import solve
 from pipeflow.study.sweeping import solids_sweep, sweep
@@ -136,3 +138,12 @@ def test_what_is_carried_on_or_left_is_said():
     assert "carried on past the solids tested, 0.3 .. 0.415" in found.cautions[0]
     assert any("does not follow the solids" in one for one in over(line(SETTLING), **{SOLIDS: (0.1, 0.3, 2)}).cautions)
     assert not over(line(SETTLING), **{"route[long pipe].length": (1.0, 2.0, 2)}).cautions
+
+
+def test_the_page_of_the_design_file_shows_them():
+    (shown,) = solids_sections(solids_sweep(line(FOLLOWING, more=LIMITED)))
+    tables = [block for block in shown.blocks if isinstance(block, Table)]
+    assert [row[0] for row in tables[0].rows] == ["0.3800", "0.3900", "0.4000", "0.4100"]
+    assert {len(row) for row in tables[0].rows} == {len(tables[0].heads)}
+    assert "outside the range tested" in shown.blocks[-1].text
+    assert not list(solids_sections(solids_sweep(line(SETTLING))))
