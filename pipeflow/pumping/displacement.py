@@ -41,6 +41,10 @@ ACCELERATION = Source(
 )
 CYLINDER_FACTOR = {1: 0.4, 2: 0.2, 3: 0.066}
 """C of the acceleration head by the number of cylinders, double-acting for the first two (from memory)."""
+POWER_MUST_BE_CONFIRMED = (
+    "power and torque of a positive-displacement pump are those in the liquid of its test: the drag in its gaps rises "
+    "with viscosity, the friction of a rubber stator changes with heat, and the vendor must confirm them"
+)
 DEAD_HEAD = (
     "a pump of positive displacement against a shut valve or a plugged line builds pressure until something breaks: it "
     "needs a relief device of its own without a valve before it, sized and set by a licensed engineer to the local code"

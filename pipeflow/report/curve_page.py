@@ -27,7 +27,7 @@ from pipeflow.verdict import Check
 ROWS = 14
 """Rows of evenly spaced flows that the page shows of a system curve, beside those stated."""
 DUTY_COLUMNS = (
-    "condition", "flow\nm3/h", "head\nm", "eff.\n%", "shaft\nkW", "of best\nflow %", "NPSH\nhas m", "NPSH\nasks m", "",
+    "condition", "flow\nm3/h", "head\nm", "eff.\n%", "shaft\nkW", "of best\nflow %", "NPSHa\nm", "NPSHr\nm", "",
 )  # fmt: skip
 GRAVEST_FIRST = ("fail", "caution", "not checked")
 MARK = {"ok": "ok", "not checked": "not checked", "caution": "caution", "fail": "FAIL"}
@@ -100,6 +100,7 @@ def _stated(flow: float, flows: FlowRange) -> str:
 def boundaries(one: Condition) -> Iterator[str]:
     """Where the regime changes, where solids settle, and where the curve is flat."""
     system = one.system
+    yield from _about_head(one)
     if system.laminar_until:
         yield f"Laminar in every pipe up to {format_value(system.laminar_until, 'm3/h')}."
     if system.turbulent_from:
@@ -112,15 +113,42 @@ def boundaries(one: Condition) -> Iterator[str]:
         yield f"Flat from {ends} in {band.pipe}: there a small error in head is a large one in flow."
 
 
+def _about_head(one: Condition) -> Iterator[str]:
+    """Where a high point asks for more than the destination, and where the line asks for no pump."""
+    system = one.system
+    heads = zip(system.flow, system.total_head, system.pump_head, strict=True)
+    raised = [flow for flow, total, pump in heads if pump - total > 1e-6]
+    if raised:
+        ends = " to ".join(format_value(flow, "m3/h") for flow in (raised[0], raised[-1]))
+        yield f"A high point of the route asks for more than the destination, {ends}; behind it the line runs slack."
+    idle = [flow for flow, head in zip(system.flow, system.pump_head_upper, strict=True) if head <= 0 < flow]
+    if idle:
+        yield f"Up to {format_value(idle[-1], 'm3/h')} the line asks for no head: it runs by itself."
+
+
 def _pump(pump: PumpOnLine, everywhere: Sequence[tuple[Condition, PumpOnLine]]) -> Iterator[str]:
-    speed = f", {format_value(pump.speed, 'rpm')}" if pump.speed else ""
-    yield paragraph(f"{pump.kind}{speed}")
+    yield paragraph(f"{pump.kind}{speeds_text(everywhere)}")
     rows = [row for condition, one in everywhere for row in duty_rows(condition.name, one)]
     yield from table(DUTY_COLUMNS, rows, words=(0, 8))
     if pump.correction:
         yield paragraph(correction_text(pump.correction), mark="  ")
     for mark, text in findings(everywhere):
         yield paragraph(text, mark=f"{mark} " if mark == "!" else f"{mark:<12}")
+
+
+def speeds_text(everywhere: Sequence[tuple[Condition, PumpOnLine]]) -> str:
+    """``, 888.5 rpm; thick 1002 rpm``: the speed in the case, and in the conditions that ask for another."""
+    own, *others = [(condition.name, _speeds(pump)) for condition, pump in everywhere]
+    if not own[1]:
+        return ""
+    apart = [f"{name} {speeds}" for name, speeds in others if speeds != own[1]]
+    return f", {own[1]}" + (f"; {', '.join(apart)}" if apart else "")
+
+
+def _speeds(pump: PumpOnLine) -> str:
+    """Speed on the central system curve, and on the upper one where it differs."""
+    both = [format_value(speed, "rpm") for speed in (pump.speed, pump.speed_upper) if speed]
+    return " or ".join(dict.fromkeys(both)) + (" (upper figure)" if len(set(both)) > 1 else "")
 
 
 def duty_rows(condition: str, pump: PumpOnLine) -> Iterator[tuple[str, ...]]:
@@ -152,19 +180,25 @@ def correction_text(found: CorrectionResult) -> str:
     """How a water curve was corrected, and by how much."""
     if found.head_factor is None:
         return found.note or "Not corrected."
+    if found.method == "none":
+        return "Not corrected: what flows counts as no thicker in this pump than the water of its test."
     factors = f"head x {found.head_factor:.3f}, flow x {found.flow_factor:.3f}"
     if found.efficiency_factor is not None:
         factors += f", efficiency x {found.efficiency_factor:.3f}"
     if found.efficiency_factor_for_motor is not None and found.efficiency_factor_for_motor != found.efficiency_factor:
         factors += f" (x {found.efficiency_factor_for_motor:.3f} by tau/gamma, which the motor covers)"
-    viscosities = ""
-    if found.viscosity_head is not None and found.viscosity_efficiency is not None:
-        head, efficiency = (format_value(v, "mPa.s") for v in (found.viscosity_head, found.viscosity_efficiency))
-        viscosities = f"; for the head by tau/gamma, {head}, for the efficiency by dtau/dgamma, {efficiency}"
-        if found.shear_rate is not None:
-            viscosities += f", at {significant(found.shear_rate, 3)} 1/s"
+    viscosities = _viscosities(found)
     note = f" {found.note}" if found.note else ""
     return f"Corrected by {found.method}: {factors}{viscosities}.{note}"
+
+
+def _viscosities(found: CorrectionResult) -> str:
+    """The two viscosities a correction by viscosity rests on, and their shear rate."""
+    if found.method == "cave" or found.viscosity_head is None or found.viscosity_efficiency is None:
+        return ""
+    head, efficiency = (format_value(v, "mPa.s") for v in (found.viscosity_head, found.viscosity_efficiency))
+    at = f", at {significant(found.shear_rate, 3)} 1/s" if found.shear_rate is not None else ""
+    return f"; for the head by tau/gamma, {head}, for the efficiency by dtau/dgamma, {efficiency}{at}"
 
 
 def findings(everywhere: Sequence[tuple[Condition, PumpOnLine]]) -> Iterator[tuple[str, str]]:
@@ -222,7 +256,8 @@ def ranking_rows(ranking: Sequence[Ranked]) -> Iterator[tuple[str, tuple[str, ..
         power = f", {format_value(one.shaft_power, 'kW')} at the {shaft}" if one.shaft_power else ""
         motor = f", {each} {format_value(one.standard_motor, 'kW', 3)}" if one.standard_motor else ""
         verdict = "holds in every condition" if one.holds else "out"
-        yield f"{one.name}: {verdict}{power}{motor}", one.reasons
+        unsure = f"; not checked: {', '.join(one.not_checked)}" if one.not_checked else ""
+        yield f"{one.name}: {verdict}{power}{motor}{unsure}", one.reasons
 
 
 def _ranking(ranking: Sequence[Ranked]) -> Iterator[str]:

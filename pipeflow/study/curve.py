@@ -47,9 +47,12 @@ def curve(case: Case) -> CurveResult:
 def _cautions(case: Case) -> tuple[str, ...]:
     if not case.pumps:
         return ()
+    from pipeflow.pumping.displacement import POWER_MUST_BE_CONFIRMED
     from pipeflow.pumping.slurry_curve import VENDOR_MUST_CONFIRM
+    from pipeflow.study.machines import CENTRIFUGAL
 
-    return (VENDOR_MUST_CONFIRM,)
+    kinds = {VENDOR_MUST_CONFIRM if pump.kind == CENTRIFUGAL else POWER_MUST_BE_CONFIRMED for pump in case.pumps}
+    return tuple(sorted(kinds))
 
 
 def _condition(name: str, kind: Kind, case: Case, flow: Array) -> Condition:

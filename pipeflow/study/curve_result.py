@@ -190,7 +190,7 @@ class Ranked:
     """A candidate in its rank: whether it holds in every condition, and why not.
 
     ``shaft_power`` is that of the case itself, all ``number`` pumps together, ``standard_motor`` the size of each motor
-    that covers every condition with the margin, W.
+    that covers every condition with the margin, W. ``not_checked`` names the checks that lacked an input.
     """
 
     name: str
@@ -199,6 +199,7 @@ class Ranked:
     standard_motor: float | None
     reasons: tuple[str, ...]
     number: int = 1
+    not_checked: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True)

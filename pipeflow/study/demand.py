@@ -11,12 +11,17 @@ from pipeflow.case.model import Case
 from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.line.profile import Profile, profile
 from pipeflow.line.route import LineFlow
+from pipeflow.line.site import SEA_LEVEL_PRESSURE
 from pipeflow.study.flows import line_at, pump_position
 from pipeflow.study.profile import atmospheric_pressure
 
 
 def heads_along(case: Case, line: LineFlow) -> Profile:
-    """Read the line at its nodes, high points asking for what they need where air and vapour pressure are known."""
+    """Read the line at its nodes, high points asking for what they need.
+
+    Where the pressure of air or vapour is not known no line holds less than a vacuum at sea level, as ``solve`` has it.
+    """
+    vapour = case.liquid.vapour_pressure if case.liquid else None
     return profile(
         line,
         case.fluid,
@@ -24,8 +29,8 @@ def heads_along(case: Case, line: LineFlow) -> Profile:
         case.source,
         case.destination,
         pump_position=pump_position(case),
-        atmospheric_pressure=atmospheric_pressure(case),
-        vapour_pressure=case.liquid.vapour_pressure if case.liquid else None,
+        atmospheric_pressure=atmospheric_pressure(case) or SEA_LEVEL_PRESSURE,
+        vapour_pressure=vapour or 0.0,
     )
 
 

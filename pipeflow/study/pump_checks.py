@@ -131,7 +131,7 @@ def restart_check(required: float, credit: float | None, basis: str, *, is_estab
     """
     said = f"to set the full line going, the factor in it; {basis}; local codes and a licensed engineer settle how"
     if credit is None:
-        return not_checked("restart_head", ("efficiency of the curve",), "m", said, required)
+        return not_checked("restart_head", ("a curve from no flow on, with its efficiency",), "m", said, required)
     found = at_most("restart_head", required, required, credit, "m", said)
     if found.status == "ok" and not is_established:
         return replace(found, status="caution", basis=f"{said}; not established there, the vendor must confirm it")

@@ -196,6 +196,7 @@ class _Candidate:
                 f"the curves cross {len(found.intersections)} times: how the pump is started decides where it runs; "
                 "where the line's curve falls past the pump's the flow does not hold"
             )
+        yield from self._about_speed(duty)
         flows = self.case.flow
         if duty is not None and duty.flow > flows.maximum * (1.0 + 1e-6) > 0:
             less = (
@@ -211,6 +212,15 @@ class _Candidate:
         for source in machine.sources:
             yield from range_cautions(source, machine.values_in_range)
 
+    def _about_speed(self, duty: DutyPoint | None) -> Iterator[str]:
+        """Say that a variable speed ends before the one that gives the design flow."""
+        ends, wanted = (self.pump.speed_minimum, self.pump.speed_maximum), self.case.flow.design
+        if None in ends or duty is None or wanted <= 0 or abs(duty.flow / wanted - 1.0) <= 1e-6:
+            return
+        end = "lowest" if duty.flow > wanted else "highest"
+        more = "more" if duty.flow > wanted else "less"
+        yield f"at the {end} speed of its range it gives {more} than design flow, {format_value(wanted, 'm3/h')}"
+
     def _methods(self, machine: Machine) -> Iterator[MethodUse]:
         for source in self._sources(machine):
             yield MethodUse(source, "pumps")
@@ -219,7 +229,7 @@ class _Candidate:
         if isinstance(machine, SlurryCurve):
             yield INTERPOLATION
             yield from machine.sources
-            if self.pump.curve_speed is not None and self.pump.curve_speed != self.pump.speed:
+            if self.pump.curve_speed is not None and self.pump.curve_speed != machine.water.speed:
                 yield AFFINITY
             if self.pump.trimmed_diameter is not None:
                 yield TRIM

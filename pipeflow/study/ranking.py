@@ -25,7 +25,9 @@ def _ranked(index: int, conditions: Sequence[Condition]) -> Ranked:
     reasons = tuple(reason for condition in conditions for reason in _reasons(condition.name, condition.pumps[index]))
     duty = own.duty_upper or own.duty
     power, number = duty.shaft_power if duty else None, conditions[0].case.pumps[index].number
-    return Ranked(own.name, not reasons, power, _motor(index, conditions), reasons, number)
+    checks = (check for condition in conditions for check in condition.pumps[index].checks)
+    unsure = dict.fromkeys(check.name.replace("_", " ") for check in checks if check.status == "not checked")
+    return Ranked(own.name, not reasons, power, _motor(index, conditions), reasons, number, tuple(unsure))
 
 
 def _motor(index: int, conditions: Sequence[Condition]) -> float | None:

@@ -9,13 +9,13 @@ from xml.etree import ElementTree
 
 import numpy as np
 import pytest
-from lines import GRAVITY, WATER, at_flow, line_with, pump_head_on_water
+from lines import GRAVITY, ROWS, WATER, at_flow, line_with, pump_head_on_water
 from scipy.interpolate import PchipInterpolator
 from typer.testing import CliRunner
 
 from pipeflow import load_case, solve
 from pipeflow.cli import app
-from pipeflow.report.curve_page import ranking_rows
+from pipeflow.report.curve_page import boundaries, correction_text, ranking_rows, speeds_text
 from pipeflow.study.curve import curve
 
 RUN = CliRunner()
@@ -156,7 +156,7 @@ def test_the_motor_of_each_of_two_pumps_covers_its_half(tmp_path):
     assert check.status == "fail"
     assert result.ranking[0].standard_motor == duty.standard_motor == pytest.approx(11000)
     (verdict, _) = next(ranking_rows(result.ranking))
-    assert verdict.endswith("at the 2 shafts together, each motor 11.0 kW")
+    assert "at the 2 shafts together, each motor 11.0 kW" in verdict
 
 
 def test_a_scenario_that_slows_the_pump_moves_its_curve(tmp_path):
@@ -169,6 +169,42 @@ def test_a_scenario_that_slows_the_pump_moves_its_curve(tmp_path):
     assert by_name(curve(case)).duty.head == pytest.approx(
         pump_head_on_water(case.pumps[0].table, by_name(curve(case)).duty.flow), rel=1e-9
     )
+
+
+def test_a_range_of_speeds_too_small_is_told_and_the_speeds_are_shown(tmp_path):
+    more = "variable_speed: {minimum: 1400 rpm, maximum: 1480 rpm}"
+    result = curve(load_case(line_with(tmp_path, WATER, "flow: 40 m3/h", more=more)))
+    assert any("at the lowest speed of its range it gives more" in caution for caution in by_name(result).cautions)
+    slow = "variable_speed: {minimum: 700 rpm, maximum: 1900 rpm}"
+    result = curve(load_case(line_with(tmp_path, more=slow)))
+    everywhere = [(one, one.pumps[0]) for one in result.conditions]
+    assert not any("of its range" in caution for caution in by_name(result).cautions)
+    assert f"water {by_name(result, 'water').speed * 30 / math.pi:.0f} rpm" in speeds_text(everywhere)
+    assert "affinity" in {use.source.key for use in by_name(result, "water").methods}
+
+
+def test_a_siphon_is_not_credited_below_a_vacuum_without_a_site(tmp_path):
+    """The same head as ``solve``, which knows that no line holds less than a vacuum."""
+    path = line_with(tmp_path, WATER, ends="source: {level: 3.2 m}\ndestination: {level: -20 m}")
+    text = path.read_text(encoding="utf-8").replace("site: {altitude: 620 m}\n", "")
+    path.write_text(
+        text.replace("pumps:", "  - {pipe: drop, size: NPS 6 Sch 40, length: 20 m}\npumps:"), encoding="utf-8"
+    )
+    case = load_case(path)
+    system = curve(case).own.system
+    at = int(np.argmin(np.abs(np.array(system.flow) - case.flow.design)))
+    assert system.flow[at] == pytest.approx(case.flow.design, rel=1e-12)
+    assert system.pump_head[at] > system.total_head[at] + 1
+    assert system.pump_head[at] == pytest.approx(solve(case).profile.pump_head, rel=1e-9)
+    assert next(boundaries(curve(case).own)).startswith("A high point of the route asks for more")
+
+
+def test_a_pump_that_is_not_corrected_says_so_and_what_was_not_checked(tmp_path):
+    path = line_with(tmp_path, WATER, rows=[row[:3] for row in ROWS])
+    result = curve(load_case(path))
+    assert correction_text(by_name(result).correction).startswith("Not corrected")
+    (verdict, _) = next(ranking_rows(result.ranking))
+    assert "; not checked: npsh" in verdict
 
 
 def test_a_pump_too_weak_on_water_is_not_said_to_be_throttled(tmp_path):
