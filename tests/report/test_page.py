@@ -24,7 +24,7 @@ from pipeflow.verdict import Check
 
 TITLES = (
     "Summary", "Fluid and basis", "Route", "Flow at design, 140.0 m3/h", "Totals", "Pressure and head along the route",
-    "System curve and pumps", "Sizes of suction line, discharge line, tank inlet", "Checks",
+    "How sure the answer is", "System curve and pumps", "Sizes of suction line, discharge line, tank inlet", "Checks",
     "Scenarios side by side, at design flow", "Assumed inputs, by their effect on the head", "Cautions", "Methods",
     "Before relying on this", "Inputs as read",
 )  # fmt: skip
