@@ -161,6 +161,8 @@ def duty_rows(condition: str, pump: PumpOnLine) -> Iterator[tuple[str, ...]]:
         yield condition, *_figures(pump.duty), MARK[worst]
     if pump.duty_upper is not None and pump.duty_upper != pump.duty:
         yield "  upper figure", *_figures(pump.duty_upper), ""
+    if pump.duty_maximum is not None:
+        yield "  maximum flow", *_figures(pump.duty_maximum), ""
     for other in pump.others:
         kind = "stable" if other.stable else "unstable"
         yield f"  also, {kind}", *_figures(other), ""

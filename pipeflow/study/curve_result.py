@@ -139,6 +139,8 @@ class PumpOnLine:
         Its curve on water at that speed, and as corrected for what flows.
     duty, duty_upper : DutyPoint or None
         On the central and the upper system curve; None where the curves do not meet.
+    duty_maximum : DutyPoint or None
+        Of a pump of variable speed, at the speed that gives maximum flow on the upper system curve.
     others : tuple of DutyPoint
         Further intersections with the central curve.
     checks : tuple of Check
@@ -160,6 +162,7 @@ class PumpOnLine:
     checks: tuple[Check, ...]
     cautions: tuple[str, ...]
     methods: tuple[MethodUse, ...]
+    duty_maximum: DutyPoint | None = None
 
 
 @dataclass(frozen=True)

@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+from functools import cached_property
 
 import numpy as np
 
 from pipeflow.arrays import Array
-from pipeflow.case.model import Case, Pump
+from pipeflow.case.model import Case, FlowRange, Pump
 from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.operability.validity import range_cautions
 from pipeflow.pumping.curve import AFFINITY, INTERPOLATION, TRIM
@@ -81,7 +82,18 @@ class _Candidate:
             checks=tuple(self._checks(upper, duty, duty_upper, reason)),
             cautions=tuple(self._cautions(machine, duty, found, found_upper)),
             methods=tuple(self._methods(machine)),
+            duty_maximum=self._at_maximum,
         )
+
+    @cached_property
+    def _at_maximum(self) -> DutyPoint | None:
+        """Duty of a variable speed that is to give maximum flow on the upper system curve, or comes nearest to it."""
+        most = self.case.flow.maximum
+        if self.pump.speed_maximum is None or self.kind not in ("case", "scenario") or most <= self.case.flow.design:
+            return None
+        fastest = replace(self.case, flow=FlowRange(most, most, most))
+        machine = made(self.pump, self.case, settled_speeds(self.pump, fastest, self.demand, for_restart=False)[1])
+        return None if self._refusal(machine) else self._duty(machine, self._meets(machine, self.demand.upper).duty)
 
     def _refusal(self, machine: Machine) -> str:
         if isinstance(machine, DisplacementPump) or not machine.refusal:
@@ -144,6 +156,7 @@ class _Candidate:
         elif self.kind != "water":
             yield pump_checks.flow_check(self.case, duty, upper, reason)
             yield from filter(None, [pump_checks.established_check(both), pump_checks.share_check(both)])
+        both += filter(None, [self._at_maximum])
         if both:
             yield self._npsh(machine, both)
             yield from filter(None, [pump_checks.motor_check(self.pump, both), *self._of_displacement(machine, both)])
@@ -155,12 +168,13 @@ class _Candidate:
         needs = tuple(key for key, known in pump_checks.needs_of_npsh(self.case).items() if not known)
         if not self.pump.table.npsh_required:
             needs = (*needs, f"npsh_required in {self.pump.curve}")
-        flow = max(one.flow for one in both)
+        highest = max(both, key=lambda one: one.flow)
+        flow, available = highest.flow, highest.npsh_available
         required = max((one.npsh_required or 0.0 for one in both), default=0.0)
-        if isinstance(machine, SlurryCurve) and flow < self.case.flow.maximum <= machine.ends[1]:
+        if isinstance(machine, SlurryCurve) and flow < self.case.flow.maximum * (1.0 - 1e-9) <= machine.ends[1]:
             flow = self.case.flow.maximum
             required = _known(machine.state(np.array([flow])).npsh_required) or required
-        available = self._npsh_available(machine, flow)
+            available = self._npsh_available(machine, flow)
         return pump_checks.npsh_check(available, float(npsh_asked(required)), needs)
 
     def _of_displacement(self, machine: Machine, both: list[DutyPoint]) -> Iterator[Check | None]:
@@ -197,6 +211,7 @@ class _Candidate:
                 "where the line's curve falls past the pump's the flow does not hold"
             )
         yield from self._about_speed(duty)
+        yield from self._about_maximum()
         flows = self.case.flow
         if duty is not None and duty.flow > flows.maximum * (1.0 + 1e-6) > 0:
             less = (
@@ -220,6 +235,13 @@ class _Candidate:
         end = "lowest" if duty.flow > wanted else "highest"
         more = "more" if duty.flow > wanted else "less"
         yield f"at the {end} speed of its range it gives {more} than design flow, {format_value(wanted, 'm3/h')}"
+
+    def _about_maximum(self) -> Iterator[str]:
+        """Say that the range of a variable speed ends before maximum flow."""
+        found, wanted = self._at_maximum, self.case.flow.maximum
+        if found is not None and found.flow < wanted * (1.0 - 1e-6):
+            given, most = format_value(found.flow, "m3/h"), format_value(wanted, "m3/h")
+            yield f"its highest speed gives {given} on the upper system curve, less than maximum flow, {most}"
 
     def _methods(self, machine: Machine) -> Iterator[MethodUse]:
         for source in self._sources(machine):

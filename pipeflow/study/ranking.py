@@ -33,7 +33,7 @@ def _ranked(index: int, conditions: Sequence[Condition]) -> Ranked:
 def _motor(index: int, conditions: Sequence[Condition]) -> float | None:
     """Give the largest of the standard motors that the duties ask for, W; a gel unbroken at full flow is none."""
     pumps = [condition.pumps[index] for condition in conditions if condition.kind != "restart"]
-    duties = [duty for pump in pumps for duty in (pump.duty, pump.duty_upper) if duty]
+    duties = [duty for pump in pumps for duty in (pump.duty, pump.duty_upper, pump.duty_maximum) if duty]
     return max((duty.standard_motor for duty in duties if duty.standard_motor), default=None)
 
 

@@ -11,6 +11,7 @@ import numpy as np
 import pytest
 from lines import GRAVITY, ROWS, WATER, at_flow, line_with, pump_head_on_water
 from scipy.interpolate import PchipInterpolator
+from scipy.optimize import brentq
 from typer.testing import CliRunner
 
 from pipeflow import load_case, solve
@@ -122,6 +123,27 @@ def test_a_speed_that_varies_gives_the_design_flow(tmp_path):
     assert pump.duty.flow == pytest.approx(case.flow.design, rel=1e-9)
     assert pump.duty_upper.flow == pytest.approx(case.flow.design, rel=1e-9)
     assert 700 < pump.speed * 30 / math.pi <= pump.speed_upper * 30 / math.pi < 1900
+
+
+def test_the_motor_of_a_variable_speed_covers_maximum_flow(tmp_path):
+    """On water: at the speed found the affinity laws put the line's own head on the curve at maximum flow."""
+    flow = "flow: {minimum: 70 m3/h, design: 90 m3/h, maximum: 110 m3/h}"
+    more = "variable_speed: {minimum: 700 rpm, maximum: 1900 rpm}\nmotor: {power: 30 kW}"
+    case = load_case(line_with(tmp_path, WATER, flow, more=more))
+    result = curve(case)
+    pump, table, most = by_name(result), case.pumps[0].table, 110 / 3600
+    head = solve(at_flow(case, most)).totals.total_head_upper
+
+    def excess(ratio):
+        return ratio**2 * pump_head_on_water(table, most / ratio) - head
+
+    ratio = brentq(excess, 0.8, 1.25)
+    efficiency = float(PchipInterpolator(table.flow, table.efficiency)(most / ratio))
+    assert pump.duty_maximum.flow == pytest.approx(most, rel=1e-9)
+    assert check_of(pump, "motor_power").value == pytest.approx(1.15 * 998.2 * GRAVITY * most * head / efficiency)
+    assert result.ranking[0].standard_motor == pump.duty_maximum.standard_motor > pump.duty.standard_motor
+    required = ratio**2 * float(PchipInterpolator(table.flow, table.npsh_required)(most / ratio))
+    assert check_of(pump, "npsh").limit == pytest.approx(required + 1)
 
 
 def test_a_speed_too_low_at_its_highest_fails_with_the_flow_it_gives(tmp_path):
