@@ -9,6 +9,8 @@ import numpy as np
 
 from pipeflow.arrays import Array
 from pipeflow.case.model import Case, Pump
+from pipeflow.constants import STANDARD_GRAVITY
+from pipeflow.line.elements import Pipe, Vessel
 from pipeflow.operability.limits import at_least, at_most, not_checked
 from pipeflow.pumping.duty import LINE_ASKS_MORE, RUN_OUT
 from pipeflow.study.checks import allowed_pressures
@@ -55,6 +57,22 @@ def water_check(reason: str) -> Check:
         return Check("run_out", "caution", None, None, "", f"{reason}; it is started, flushed and tested throttled")
     so = "; it cannot flush the line by itself" if reason == LINE_ASKS_MORE else ""
     return Check("duty_on_water", "caution", None, None, "", f"{reason}{so}")
+
+
+def fill_check(case: Case, shut_off: float) -> Check | None:
+    """Hold the lift over the crest of an empty line, m, against the head of the pump at its first flow.
+
+    A line once full may run as a siphon; until then nothing behind the crest helps.
+    """
+    rises = [float(element.rise) if isinstance(element, Pipe) else 0.0 for element in case.route]
+    heights: Array = np.cumsum(rises)[pump_position(case) :]
+    if not heights.size or not np.isfinite(shut_off):
+        return None
+    source = case.source or Vessel()
+    filled = float(source.level) + float(source.pressure) / (float(case.fluid.density) * STANDARD_GRAVITY)
+    lift = max(float(heights.max()) - filled, 0.0)
+    basis = "from the level of the source over the highest point after the pump, no siphon yet; against its first head"
+    return at_most("fill_head", lift, lift, shut_off, "m", basis)
 
 
 def established_check(duties: Sequence[DutyPoint]) -> Check | None:

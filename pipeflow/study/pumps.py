@@ -153,7 +153,9 @@ class _Candidate:
             return
         if self.kind == "water" and duty is None:
             yield pump_checks.water_check(reason)
-        elif self.kind != "water":
+        if self.kind == "water":
+            yield from filter(None, [self._fills()])
+        else:
             yield pump_checks.flow_check(self.case, duty, upper, reason)
             yield from filter(None, [pump_checks.established_check(both), pump_checks.share_check(both)])
         both += filter(None, [self._at_maximum])
@@ -162,6 +164,16 @@ class _Candidate:
             yield from filter(None, [pump_checks.motor_check(self.pump, both), *self._of_displacement(machine, both)])
         if self.kind == "case" and isinstance(machine, DisplacementPump):
             yield from pump_checks.relief_checks(self.pump, *pump_checks.pressures_around(self.case))
+
+    def _fills(self) -> Check | None:
+        """Whether a rotodynamic pump at its highest speed fills the line with water over its crest."""
+        machine = made(self.pump, self.case, self.pump.speed_maximum or self.pump.speed)
+        if isinstance(machine, DisplacementPump) or machine.refusal:
+            return None
+        first = machine.ends[0]
+        found = pump_checks.fill_check(self.case, float(machine.state(np.array([first])).head[0]))
+        is_unsure = first > 0 and found is not None and found.status == "fail"  # it gives more at shut-off
+        return replace(found, status="caution") if is_unsure and found else found
 
     def _npsh(self, machine: Machine, both: list[DutyPoint]) -> Check:
         """At the highest flow of a duty, or at maximum flow where the pump's curve reaches it."""

@@ -221,6 +221,21 @@ def test_a_siphon_is_not_credited_below_a_vacuum_without_a_site(tmp_path):
     assert next(boundaries(curve(case).own)).startswith("A high point of the route asks for more")
 
 
+@pytest.mark.parametrize(("shut_off", "status"), [(9.7, "fail"), (9.9, "ok")])
+def test_a_pump_too_weak_to_fill_the_line_over_its_crest_is_out(tmp_path, shut_off, status):
+    """The crest lies 13 m above the start, the source 3.2 m: 9.8 m to lift; as a siphon the line runs on less."""
+    rows = [(0, shut_off, 1, 1), (60, 9.5, 50, 1.2), (140, 8, 70, 1.5), (200, 1, 60, 2)]
+    path = line_with(tmp_path, WATER, "flow: 60 m3/h", rows=rows)
+    drop = "  - {pipe: drop, size: NPS 6 Sch 40, length: 20 m, rise: -8 m}\npumps:"
+    path.write_text(path.read_text(encoding="utf-8").replace("pumps:", drop), encoding="utf-8")
+    result = curve(load_case(path))
+    check = check_of(by_name(result, "water"), "fill_head")
+    assert by_name(result).duty.head < 9.7
+    assert check.value == pytest.approx(9.8)
+    assert check.status == status
+    assert any("fill head" in reason for reason in result.ranking[0].reasons) == (status == "fail")
+
+
 def test_a_pump_that_is_not_corrected_says_so_and_what_was_not_checked(tmp_path):
     path = line_with(tmp_path, WATER, rows=[row[:3] for row in ROWS])
     result = curve(load_case(path))
