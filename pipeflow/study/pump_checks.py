@@ -13,7 +13,8 @@ from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.line.elements import Pipe, Vessel
 from pipeflow.operability.limits import at_least, at_most, not_checked
 from pipeflow.pumping.duty import LINE_ASKS_MORE, RUN_OUT
-from pipeflow.study.checks import allowed_pressures
+from pipeflow.pumping.suction import SUCTION_YIELD, suction_yield_pressure
+from pipeflow.study.checks import allowed_pressures, stopped_line
 from pipeflow.study.conditions import restart_pressure
 from pipeflow.study.curve_result import DutyPoint
 from pipeflow.study.flows import pump_position
@@ -154,6 +155,24 @@ def restart_check(required: float, credit: float | None, basis: str, *, is_estab
     if found.status == "ok" and not is_established:
         return replace(found, status="caution", basis=f"{said}; not established there, the vendor must confirm it")
     return found
+
+
+def suction_yield_check(case: Case) -> Check | None:
+    """Hold level and pressure of the source over the pump against the yield stress of the suction line at rest, Pa."""
+    stopped, before = stopped_line(case), case.route[: pump_position(case)]
+    suction = [element for element in before if isinstance(element, Pipe)]
+    if stopped is None or not suction:
+        return None
+    stress, source = stopped.factor * stopped.static_yield_stress, case.source or Vessel()
+    held = sum(float(suction_yield_pressure(pipe.length, pipe.diameter, stress)) for pipe in suction)
+    level = float(source.level) if case.lowest_level is None else case.lowest_level
+    above = level - sum(float(pipe.rise) for pipe in suction)
+    pushed = float(source.pressure) + float(case.fluid.density) * STANDARD_GRAVITY * above
+    basis = (
+        "lowest level and pressure of the source over the pump, against the static yield stress of the suction line, "
+        "the factor in it: below that nothing flows to the pump by itself"
+    )
+    return at_least("suction_yield", pushed, held, "Pa", basis, SUCTION_YIELD.key, below="caution")
 
 
 def relief_above_duty(pump: Pump, pressure: float) -> Check | None:

@@ -210,6 +210,7 @@ class _Candidate:
             credit = _credit(at_low_flow(machine))
         established = isinstance(machine, DisplacementPump) or machine.method == "none"
         yield pump_checks.restart_check(pressure / weight, credit, basis, is_established=established)
+        yield from filter(None, [pump_checks.suction_yield_check(self.case)])
 
     def _cautions(self, machine: Machine, duty: DutyPoint | None, found: Duties, upper: Duties) -> Iterator[str]:
         if self.kind == "restart":

@@ -221,6 +221,17 @@ def test_a_siphon_is_not_credited_below_a_vacuum_without_a_site(tmp_path):
     assert next(boundaries(curve(case).own)).startswith("A high point of the route asks for more")
 
 
+@pytest.mark.parametrize(("level", "status"), [(1.0, "caution"), (1.5, "ok")])
+def test_a_gel_in_the_suction_line_holds_against_a_low_level(tmp_path, level, status):
+    """200 Pa with its factor of 1.3 in 6 m of 202.7 mm: 30.8 kPa, against (level + 1 m) of 1420 kg/m3."""
+    ends = f"source: {{level: 3.2 m, lowest_level: {level} m}}\ndestination: {{level: 2 m}}"
+    path = line_with(tmp_path, ends=ends, limits="restart: {static_yield_stress: 200 Pa, factor: 1.3}")
+    check = check_of(by_name(curve(load_case(path)), "restart after a stop"), "suction_yield")
+    assert check.limit == pytest.approx(4 * 1.3 * 200 * 6 / 0.2027, rel=1e-3)
+    assert check.value == pytest.approx(1420 * GRAVITY * (level + 1))
+    assert check.status == status
+
+
 @pytest.mark.parametrize(("shut_off", "status"), [(9.7, "fail"), (9.9, "ok")])
 def test_a_pump_too_weak_to_fill_the_line_over_its_crest_is_out(tmp_path, shut_off, status):
     """The crest lies 13 m above the start, the source 3.2 m: 9.8 m to lift; as a siphon the line runs on less."""
