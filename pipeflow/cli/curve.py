@@ -11,7 +11,7 @@ from pipeflow.cli.common import FAILS, app, print_json
 from pipeflow.errors import PipeflowError
 
 if TYPE_CHECKING:
-    from pipeflow.study.curve_result import CurveResult
+    from pipeflow.study.pumping.result import CurveResult
 
 
 @app.command()
@@ -26,7 +26,7 @@ def curve(
     Exit status: 0 a pump holds, or none is given; 1 none holds in every scenario; 2 the case can't be used.
     """
     from pipeflow.case.loading import load_case
-    from pipeflow.study.curve import curve as curve_of
+    from pipeflow.study.pumping.curve import curve as curve_of
 
     try:
         result = curve_of(load_case(case))

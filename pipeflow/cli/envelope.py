@@ -14,7 +14,7 @@ if TYPE_CHECKING:
     from collections.abc import Sequence
 
     from pipeflow.case.model import Case
-    from pipeflow.study.envelope import Envelope
+    from pipeflow.study.ranges.envelope import Envelope
 
 
 @app.command()
@@ -46,7 +46,7 @@ def envelope(
 
 def _found(case: Case, ranges: Sequence[str]) -> Envelope:
     from pipeflow.case.axes import flow_and_other
-    from pipeflow.study.envelope import envelope as envelope_of
+    from pipeflow.study.ranges.envelope import envelope as envelope_of
 
     if len(ranges) > 2:
         message = f"found {len(ranges)} ranges; one of the flow and one of another input"

@@ -11,7 +11,7 @@ from pipeflow.cli.common import FAILS, app, print_json
 from pipeflow.errors import PipeflowError
 
 if TYPE_CHECKING:
-    from pipeflow.study.fitting import FitResult
+    from pipeflow.study.readings.fitting import FitResult
 
 
 @app.command()
@@ -28,8 +28,8 @@ def fit(
     Exit status: 0 a model is selected; 1 none can be; 2 the readings can't be used.
     """
     from pipeflow.case.viscometer import load_readings
-    from pipeflow.study.fitting import fit as fit_readings
-    from pipeflow.study.fitting import options_from
+    from pipeflow.study.readings.fitting import fit as fit_readings
+    from pipeflow.study.readings.fitting import options_from
 
     try:
         options = options_from(use, model, error, robust)
@@ -43,7 +43,7 @@ def fit(
 
 def _print_fit(file: str, result: FitResult, as_json: bool) -> None:
     if as_json:
-        from pipeflow.study.fit_document import fit_document
+        from pipeflow.study.readings.fit_document import fit_document
 
         print_json(fit_document(file, result))
     else:

@@ -39,7 +39,7 @@ def size(
 
 
 def _size(case: Case, as_json: bool) -> int:
-    from pipeflow.study.sizing import size as size_case
+    from pipeflow.study.sizes.sizing import size as size_case
 
     result = size_case(case)
     if as_json:
@@ -54,7 +54,7 @@ def _size(case: Case, as_json: bool) -> int:
 
 
 def _solve_for(case: Case, quantity: str, as_json: bool) -> int:
-    from pipeflow.study.solve_for import solve_for
+    from pipeflow.study.sizes.solve_for import solve_for
 
     answer = solve_for(case, quantity)
     if as_json:

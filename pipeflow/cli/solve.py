@@ -11,7 +11,7 @@ from pipeflow.errors import PipeflowError
 
 if TYPE_CHECKING:
     from pipeflow.study import Result
-    from pipeflow.study.uncertainty import UncertaintyResult
+    from pipeflow.study.sampling.uncertainty import UncertaintyResult
 
 
 @app.command()
@@ -43,7 +43,7 @@ def _sampling(wanted: bool, samples: int | None, seed: int | None) -> dict[str, 
         if given:
             _refuse(f"--{next(iter(given))}  is of --uncertainty, which is not asked for")
         return None
-    from pipeflow.study.uncertainty import why_not
+    from pipeflow.study.sampling.uncertainty import why_not
 
     for name, value in given.items():
         problem = why_not(**{name: value})
@@ -72,7 +72,7 @@ def _solve_one(path: str, as_json: bool, sampling: dict[str, int] | None) -> int
 
 
 def _sampled(result: Result, sampling: dict[str, int]) -> UncertaintyResult:
-    from pipeflow.study.uncertainty import uncertainty
+    from pipeflow.study.sampling.uncertainty import uncertainty
 
     return uncertainty(result.case, checks=[check.name for check in result.checks], **sampling)
 

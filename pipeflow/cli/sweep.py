@@ -15,7 +15,7 @@ if TYPE_CHECKING:
 
     from pipeflow.case.axes import Axis
     from pipeflow.case.model import Case
-    from pipeflow.study.sweeping import Sweep
+    from pipeflow.study.ranges.sweeping import Sweep
 
 MOST_OF_ONE, MOST_OF_TWO = 1001, 31
 DEFAULT_OF_ONE, DEFAULT_OF_TWO = 21, 13
@@ -39,7 +39,7 @@ def sweep(
     Exit status: 0 every limit holds everywhere; 1 one fails somewhere; 2 the case or a range can't be used.
     """
     from pipeflow.case.loading import load_case
-    from pipeflow.study.sweeping import sweep as sweep_over
+    from pipeflow.study.ranges.sweeping import sweep as sweep_over
 
     try:
         loaded = load_case(case)

@@ -6,8 +6,8 @@ from typing import Any
 
 from pipeflow.documents import laid_out
 from pipeflow.sources import Source
+from pipeflow.study.readings.document import rheology_document
 from pipeflow.study.result import SAFETY_NOTICE, MethodUse, Result
-from pipeflow.study.rheology_document import rheology_document
 
 _UNITS = {
     "rise": "m",

@@ -6,7 +6,7 @@ from collections.abc import Iterator
 from typing import Any
 
 from pipeflow.documents import key_of, laid_out, plain
-from pipeflow.study.curve_result import Condition, CurveResult, SystemCurve
+from pipeflow.study.pumping.result import Condition, CurveResult, SystemCurve
 from pipeflow.study.result import SAFETY_NOTICE
 
 _UNITS = {

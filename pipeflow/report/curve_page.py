@@ -9,7 +9,8 @@ import numpy as np
 
 from pipeflow.case.model import FlowRange
 from pipeflow.report.text import heading, paragraph, table
-from pipeflow.study.curve_result import (
+from pipeflow.study.pumping.ranking import against
+from pipeflow.study.pumping.result import (
     Condition,
     CorrectionResult,
     CurveResult,
@@ -19,7 +20,6 @@ from pipeflow.study.curve_result import (
     Ranked,
     SystemCurve,
 )
-from pipeflow.study.ranking import against
 from pipeflow.study.result import SAFETY_NOTICE
 from pipeflow.units import format_value, significant, to_display
 from pipeflow.verdict import Check

@@ -5,7 +5,7 @@ from __future__ import annotations
 import csv
 import io
 
-from pipeflow.study.curve_result import CurveResult
+from pipeflow.study.pumping.result import CurveResult
 from pipeflow.units import to_display
 
 HEADER = (

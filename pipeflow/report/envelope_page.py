@@ -6,12 +6,12 @@ from collections.abc import Iterator
 
 from pipeflow.report.sweep_text import boundary_name, energy_unit, figure_and_unit, name_of, title_of, told, unit_of
 from pipeflow.report.text import heading, paragraph, table
-from pipeflow.study.boundaries import Boundary
-from pipeflow.study.envelope import Envelope, WindowAt
-from pipeflow.study.limits_over import REGIMES
-from pipeflow.study.pumps_over import PUMPS
+from pipeflow.study.ranges.boundaries import Boundary
+from pipeflow.study.ranges.envelope import Envelope, WindowAt
+from pipeflow.study.ranges.limits_over import REGIMES
+from pipeflow.study.ranges.pumps_over import PUMPS
+from pipeflow.study.ranges.window import Interval
 from pipeflow.study.result import SAFETY_NOTICE
-from pipeflow.study.window import Interval
 from pipeflow.units import format_si, significant, to_display
 
 ROWS = 7

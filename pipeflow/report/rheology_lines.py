@@ -8,8 +8,8 @@ from typing import TYPE_CHECKING
 
 from pipeflow.case.model import Followed, shown_condition
 from pipeflow.report.text import PARAMETER_UNITS, WIDTH, heading, paragraph, table
+from pipeflow.study.readings.result import BeyondTested, LawLoss, RheologyAnswers
 from pipeflow.study.result import Result
-from pipeflow.study.rheology_result import BeyondTested, LawLoss, RheologyAnswers
 from pipeflow.units import format_value, significant
 
 if TYPE_CHECKING:

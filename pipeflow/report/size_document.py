@@ -6,8 +6,8 @@ from typing import Any
 
 from pipeflow.documents import laid_out, plain
 from pipeflow.study.result import SAFETY_NOTICE
-from pipeflow.study.sizing import Candidate, SizingResult
-from pipeflow.study.solve_for import Answer
+from pipeflow.study.sizes.sizing import Candidate, SizingResult
+from pipeflow.study.sizes.solve_for import Answer
 
 _UNITS = {
     "diameter": "m",

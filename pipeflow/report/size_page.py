@@ -7,8 +7,8 @@ from collections.abc import Iterator
 
 from pipeflow.report.text import heading, paragraph, table
 from pipeflow.study.result import SAFETY_NOTICE
-from pipeflow.study.sizing import Candidate, SizingResult
-from pipeflow.study.solve_for import Answer
+from pipeflow.study.sizes.sizing import Candidate, SizingResult
+from pipeflow.study.sizes.solve_for import Answer
 from pipeflow.units import format_si, format_value, significant, to_display
 
 WIDTH = 80

@@ -6,11 +6,11 @@ import math
 from typing import Any
 
 from pipeflow.report.sweep_text import energy_unit
-from pipeflow.study.boundaries import Boundary
-from pipeflow.study.envelope import Envelope
+from pipeflow.study.ranges.boundaries import Boundary
+from pipeflow.study.ranges.envelope import Envelope
+from pipeflow.study.ranges.sweeping import Axis, Sweep, SweptPoint
+from pipeflow.study.ranges.window import Interval
 from pipeflow.study.result import SAFETY_NOTICE
-from pipeflow.study.sweeping import Axis, Sweep, SweptPoint
-from pipeflow.study.window import Interval
 from pipeflow.verdict import Check
 
 SI = {

@@ -6,8 +6,8 @@ from collections.abc import Iterator
 
 from pipeflow.report.sweep_text import energy_unit, figure_and_unit, name_of, steps, title_of, told, unit_of
 from pipeflow.report.text import heading, paragraph, table
+from pipeflow.study.ranges.sweeping import Sweep, SweptPoint
 from pipeflow.study.result import SAFETY_NOTICE
-from pipeflow.study.sweeping import Sweep, SweptPoint
 from pipeflow.units import significant, to_display
 from pipeflow.verdict import Check
 

@@ -7,8 +7,8 @@ import io
 from collections.abc import Iterable, Sequence
 
 from pipeflow.report.sweep_text import figure_and_unit, unit_of
-from pipeflow.study.envelope import Envelope
-from pipeflow.study.sweeping import Sweep, SweptPoint
+from pipeflow.study.ranges.envelope import Envelope
+from pipeflow.study.ranges.sweeping import Sweep, SweptPoint
 from pipeflow.units import to_display
 
 FIGURES = (

@@ -5,8 +5,8 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from pipeflow.case.model import Case
-from pipeflow.study.boundaries import Boundary
-from pipeflow.study.sweeping import Axis, Variable
+from pipeflow.study.ranges.boundaries import Boundary
+from pipeflow.study.ranges.sweeping import Axis, Variable
 from pipeflow.units import format_value, significant
 
 NAMES = {

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 from typing import Any
 
-from pipeflow.study.uncertainty import Bar, Estimate, Index, Odds, Spread, UncertaintyResult
+from pipeflow.study.sampling.uncertainty import Bar, Estimate, Index, Odds, Spread, UncertaintyResult
 
 
 def uncertainty_document(result: UncertaintyResult) -> dict[str, Any]:

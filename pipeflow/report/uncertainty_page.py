@@ -7,8 +7,8 @@ from collections.abc import Iterator
 from typing import Final
 
 from pipeflow.report.text import WIDTH, columns_of, heading, paragraph, table
-from pipeflow.study.uncertain_inputs import READINGS
-from pipeflow.study.uncertainty import Bar, Estimate, Index, Odds, Spread, UncertaintyResult
+from pipeflow.study.sampling.inputs import READINGS
+from pipeflow.study.sampling.uncertainty import Bar, Estimate, Index, Odds, Spread, UncertaintyResult
 from pipeflow.units import format_si, significant
 
 NAMES: Final = {"head_loss": "head loss", "total_head": "total head", "hydraulic_power": "hydraulic power"}

@@ -7,13 +7,13 @@ from dataclasses import dataclass
 from pipeflow.case.model import Case
 from pipeflow.errors import InputError
 from pipeflow.study.assumed import AssumedInput, assumed_inputs
-from pipeflow.study.curve import curve
-from pipeflow.study.curve_result import CurveResult
+from pipeflow.study.pumping.curve import curve
+from pipeflow.study.pumping.result import CurveResult
+from pipeflow.study.ranges.sweeping import Sweep, solids_sweep
 from pipeflow.study.result import Result
-from pipeflow.study.sizing import SizingResult, size
+from pipeflow.study.sampling.uncertainty import UncertaintyResult, uncertainty
+from pipeflow.study.sizes.sizing import SizingResult, size
 from pipeflow.study.solving import solve
-from pipeflow.study.sweeping import Sweep, solids_sweep
-from pipeflow.study.uncertainty import UncertaintyResult, uncertainty
 from pipeflow.verdict import Check
 
 SAMPLES = 1024

@@ -6,7 +6,7 @@ from dataclasses import dataclass, field
 
 from pipeflow.case.model import Case
 from pipeflow.sources import Source
-from pipeflow.study.rheology_result import RheologyAnswers
+from pipeflow.study.readings.result import RheologyAnswers
 from pipeflow.verdict import Check
 
 SAFETY_NOTICE = (

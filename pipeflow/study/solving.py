@@ -26,8 +26,8 @@ from pipeflow.study.cautions import cautions
 from pipeflow.study.checks import checks
 from pipeflow.study.flows import DESIGN, line_at, one_pipe, pipes_of
 from pipeflow.study.profile import profile_of
+from pipeflow.study.readings.answers import rheology_answers, rheology_cautions, rheology_checks, rheology_methods
 from pipeflow.study.result import ElementResult, MethodSpread, MethodUse, Result, Totals
-from pipeflow.study.rheology_answers import rheology_answers, rheology_cautions, rheology_checks, rheology_methods
 
 
 def solve(case: Case) -> Result:

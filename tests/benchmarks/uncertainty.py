@@ -22,9 +22,9 @@ from pipeflow.friction import solve_pipes
 from pipeflow.line.elements import Pipe
 from pipeflow.line.losses import side_by_side
 from pipeflow.line.route import with_pipe_axis
-from pipeflow.study.sampled_line import Figures
-from pipeflow.study.uncertain_inputs import METHOD, factors_of
-from pipeflow.study.uncertainty import uncertainty
+from pipeflow.study.sampling.inputs import METHOD, factors_of
+from pipeflow.study.sampling.line import Figures
+from pipeflow.study.sampling.uncertainty import uncertainty
 from pipeflow.uncertainty import inputs_of, points
 
 CASES = Path(__file__).parents[2] / "cases"

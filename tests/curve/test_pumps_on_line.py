@@ -17,7 +17,7 @@ from typer.testing import CliRunner
 from pipeflow import load_case, solve
 from pipeflow.cli import app
 from pipeflow.report.curve_page import boundaries, correction_text, ranking_rows, speeds_text
-from pipeflow.study.curve import curve
+from pipeflow.study.pumping.curve import curve
 
 RUN = CliRunner()
 

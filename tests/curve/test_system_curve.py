@@ -15,7 +15,7 @@ from pipeflow.case.model import FlowRange
 from pipeflow.report.curve_document import curve_document
 from pipeflow.report.curve_page import curve_page
 from pipeflow.report.curve_table import curve_table
-from pipeflow.study.curve import curve
+from pipeflow.study.pumping.curve import curve
 
 CASES = sorted((Path(__file__).parents[2] / "cases").glob("*.yaml"))
 

@@ -8,7 +8,7 @@ import pytest
 import snippets
 from fenced import blocks
 
-from pipeflow.study import pump_checks
+from pipeflow.study.pumping import checks as pump_checks
 
 
 @pytest.mark.parametrize("page", snippets.PAGES, ids=lambda page: page.stem)

@@ -24,8 +24,8 @@ from pipeflow.report.charts.labels import spread
 from pipeflow.report.text import columns_of
 from pipeflow.rheology import Newtonian, PowerLaw
 from pipeflow.study import solve
-from pipeflow.study.curve import curve
-from pipeflow.study.curve_result import Condition
+from pipeflow.study.pumping.curve import curve
+from pipeflow.study.pumping.result import Condition
 
 SVG = {"route": route_chart_svg, "flow-curve": flow_curve_chart_svg}
 SMALLEST_TEXT = 8.0
@@ -60,7 +60,7 @@ def test_the_same_case_gives_the_same_bytes(chart, thickener):
 def test_a_fresh_process_gives_the_same_bytes(filtrate):
     code = (
         "from pipeflow import load_case, solve\n"
-        "from pipeflow.study.curve import curve\n"
+        "from pipeflow.study.pumping.curve import curve\n"
         "from pipeflow.report.charts import *\n"
         "import sys\n"
         "case = load_case(sys.argv[1])\n"

@@ -9,7 +9,7 @@ import pytest
 
 from pipeflow import load_case
 from pipeflow.report.charts import tornado_chart_svg
-from pipeflow.study.uncertainty import uncertainty
+from pipeflow.study.sampling.uncertainty import uncertainty
 from pipeflow.units import significant
 
 CASE = Path(__file__).parents[2] / "cases" / "thickener-underflow.yaml"

@@ -13,7 +13,7 @@ from pipeflow.line.catalogue import find_size, sizes_of
 from pipeflow.line.elements import Equipment, Fluid, Pipe, Vessel
 from pipeflow.rheology import Bingham, HerschelBulkley, Newtonian, PowerLaw
 from pipeflow.study import solve
-from pipeflow.study.sizing import OWN, alike, size
+from pipeflow.study.sizes.sizing import OWN, alike, size
 
 CASE = """
 title: a line to be sized
@@ -248,7 +248,7 @@ def test_within_a_regime_a_larger_bore_never_has_more_head_loss(law):
 
 
 def variant_of(one):
-    from pipeflow.study.sizing import variant
+    from pipeflow.study.sizes.sizing import variant
 
     return replace(variant(one), limits={})
 
@@ -327,8 +327,8 @@ def test_the_optimum_of_a_power_law_line_is_that_of_the_closed_form():
     capital = price * recovery / 0.1**exponent
     best = ((3 * n + 1) * energy / (exponent * capital)) ** (1 / (exponent + 3 * n + 1))
     bores = best * np.array([0.98, 1.0, 1.02])
-    from pipeflow.study.economy import Bore, cost_per_year
-    from pipeflow.study.sizing import _candidates
+    from pipeflow.study.sizes.economy import Bore, cost_per_year
+    from pipeflow.study.sizes.sizing import _candidates
 
     tried = [Bore(str(place), float(bore), 1.0, None) for place, bore in enumerate(bores)]
     costs = [candidate.cost_per_year for candidate in _candidates({OWN: one}, tried, ("only",))]

@@ -10,7 +10,7 @@ from pipeflow.case.model import Limits
 from pipeflow.errors import InputError
 from pipeflow.line.elements import Pipe
 from pipeflow.study import solve
-from pipeflow.study.solve_for import solve_for
+from pipeflow.study.sizes.solve_for import solve_for
 
 CASE = """
 title: a line at its end

@@ -18,8 +18,8 @@ from pipeflow.report.charts import envelope_chart_svg, sweep_chart_svg
 from pipeflow.report.envelope_page import envelope_page
 from pipeflow.report.sweep_document import envelope_document
 from pipeflow.report.sweep_table import envelope_csv
-from pipeflow.study import envelope as study
-from pipeflow.study.sweeping import solids_sweep
+from pipeflow.study.ranges import envelope as study
+from pipeflow.study.ranges.sweeping import solids_sweep
 
 STRESS = "fluid.rheology.yield_stress"
 

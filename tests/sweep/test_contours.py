@@ -9,8 +9,8 @@ from hypothesis import strategies as st
 from hypothesis.extra.numpy import arrays
 
 from pipeflow.rootfind import find_between
-from pipeflow.study.boundaries import crossings
-from pipeflow.study.contours import chains, crossed_edges, rings
+from pipeflow.study.ranges.boundaries import crossings
+from pipeflow.study.ranges.contours import chains, crossed_edges, rings
 
 
 def test_a_step_is_one_line():

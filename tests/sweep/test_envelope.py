@@ -13,9 +13,9 @@ from pipeflow.case.axes import Axis
 from pipeflow.case.loading import load_case
 from pipeflow.case.variables import variable
 from pipeflow.errors import InputError
-from pipeflow.study import envelope as study
-from pipeflow.study.envelope import envelope
-from pipeflow.study.pumps import pumps_on_line
+from pipeflow.study.pumping.on_line import pumps_on_line
+from pipeflow.study.ranges import envelope as study
+from pipeflow.study.ranges.envelope import envelope
 from pipeflow.study.solving import solve
 
 CASES = Path(__file__).parents[2] / "cases"

@@ -13,9 +13,9 @@ from pipeflow.case.variables import variable
 from pipeflow.operability.energy import specific_energy
 from pipeflow.report.html.about_solids import solids_sections
 from pipeflow.report.html.blocks import Table
-from pipeflow.study.points import case_at, points
+from pipeflow.study.ranges.points import case_at, points
+from pipeflow.study.ranges.sweeping import solids_sweep, sweep
 from pipeflow.study.solving import solve
-from pipeflow.study.sweeping import solids_sweep, sweep
 
 SOLIDS = "fluid.solids.mass_fraction"
 GRAVITY = 9.80665

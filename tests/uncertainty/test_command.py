@@ -12,7 +12,7 @@ from typer.testing import CliRunner
 from pipeflow.case.loading import load_text
 from pipeflow.cli import app
 from pipeflow.report.uncertainty_page import tornado_lines, uncertainty_page
-from pipeflow.study.uncertainty import Bar, uncertainty
+from pipeflow.study.sampling.uncertainty import Bar, uncertainty
 
 CASE = """title: Sure or not
 fluid:

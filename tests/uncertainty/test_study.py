@@ -18,10 +18,10 @@ from pipeflow.line.elements import Fluid
 from pipeflow.rheology import HerschelBulkley
 from pipeflow.rheology.conditions import fit_dependence
 from pipeflow.study import solve
-from pipeflow.study.sampled_limits import Failures, failing, limits_of
-from pipeflow.study.sampled_line import HEAD_LOSS, POWER, TOTAL_HEAD, Figures
-from pipeflow.study.uncertain_inputs import METHOD, READINGS, factors_of, sheet_factor
-from pipeflow.study.uncertainty import uncertainty
+from pipeflow.study.sampling.inputs import METHOD, READINGS, factors_of, sheet_factor
+from pipeflow.study.sampling.limits import Failures, failing, limits_of
+from pipeflow.study.sampling.line import HEAD_LOSS, POWER, TOTAL_HEAD, Figures
+from pipeflow.study.sampling.uncertainty import uncertainty
 from pipeflow.uncertainty import inputs_of, points
 
 CASES = Path(__file__).parents[2] / "cases"

@@ -9,11 +9,11 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
-    from pipeflow.study.curve_result import CurveResult
-    from pipeflow.study.envelope import Envelope
+    from pipeflow.study.pumping.result import CurveResult
+    from pipeflow.study.ranges.envelope import Envelope
+    from pipeflow.study.ranges.sweeping import Sweep
     from pipeflow.study.result import Result
-    from pipeflow.study.sweeping import Sweep
-    from pipeflow.study.uncertainty import UncertaintyResult
+    from pipeflow.study.sampling.uncertainty import UncertaintyResult
 
 
 def system_chart_svg(result: CurveResult) -> str:

@@ -13,9 +13,9 @@ from matplotlib.path import Path
 from pipeflow.report.charts.canvas import FILL, INK, PALE, as_svg, drawing, shortened
 from pipeflow.report.charts.map_parts import contours, draw_boundaries, map_axes, said_below, shown
 from pipeflow.report.sweep_text import boundary_name, energy_unit, name_of
-from pipeflow.study.boundaries import Boundary, Figure
-from pipeflow.study.envelope import Envelope
-from pipeflow.study.limits_over import REGIMES
+from pipeflow.study.ranges.boundaries import Boundary, Figure
+from pipeflow.study.ranges.envelope import Envelope
+from pipeflow.study.ranges.limits_over import REGIMES
 from pipeflow.units import format_si, significant, to_display
 
 NAME = "envelope"

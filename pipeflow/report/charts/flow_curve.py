@@ -28,8 +28,8 @@ from pipeflow.report.charts.canvas import (
 from pipeflow.report.charts.labels import Above, Beside
 from pipeflow.rheology import Rheology
 from pipeflow.rheology.sheet import FitResult
+from pipeflow.study.readings.wall_rates import WallRates, wall_rates
 from pipeflow.study.result import Result
-from pipeflow.study.wall_rates import WallRates, wall_rates
 from pipeflow.units import significant
 
 LEFT, RIGHT, MAIN, BAR, OVER, UNDER, BETWEEN = 0.62, 1.62, 3.1, 0.2, 0.55, 0.5, 0.12

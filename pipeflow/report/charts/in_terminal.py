@@ -10,7 +10,7 @@ import plotille
 from pipeflow.arrays import Array
 from pipeflow.report.charts.axis import round_ends
 from pipeflow.report.text import WIDTH, paragraph
-from pipeflow.study.curve_result import CurveResult, DutyPoint, PumpOnLine
+from pipeflow.study.pumping.result import CurveResult, DutyPoint, PumpOnLine
 from pipeflow.units import significant, to_display
 
 COLUMNS, ROWS = 62, 21

@@ -16,10 +16,10 @@ from pipeflow.report.charts.axis import round_ends
 from pipeflow.report.charts.canvas import DASHES, GREY, INK, SMALL, canvas, panel
 from pipeflow.report.charts.labels import POINTS_PER_INCH, size_of
 from pipeflow.report.sweep_text import labelled, unit_of
-from pipeflow.study.boundaries import Boundary
-from pipeflow.study.limits_over import REGIMES
-from pipeflow.study.pumps_over import is_candidate
-from pipeflow.study.sweeping import Axis, Variable
+from pipeflow.study.ranges.boundaries import Boundary
+from pipeflow.study.ranges.limits_over import REGIMES
+from pipeflow.study.ranges.pumps_over import is_candidate
+from pipeflow.study.ranges.sweeping import Axis, Variable
 from pipeflow.units import significant, to_display
 
 LEFT, RIGHT, UNDER, OVER, HEIGHT = 0.66, 2.3, 0.88, 0.15, 4.1

@@ -24,7 +24,7 @@ from pipeflow.report.charts.canvas import (
 from pipeflow.report.charts.labels import Above, Beside
 from pipeflow.report.charts.map_parts import printed, shown
 from pipeflow.report.sweep_text import steps, told
-from pipeflow.study.sweeping import Sweep
+from pipeflow.study.ranges.sweeping import Sweep
 from pipeflow.units import significant
 
 LEFT, RIGHT, UNDER, OVER, OVER_NONE, MAIN, SMALL_PANEL, BETWEEN = 0.8, 1.36, 0.5, 0.5, 0.12, 2.6, 0.9, 0.18

@@ -9,7 +9,7 @@ import numpy as np
 from pipeflow.report.charts.canvas import GREY, as_svg, drawing, shortened
 from pipeflow.report.charts.map_parts import contours, draw_boundaries, map_axes, said_below, shown
 from pipeflow.report.sweep_text import boundary_name, told
-from pipeflow.study.sweeping import Sweep
+from pipeflow.study.ranges.sweeping import Sweep
 
 NAME = "sweep"
 

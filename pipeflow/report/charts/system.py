@@ -27,7 +27,7 @@ from pipeflow.report.charts.canvas import (
     shortened,
 )
 from pipeflow.report.charts.labels import Above, Beside, Placer
-from pipeflow.study.curve_result import Condition, CurveResult, DrawnCurve, DutyPoint, PumpOnLine
+from pipeflow.study.pumping.result import Condition, CurveResult, DrawnCurve, DutyPoint, PumpOnLine
 from pipeflow.units import significant, to_display
 
 LEFT, RIGHT = 0.62, 1.62

@@ -7,7 +7,7 @@ import plotille
 
 from pipeflow.report.charts.axis import round_ends
 from pipeflow.report.sweep_text import figure_and_unit, labelled
-from pipeflow.study.sweeping import Sweep
+from pipeflow.study.ranges.sweeping import Sweep
 from pipeflow.units import significant
 
 COLUMNS, ROWS = 62, 15

@@ -20,8 +20,8 @@ from pipeflow.report.charts.canvas import (
     set_ends,
     shortened,
 )
-from pipeflow.study.sampled_line import HEAD_LOSS
-from pipeflow.study.uncertainty import Bar, UncertaintyResult
+from pipeflow.study.sampling.line import HEAD_LOSS
+from pipeflow.study.sampling.uncertainty import Bar, UncertaintyResult
 from pipeflow.units import significant
 
 LEFT, RIGHT, UNDER, OVER, ROW = 2.3, 0.6, 0.5, 0.12, 0.3

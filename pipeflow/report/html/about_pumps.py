@@ -19,9 +19,9 @@ from pipeflow.report.curve_page import (
 )
 from pipeflow.report.html.blocks import Block, Chart, Items, Section, Subsection, Text, section, table
 from pipeflow.report.size_page import COLUMNS, candidate_row, choice_texts, failing_sizes, near_sizes
-from pipeflow.study.curve_result import CurveResult
 from pipeflow.study.design_file import DesignFile
-from pipeflow.study.sizing import SizingResult
+from pipeflow.study.pumping.result import CurveResult
+from pipeflow.study.sizes.sizing import SizingResult
 from pipeflow.units import format_value
 
 MARKS_OF_PUMPS = (

@@ -10,7 +10,7 @@ from pipeflow.report.charts import sweep_chart_svg
 from pipeflow.report.html.blocks import Block, Chart, Items, Section, Text, section, table
 from pipeflow.report.sweep_page import limits_over, sweep_row
 from pipeflow.report.sweep_text import energy_unit
-from pipeflow.study.sweeping import Sweep
+from pipeflow.study.ranges.sweeping import Sweep
 
 COLUMNS = (
     "solids", "regime", "head loss\nm", "upper\nm", "total head\nm", "pressure\nkPa", "power\nkW",

@@ -9,8 +9,8 @@ from markupsafe import Markup
 from pipeflow.report.charts import tornado_chart_svg
 from pipeflow.report.html.blocks import Block, Chart, Items, Section, Subsection, Text, section, table
 from pipeflow.report.uncertainty_page import figure_row, index_row, odds_row, uncertainty_cautions
-from pipeflow.study.sampled_line import HEAD_LOSS
-from pipeflow.study.uncertainty import UncertaintyResult
+from pipeflow.study.sampling.line import HEAD_LOSS
+from pipeflow.study.sampling.uncertainty import UncertaintyResult
 
 FIGURE_COLUMNS = ("", "5 %", "50 %", "95 %", "mean", "standard\ndeviation", "error of\nthese")
 INDEX_COLUMNS = ("input", "by itself", "", "with others", "")

@@ -14,14 +14,14 @@ from pipeflow.case.model import Case
 from pipeflow.case.variables import Variable, variable, variables
 from pipeflow.errors import InputError, Problem
 from pipeflow.operability.energy import specific_energy
-from pipeflow.study.boundaries import Boundary, Figure, crossings
 from pipeflow.study.checks import carried_solids
 from pipeflow.study.flows import DESIGN, pipes_of
-from pipeflow.study.limits_over import LimitsOver, governing_pipe, with_static_yield_stress
-from pipeflow.study.points import case_at
-from pipeflow.study.pumps_over import PUMPS, PumpsOver
-from pipeflow.study.sweeping import SOLIDS
-from pipeflow.study.window import Interval, Ring, Window
+from pipeflow.study.ranges.boundaries import Boundary, Figure, crossings
+from pipeflow.study.ranges.limits_over import LimitsOver, governing_pipe, with_static_yield_stress
+from pipeflow.study.ranges.points import case_at
+from pipeflow.study.ranges.pumps_over import PUMPS, PumpsOver
+from pipeflow.study.ranges.sweeping import SOLIDS
+from pipeflow.study.ranges.window import Interval, Ring, Window
 from pipeflow.verdict import Check
 
 COLUMNS, ROWS = 41, 17

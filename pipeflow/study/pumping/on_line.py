@@ -20,12 +20,11 @@ from pipeflow.pumping.motor import STANDARD_MOTORS, motor_power, standard_motor
 from pipeflow.pumping.slurry_curve import ESTABLISHED_SHARE, SlurryCurve
 from pipeflow.pumping.suction import NPSH, NPSH_MARGIN, npsh_asked
 from pipeflow.sources import Source
-from pipeflow.study import pump_checks
-from pipeflow.study.conditions import restart_pressure
-from pipeflow.study.curve_result import CorrectionResult, DrawnCurve, DutyPoint, Kind, PumpOnLine
-from pipeflow.study.demand import Demand
 from pipeflow.study.flows import pipes_of, pump_position
-from pipeflow.study.machines import (
+from pipeflow.study.pumping import checks as pump_checks
+from pipeflow.study.pumping.conditions import restart_pressure
+from pipeflow.study.pumping.demand import Demand
+from pipeflow.study.pumping.machines import (
     CENTRIFUGAL,
     Machine,
     all_on_water,
@@ -35,6 +34,7 @@ from pipeflow.study.machines import (
     thinner_than_tested,
     water_curve,
 )
+from pipeflow.study.pumping.result import CorrectionResult, DrawnCurve, DutyPoint, Kind, PumpOnLine
 from pipeflow.study.result import MethodUse
 from pipeflow.units import format_value
 from pipeflow.verdict import Check

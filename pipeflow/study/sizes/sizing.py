@@ -18,8 +18,8 @@ from pipeflow.line.elements import Element, Pipe, Vessel
 from pipeflow.line.fittings import DEFAULT_METHOD, EXIT, resistance
 from pipeflow.line.route import LineFlow
 from pipeflow.study.checks import checks, stopped_line
-from pipeflow.study.economy import Bore, Economy, cost_per_year, economy
 from pipeflow.study.flows import DESIGN, MAXIMUM, MINIMUM, pipes_of
+from pipeflow.study.sizes.economy import Bore, Economy, cost_per_year, economy
 from pipeflow.units import format_si, format_value
 from pipeflow.verdict import Check
 

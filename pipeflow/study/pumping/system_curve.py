@@ -13,9 +13,9 @@ from pipeflow.line.route import LineFlow
 from pipeflow.operability.deposition import FORMULAS, default_formula
 from pipeflow.operability.transition import FLAT_SLOPE
 from pipeflow.study.checks import carried_solids
-from pipeflow.study.curve_result import FlatBand, SystemCurve
-from pipeflow.study.demand import heads_along
 from pipeflow.study.flows import line_at, pipes_of
+from pipeflow.study.pumping.demand import heads_along
+from pipeflow.study.pumping.result import FlatBand, SystemCurve
 
 BEYOND = 1.3
 """How far past the maximum flow a system curve is drawn."""

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Sequence
 
-from pipeflow.study.curve_result import Condition, PumpOnLine, Ranked
+from pipeflow.study.pumping.result import Condition, PumpOnLine, Ranked
 from pipeflow.units import format_si
 from pipeflow.verdict import Check
 

@@ -17,12 +17,12 @@ from pipeflow.line.route import LineFlow
 from pipeflow.pumping.displacement import DisplacementPump
 from pipeflow.pumping.slurry_curve import ESTABLISHED_SHARE, SlurryCurve
 from pipeflow.pumping.suction import npsh_asked
-from pipeflow.study.boundaries import FIGURES, JUMP, Key
-from pipeflow.study.demand import Demand, Heads
 from pipeflow.study.flows import DESIGN
-from pipeflow.study.limits_over import with_static_yield_stress
-from pipeflow.study.machines import Machine, made
-from pipeflow.study.points import case_at, points
+from pipeflow.study.pumping.demand import Demand, Heads
+from pipeflow.study.pumping.machines import Machine, made
+from pipeflow.study.ranges.boundaries import FIGURES, JUMP, Key
+from pipeflow.study.ranges.limits_over import with_static_yield_stress
+from pipeflow.study.ranges.points import case_at, points
 
 PUMPS: Final = "pumps"
 """Name of what is asked of the candidates together: that one of them serves."""

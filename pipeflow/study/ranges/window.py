@@ -9,10 +9,10 @@ from functools import cached_property
 import numpy as np
 from numpy.typing import NDArray
 
-from pipeflow.study.boundaries import Crossings, Figure, Key
-from pipeflow.study.contours import Edge, rings
-from pipeflow.study.limits_over import REGIMES
-from pipeflow.study.pumps_over import is_candidate
+from pipeflow.study.ranges.boundaries import Crossings, Figure, Key
+from pipeflow.study.ranges.contours import Edge, rings
+from pipeflow.study.ranges.limits_over import REGIMES
+from pipeflow.study.ranges.pumps_over import is_candidate
 
 Ring = tuple[tuple[float, float], ...]
 """Points (flow, value) around an area, the area to the left; a hole runs the other way round."""

@@ -15,10 +15,10 @@ from pipeflow.operability.limits import at_least, at_most, not_checked
 from pipeflow.pumping.duty import LINE_ASKS_MORE, RUN_OUT
 from pipeflow.pumping.suction import SUCTION_YIELD, suction_yield_pressure
 from pipeflow.study.checks import allowed_pressures, stopped_line
-from pipeflow.study.conditions import restart_pressure
-from pipeflow.study.curve_result import DutyPoint
 from pipeflow.study.flows import pump_position
 from pipeflow.study.profile import atmospheric_pressure
+from pipeflow.study.pumping.conditions import restart_pressure
+from pipeflow.study.pumping.result import DutyPoint
 from pipeflow.units import format_si
 from pipeflow.verdict import Check
 

@@ -9,13 +9,13 @@ import numpy as np
 
 from pipeflow.arrays import Array
 from pipeflow.case.model import Case
-from pipeflow.study.conditions import conditions, is_gelled
-from pipeflow.study.curve_result import Condition, CurveResult, Flush, Kind, PumpOnLine
 from pipeflow.study.flows import pipes_of
-from pipeflow.study.ranking import ranked
+from pipeflow.study.pumping.conditions import conditions, is_gelled
+from pipeflow.study.pumping.ranking import ranked
+from pipeflow.study.pumping.result import Condition, CurveResult, Flush, Kind, PumpOnLine
+from pipeflow.study.pumping.system_curve import flows_of_interest, system_curve
 from pipeflow.study.result import MethodUse
 from pipeflow.study.solving import solve
-from pipeflow.study.system_curve import flows_of_interest, system_curve
 
 
 def curve(case: Case) -> CurveResult:
@@ -49,7 +49,7 @@ def _cautions(case: Case) -> tuple[str, ...]:
         return ()
     from pipeflow.pumping.displacement import POWER_MUST_BE_CONFIRMED
     from pipeflow.pumping.slurry_curve import VENDOR_MUST_CONFIRM
-    from pipeflow.study.machines import CENTRIFUGAL
+    from pipeflow.study.pumping.machines import CENTRIFUGAL
 
     kinds = {VENDOR_MUST_CONFIRM if pump.kind == CENTRIFUGAL else POWER_MUST_BE_CONFIRMED for pump in case.pumps}
     return tuple(sorted(kinds))
@@ -58,7 +58,7 @@ def _cautions(case: Case) -> tuple[str, ...]:
 def _condition(name: str, kind: Kind, case: Case, flow: Array) -> Condition:
     pumps: tuple[PumpOnLine, ...] = ()
     if case.pumps:
-        from pipeflow.study.pumps import pumps_on_line
+        from pipeflow.study.pumping.on_line import pumps_on_line
 
         pumps = pumps_on_line(case, kind)
     flushes = tuple(_flushes(case, pumps)) if kind == "water" else ()

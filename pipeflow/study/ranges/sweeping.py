@@ -15,10 +15,10 @@ from pipeflow.case.variables import Variable as Variable
 from pipeflow.case.variables import variable
 from pipeflow.friction import Regime
 from pipeflow.operability.energy import specific_energy
-from pipeflow.study.boundaries import Boundary, crossings
 from pipeflow.study.flows import DESIGN, pipes_of
-from pipeflow.study.limits_over import LimitsOver
-from pipeflow.study.points import Points, points, worst_of
+from pipeflow.study.ranges.boundaries import Boundary, crossings
+from pipeflow.study.ranges.limits_over import LimitsOver
+from pipeflow.study.ranges.points import Points, points, worst_of
 from pipeflow.verdict import Check
 
 SOLIDS: Final = "fluid.solids.mass_fraction"

@@ -19,8 +19,8 @@ from pipeflow.rheology.models import Casson, GeneralizedPowerLaw
 from pipeflow.rheology.tangent import FAR, continued_by_tangent, is_far
 from pipeflow.sources import Source
 from pipeflow.study.flows import DESIGN, distinct_flows, pipes_of
+from pipeflow.study.readings.result import BeyondTested, LawLoss, RheologyAnswers
 from pipeflow.study.result import MethodUse
-from pipeflow.study.rheology_result import BeyondTested, LawLoss, RheologyAnswers
 from pipeflow.verdict import Check
 
 if TYPE_CHECKING:

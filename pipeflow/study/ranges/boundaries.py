@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 
 from pipeflow.arrays import Array
 from pipeflow.rootfind import find_between
-from pipeflow.study.contours import Edge, chains, crossed_edges
+from pipeflow.study.ranges.contours import Edge, chains, crossed_edges
 from pipeflow.verdict import Check
 
 Figure = Literal["central", "upper"]

@@ -16,7 +16,7 @@ from pipeflow.line.elements import Pipe
 from pipeflow.sizing import Root, Variant
 from pipeflow.study.checks import dynamic_yield_stress
 from pipeflow.study.flows import pipes_of
-from pipeflow.study.sizing import OWN, alike, methods_of, refused, variant, varying
+from pipeflow.study.sizes.sizing import OWN, alike, methods_of, refused, variant, varying
 from pipeflow.units import echo
 
 SPAN: Final = 1e4

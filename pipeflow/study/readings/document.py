@@ -6,8 +6,8 @@ from dataclasses import asdict, fields
 from typing import TYPE_CHECKING, Any, Final
 
 from pipeflow.case.model import Case, Followed
-from pipeflow.study.fit_document import fit_document, with_unit
-from pipeflow.study.rheology_result import BeyondTested, LawLoss, RheologyAnswers
+from pipeflow.study.readings.fit_document import fit_document, with_unit
+from pipeflow.study.readings.result import BeyondTested, LawLoss, RheologyAnswers
 
 if TYPE_CHECKING:
     from pipeflow.rheology.sheet import FitResult

@@ -15,7 +15,7 @@ from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.line import route
 from pipeflow.line.elements import Pipe
 from pipeflow.line.route import LineFlow
-from pipeflow.study.uncertain_inputs import METHOD
+from pipeflow.study.sampling.inputs import METHOD
 
 HEAD_LOSS: Final = "head_loss"
 TOTAL_HEAD: Final = "total_head"

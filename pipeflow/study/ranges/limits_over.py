@@ -11,10 +11,10 @@ import numpy as np
 from pipeflow.arrays import Array
 from pipeflow.case.model import Case
 from pipeflow.case.varying import varied
-from pipeflow.study.boundaries import JUMP, Key, excess_of
 from pipeflow.study.checks import dynamic_yield_stress
 from pipeflow.study.flows import DESIGN, line_at, pipes_of
-from pipeflow.study.points import Points, points
+from pipeflow.study.ranges.boundaries import JUMP, Key, excess_of
+from pipeflow.study.ranges.points import Points, points
 from pipeflow.verdict import Check
 
 LAMINAR, TURBULENT = "laminar until", "turbulent from"

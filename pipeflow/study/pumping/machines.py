@@ -16,7 +16,7 @@ from pipeflow.pumping.solids import PumpedSolids
 from pipeflow.pumping.speed import TOO_FAST, speed_for
 from pipeflow.rheology import Newtonian
 from pipeflow.study.checks import carrier_density
-from pipeflow.study.demand import Demand
+from pipeflow.study.pumping.demand import Demand
 
 Machine = SlurryCurve | DisplacementPump
 CENTRIFUGAL = "centrifugal"

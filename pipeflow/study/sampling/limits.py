@@ -19,7 +19,7 @@ from pipeflow.operability.deposition import Solids, deposition_velocity
 from pipeflow.operability.restart import RESTART_FACTOR, STATIC_RATIO, demand_along, yield_pressure
 from pipeflow.study.checks import carried_solids
 from pipeflow.study.flows import pipes_of
-from pipeflow.study.sampled_line import SampledLine, of_every_sample, split
+from pipeflow.study.sampling.line import SampledLine, of_every_sample, split
 
 BEYOND_TESTED: Final = "beyond tested"
 NOT_TURBULENT: Final = "not turbulent"

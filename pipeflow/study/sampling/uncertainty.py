@@ -13,9 +13,9 @@ import numpy as np
 from pipeflow.arrays import Array
 from pipeflow.case.model import Case
 from pipeflow.sources import Source
-from pipeflow.study.sampled_limits import BEYOND_TESTED, NOT_TURBULENT, Failures, failing, limits_of
-from pipeflow.study.sampled_line import HEAD_LOSS, POWER, TOTAL_HEAD, Figures
-from pipeflow.study.uncertain_inputs import METHOD, METHOD_SPREAD, UncertainInput, factors_of
+from pipeflow.study.sampling.inputs import METHOD, METHOD_SPREAD, UncertainInput, factors_of
+from pipeflow.study.sampling.limits import BEYOND_TESTED, NOT_TURBULENT, Failures, failing, limits_of
+from pipeflow.study.sampling.line import HEAD_LOSS, POWER, TOTAL_HEAD, Figures
 from pipeflow.uncertainty import Analysis, Factor, Settings, analyse, inputs_of, points
 from pipeflow.uncertainty import Estimate as Estimate
 from pipeflow.uncertainty import Index as Index

@@ -16,7 +16,7 @@ from pipeflow.line import route
 from pipeflow.line.elements import Fluid
 from pipeflow.line.route import LineFlow
 from pipeflow.study.checks import checks
-from pipeflow.study.rheology_answers import beyond_tested, rheology_checks
+from pipeflow.study.readings.answers import beyond_tested, rheology_checks
 from pipeflow.verdict import Check
 
 

@@ -12,8 +12,8 @@ from pipeflow.case.model import Case, Liquid, Methods, Restart
 from pipeflow.line.elements import Fluid
 from pipeflow.rheology import Newtonian
 from pipeflow.study.checks import state_of, stopped_line
-from pipeflow.study.curve_result import Kind
 from pipeflow.study.flows import line_at
+from pipeflow.study.pumping.result import Kind
 
 OWN = "the case"
 WATER = "water"

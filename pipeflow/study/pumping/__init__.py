@@ -1,0 +1,1 @@
+"""Candidate pumps on the system curve of a case."""

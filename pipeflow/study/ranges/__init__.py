@@ -1,0 +1,1 @@
+"""A case over ranges of its inputs: sweeps and the duty envelope."""

@@ -1,0 +1,1 @@
+"""What rests on readings: fits, rival laws, rates beyond those tested."""

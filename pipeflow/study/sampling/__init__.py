@@ -1,0 +1,1 @@
+"""A case sampled over what its inputs may be."""

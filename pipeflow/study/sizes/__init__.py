@@ -1,0 +1,1 @@
+"""The sizes of a case, and the most a line takes."""
