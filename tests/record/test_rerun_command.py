@@ -28,9 +28,14 @@ def run(*arguments):
     return CliRunner().invoke(app, ["rerun", *map(str, arguments)])
 
 
-def words(found):
-    """The page without its line breaks."""
-    return " ".join(found.stdout.split())
+def letters(text):
+    """A text without its spaces and line breaks, which stand within a long path too."""
+    return "".join(text.split())
+
+
+def says(found, text):
+    """Whether the page says it, however its lines are broken."""
+    return letters(text) in letters(found.stdout)
 
 
 def put(path, text=None, **changes):
@@ -51,7 +56,7 @@ def test_without_a_record_it_says_so_and_leaves_with_1(tmp_path):
     path = put(tmp_path / "line.yaml")
     found = run(path)
     assert found.exit_code == 1
-    assert "no record yet: pipeflow rerun --accept writes it" in words(found)
+    assert says(found, "no record yet: pipeflow rerun --accept writes it")
     assert not (tmp_path / "line.record.json").exists()
 
 
@@ -69,14 +74,14 @@ def test_accept_writes_the_record_and_then_nothing_has_moved(tmp_path):
     assert record.stat().st_mtime_ns == before, "a record that says the same is left as it is"
     quiet = run(path)
     assert quiet.exit_code == 0
-    assert "line.yaml: nothing moved 1 case: 1 as before" in words(quiet)
+    assert says(quiet, "line.yaml: nothing moved 1 case: 1 as before")
 
 
 def test_comments_and_units_spelt_otherwise_are_silent(line):
     put(line, "# checked\n" + text_of(density="1.4 t/m3", length="0.2 km", loss="0.12 bar", roughness="50 µm"))
     found = run(line)
     assert found.exit_code == 0
-    assert "line.yaml: nothing moved 1 case: 1 as before" in words(found)
+    assert says(found, "line.yaml: nothing moved 1 case: 1 as before")
 
 
 def test_the_record_is_the_same_from_another_folder(line, monkeypatch):
@@ -91,7 +96,7 @@ def test_a_change_is_shown_and_explained(line):
     found = run(line)
     assert found.exit_code == 1
     assert max(len(text) for text in found.stdout.splitlines()) <= 80
-    said = words(found)
+    said = " ".join(found.stdout.split())
     assert "head loss, m" in said
     assert " m: yield stress +" in said
     assert "flow +" in said
@@ -148,7 +153,7 @@ def test_inputs_of_another_version_are_compared_but_not_explained(line):
     put(line, yield_stress="12 Pa")
     found = run(line)
     assert found.exit_code == 1
-    assert "Not explained: the record is of another version: its Case has colour" in words(found)
+    assert says(found, "Not explained: the record is of another version: its Case has colour")
 
 
 def test_the_tolerance_decides(line):
@@ -156,7 +161,7 @@ def test_the_tolerance_decides(line):
     assert run(line).exit_code == 1
     within = run(line, "--tolerance", "1 %")
     assert within.exit_code == 0
-    assert "nothing moved; inputs changed, within the tolerance" in words(within)
+    assert says(within, "nothing moved; inputs changed, within the tolerance")
     assert run(line, "--tolerance", "0%").exit_code == 1
 
 
@@ -216,7 +221,7 @@ def test_a_bad_case_does_not_stop_the_others(tmp_path):
     assert "b.yaml:1:1" in found.stderr
     assert sorted(path.name for path in tmp_path.rglob("*.record.json")) == ["a.record.json", "c.record.json"]
     assert "passed over:" in found.stdout
-    assert "other.yaml." in words(found)
+    assert says(found, "other.yaml.")
     documents = [json.loads(text)["file"] for text in run(tmp_path, "--json").stdout.splitlines()]
     assert [Path(file).name for file in documents] == ["a.yaml", "c.yml"]
 
@@ -271,11 +276,11 @@ def test_a_record_that_cannot_be_used_is_said_and_kept(spoilt, line):
     record.write_bytes(spoilt)
     found = run(line)
     assert found.exit_code == 1
-    assert "the record can't be used:" in words(found)
+    assert says(found, "the record can't be used:")
     assert record.read_bytes() == spoilt
     accepted = run(line, "--accept")
     assert accepted.exit_code == 0
-    assert "kept as line.record.json.kept" in words(accepted)
+    assert says(accepted, "kept as line.record.json.kept")
     assert line.with_name("line.record.json.kept").read_bytes() == spoilt
     assert run(line).exit_code == 0
 
@@ -341,7 +346,7 @@ def test_two_reruns_at_once_leave_whole_records(tmp_path):
     assert [(one.communicate()[1], one.returncode) for one in both] == [(b"", 0), (b"", 0)]
     quiet = subprocess.run(command, capture_output=True, text=True, check=False)
     assert (quiet.returncode, quiet.stderr) == (0, "")
-    assert words(quiet).count(".yaml: nothing moved") == 6
+    assert letters(quiet.stdout).count(letters(".yaml: nothing moved")) == 6
     assert "\x1b" not in quiet.stdout
 
 
@@ -400,7 +405,7 @@ def test_since_a_revision(repository):
     assert by_name["thickener-underflow-readings"]["outcome"] == "compared"
     assert found.exit_code == 1
     page = run(cases, "--since", "first")
-    assert "gone.yaml: gone since then" in words(page)
+    assert says(page, "gone.yaml: gone since then")
     assert not list(cases.glob("*.record.json"))
     assert (repository / ".git" / "index").read_bytes() == status
     assert run(cases / "line.yaml", "--since", "HEAD").exit_code == 0
