@@ -52,10 +52,15 @@ def flow_check(case: Case, duty: DutyPoint | None, upper: DutyPoint | None, reas
     return replace(found, status="caution") if found.status == "fail" and (central or 0.0) >= wanted else found
 
 
-def water_check(reason: str) -> Check:
-    """Say that the line full of water holds no duty: a pump that would run out can still be started throttled."""
+def water_check(reason: str, last_power: float | None) -> Check:
+    """Say that the line full of water holds no duty: a pump that would run out can still be started throttled.
+
+    ``last_power`` is that at the last flow of its curve, W.
+    """
     if reason == RUN_OUT:
-        return Check("run_out", "caution", None, None, "", f"{reason}; it is started, flushed and tested throttled")
+        takes = "" if last_power is None else f", where it takes {format_si(last_power, 'W')} at the shaft"
+        said = f"{reason}{takes}; it is started, flushed and tested throttled"
+        return Check("run_out", "caution", None, None, "", said)
     so = "; it cannot flush the line by itself" if reason == LINE_ASKS_MORE else ""
     return Check("duty_on_water", "caution", None, None, "", f"{reason}{so}")
 
@@ -165,9 +170,7 @@ def suction_yield_check(case: Case) -> Check | None:
         return None
     stress, source = stopped.factor * stopped.static_yield_stress, case.source or Vessel()
     held = sum(float(suction_yield_pressure(pipe.length, pipe.diameter, stress)) for pipe in suction)
-    level = float(source.level) if case.lowest_level is None else case.lowest_level
-    above = level - sum(float(pipe.rise) for pipe in suction)
-    pushed = float(source.pressure) + float(case.fluid.density) * STANDARD_GRAVITY * above
+    pushed = _at_rest(case, float(source.level) if case.lowest_level is None else case.lowest_level)
     basis = (
         "lowest level and pressure of the source over the pump, against the static yield stress of the suction line, "
         "the factor in it: below that nothing flows to the pump by itself"
@@ -176,10 +179,10 @@ def suction_yield_check(case: Case) -> Check | None:
 
 
 def relief_above_duty(pump: Pump, pressure: float) -> Check | None:
-    """Hold the relief setting above the highest pressure of a duty, Pa: below it the valve stands open."""
+    """Hold the relief setting above the highest gauge pressure of a duty, Pa: below it the valve stands open."""
     if pump.relief_pressure is None:
         return None
-    basis = "setting, above the highest pressure of a duty, at which it must stay shut"
+    basis = "setting, above the highest pressure at the pump's outlet at a duty, gauge, at which it must stay shut"
     return at_least("relief_above_duty", pump.relief_pressure, pressure, "Pa", basis)
 
 
@@ -200,7 +203,19 @@ def relief_checks(pump: Pump, restart: float | None, allowed: float | None) -> I
 
 
 def pressures_around(case: Case) -> tuple[float | None, float | None]:
-    """Pressure the pump adds at a restart, and what the weakest pipe after it holds, Pa; None where not known."""
+    """Gauge pressure at the pump's outlet at a restart, and what the weakest pipe after it holds, Pa.
+
+    None where not known.
+    """
     names = {element.name for element in case.route[pump_position(case) :]}
     held = [limit for name, limit in allowed_pressures(case).items() if name in names]
-    return restart_pressure(case), min(held) if held and not any(np.isnan(held)) else None
+    added, source = restart_pressure(case), case.source or Vessel()
+    restart = None if added is None else added + max(_at_rest(case, float(source.level)), 0.0)
+    return restart, min(held) if held and not any(np.isnan(held)) else None
+
+
+def _at_rest(case: Case, level: float) -> float:
+    """Gauge pressure that a level of the source, m above the route's start, puts on the pump at rest, Pa."""
+    rise = sum(float(one.rise) for one in case.route[: pump_position(case)] if isinstance(one, Pipe))
+    pressure = float(case.source.pressure) if case.source else 0.0
+    return pressure + float(case.fluid.density) * STANDARD_GRAVITY * (level - rise)

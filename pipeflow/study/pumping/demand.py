@@ -36,18 +36,23 @@ def heads_along(case: Case, line: LineFlow) -> Profile:
 
 @dataclass(frozen=True)
 class Heads:
-    """Heads at several flows, m: what the pump must give, central and upper, and the NPSH available by the upper."""
+    """Heads at several flows, m: what the pump must give, central and upper, and what it finds at its inlet.
+
+    ``npsh_available`` is at the lowest level of the source, ``inlet`` the gauge head at the level stated, both by the
+    upper figure.
+    """
 
     central: Array
     upper: Array
     npsh_available: Array
+    inlet: Array
 
 
 @dataclass(frozen=True)
 class Demand:
     """The line of a case as its pump sees it; what has been solved once is kept.
 
-    NPSH available is that of the lowest level of the source, nan where the pressure of air or vapour is not known.
+    NPSH available is nan where the pressure of air or vapour is not known.
     """
 
     case: Case
@@ -76,8 +81,9 @@ class Demand:
         """Read the line of the case, solved at several flows."""
         found = heads_along(self.case, line)
         inlet = 2 * pump_position(self.case) + 1
-        above = found.upper.total_head[..., inlet] - found.elevation[..., inlet] - self._drawn_down()
-        return Heads(found.central.pump_head, found.upper.pump_head, above + self._air_over_vapour())
+        above = found.upper.total_head[..., inlet] - found.elevation[..., inlet]
+        available = above - self._drawn_down() + self._air_over_vapour()
+        return Heads(found.central.pump_head, found.upper.pump_head, available, above)
 
     def _drawn_down(self) -> float:
         """Fall of the source from its level to its lowest, m."""

@@ -152,7 +152,7 @@ class _Candidate:
             yield from self._restart(machine)
             return
         if self.kind == "water" and duty is None:
-            yield pump_checks.water_check(reason)
+            yield pump_checks.water_check(reason, _known(machine.state(np.array([machine.ends[1]])).shaft_power_upper))
         if self.kind == "water":
             yield from filter(None, [self._fills()])
         else:
@@ -192,9 +192,11 @@ class _Candidate:
     def _of_displacement(self, machine: Machine, both: list[DutyPoint]) -> Iterator[Check | None]:
         """Torque and relief at the highest pressure of a duty."""
         if isinstance(machine, DisplacementPump):
-            pressure = machine.density * STANDARD_GRAVITY * max(one.head for one in both)
-            yield pump_checks.torque_check(self.pump, _known(machine.torque(pressure)))
-            yield pump_checks.relief_above_duty(self.pump, pressure)
+            weight = machine.density * STANDARD_GRAVITY
+            added = weight * max(one.head for one in both)
+            found = weight * float(self.demand.at(np.array([one.flow for one in both])).inlet.max())
+            yield pump_checks.torque_check(self.pump, _known(machine.torque(added)))
+            yield pump_checks.relief_above_duty(self.pump, added + max(found, 0.0))
 
     def _restart(self, machine: Machine) -> Iterator[Check]:
         """Hold the head that sets the line going against what the pump may be credited with at low flow."""
