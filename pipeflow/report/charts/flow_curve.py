@@ -178,6 +178,6 @@ def _bars(axes: Axes, rates: Sequence[WallRates], lowest: float) -> None:
         axes.plot([start, one.maximum], [index, index], color=GREY, linewidth=4.5, solid_capstyle="butt")
         axes.plot([max(one.design, lowest)], [index], "|", markersize=10, markeredgewidth=1.6, color=INK)
         more = f" and {len(one.pipes) - 1} more" if len(one.pipes) > 1 else ""
-        beside.add(one.maximum, index, shortened(f"wall, {one.pipes[0]}", 26 - len(more)) + more)
+        beside.add(one.maximum, index, shortened(f"wall, {one.pipes[0]}", 23 - len(more)) + more)
     beside.draw()
     axes.grid(visible=True, axis="x", color=FILL, linewidth=0.5)
