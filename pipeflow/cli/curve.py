@@ -39,16 +39,16 @@ def curve(
 
 
 def _write(result: CurveResult, csv: Path | None, svg: Path | None) -> None:
-    from pipeflow.report.written import write_text
+    from pipeflow.report.written import write_result
 
     if csv is not None:
         from pipeflow.report.curve_table import curve_table
 
-        write_text(csv, curve_table(result))
+        write_result(csv, curve_table(result))
     if svg is not None:
         from pipeflow.report.charts import system_chart_svg
 
-        write_text(svg, system_chart_svg(result))
+        write_result(svg, system_chart_svg(result))
 
 
 def _print(result: CurveResult, as_json: bool) -> None:

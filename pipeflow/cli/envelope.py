@@ -55,16 +55,16 @@ def _found(case: Case, ranges: Sequence[str]) -> Envelope:
 
 
 def _write(found: Envelope, csv: Path | None, svg: Path | None) -> None:
-    from pipeflow.report.written import write_text
+    from pipeflow.report.written import write_result
 
     if csv is not None:
         from pipeflow.report.sweep_table import envelope_csv
 
-        write_text(csv, envelope_csv(found))
+        write_result(csv, envelope_csv(found))
     if svg is not None:
         from pipeflow.report.charts import envelope_chart_svg
 
-        write_text(svg, envelope_chart_svg(found))
+        write_result(svg, envelope_chart_svg(found))
 
 
 def _print(found: Envelope, as_json: bool) -> None:

@@ -69,16 +69,16 @@ def _axes(case: Case, ranges: Sequence[str], points: int | None) -> list[Axis]:
 
 
 def _write(found: Sweep, csv: Path | None, svg: Path | None) -> None:
-    from pipeflow.report.written import write_text
+    from pipeflow.report.written import write_result
 
     if csv is not None:
         from pipeflow.report.sweep_table import sweep_csv
 
-        write_text(csv, sweep_csv(found))
+        write_result(csv, sweep_csv(found))
     if svg is not None:
         from pipeflow.report.charts import sweep_chart_svg
 
-        write_text(svg, sweep_chart_svg(found))
+        write_result(svg, sweep_chart_svg(found))
 
 
 def _print(found: Sweep, as_json: bool) -> None:

@@ -21,3 +21,34 @@ def write_text(path: Path, text: str) -> None:
     except OSError as error:
         why = error.strerror or str(error)
         raise InputError([Problem(str(path), None, None, "", f"can't be written: {why.lower()}")]) from None
+
+
+def write_result(path: Path, text: str) -> None:
+    """Write a table or a chart; over a file only if that is one of the same kind, so that no input is lost.
+
+    Raises
+    ------
+    InputError
+        As :func:`write_text`, and where another kind of file stands there.
+    """
+    mark = _mark(text)
+    if path.is_file() and not _begins_with(path, mark):
+        kind = "chart" if mark.startswith("<svg") else "table"
+        message = f"is there already and is no {kind} of this command; name another file, or remove it"
+        raise InputError([Problem(str(path), None, None, "", message)])
+    write_text(path, text)
+
+
+def _mark(text: str) -> str:
+    """What every file of a kind begins with: the names of the columns, or the name of the chart."""
+    return text[: text.index("-title")] if text.startswith("<svg") else text.partition("\n")[0]
+
+
+def _begins_with(path: Path, mark: str) -> bool:
+    """Whether a file is empty or begins so; one that can't be read is told when it is written."""
+    try:
+        with path.open("rb") as file:
+            head = file.read(len(mark.encode()))
+    except OSError:
+        return True
+    return not head or head == mark.encode()

@@ -452,3 +452,24 @@ def test_slip_of_a_newtonian_liquid_goes_with_its_viscosity(tmp_path):
         duty = by_name(curve(load_case(path))).duty
         flows.append((100 / 3600 - duty.flow) / (duty.head * 1000 * GRAVITY))
     assert flows[1] == pytest.approx(2 * flows[0], rel=1e-3)
+
+
+@pytest.mark.parametrize(("option", "name"), [("--csv", "line.yaml"), ("--svg", "candidate.csv"), ("--csv", "old.svg")])
+def test_no_file_of_another_kind_is_written_over(tmp_path, option, name):
+    line = line_with(tmp_path)
+    (tmp_path / "old.svg").write_text("<svg>mine</svg>", encoding="utf-8")
+    before = (tmp_path / name).read_bytes()
+    run = RUN.invoke(app, ["curve", str(line), option, str(tmp_path / name)])
+    assert run.exit_code == 2
+    assert "is there already" in run.stderr
+    assert (tmp_path / name).read_bytes() == before
+
+
+def test_a_table_and_a_chart_are_written_anew(tmp_path):
+    line = line_with(tmp_path)
+    files = ["--csv", str(tmp_path / "out.csv"), "--svg", str(tmp_path / "out.svg")]
+    for flow in ("90 m3/h", "95 m3/h"):
+        text = line.read_text(encoding="utf-8").replace("design: 90 m3/h", f"design: {flow}")
+        line.write_text(text, encoding="utf-8")
+        assert RUN.invoke(app, ["curve", str(line), *files]).exit_code in (0, 1)
+    assert ">95<" in (tmp_path / "out.svg").read_text(encoding="utf-8")
