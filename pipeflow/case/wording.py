@@ -124,8 +124,16 @@ def _question(fault: Fault) -> tuple[str, tuple[str, ...]]:
 def _nearest(word: str, options: tuple[str, ...]) -> str:
     by_case = {option.casefold().replace("_", "-").replace(" ", "-"): option for option in options}
     plain = word[:ECHO_LENGTH].casefold().replace("_", "-").replace(" ", "-")
-    near = get_close_matches(plain, list(by_case), n=1, cutoff=0.6)
-    return by_case[near[0]] if near else ""
+    near = get_close_matches(plain, list(by_case), n=3, cutoff=0.6)
+    return by_case[next((one for one in near if _abbreviates(plain, one)), near[0])] if near else ""
+
+
+def _abbreviates(short: str, long: str) -> bool:
+    """Whether each part of a name begins the words of another: ``elbow-90-lr`` those of ``elbow-90-long-radius``."""
+    parts, words = short.split("-"), long.split("-")
+    last = parts[-1]
+    rest = words[len(parts) - 1 :]
+    return words[: len(parts) - 1] == parts[:-1] and last == "".join(word[0] for word in rest)
 
 
 def _foreign_parameters(faults: list[Fault]) -> list[Fault]:

@@ -16,10 +16,10 @@ HI_VISCOSITY = Source(
     citation="ANSI/HI 9.6.7-2010, Effects of Liquid Viscosity on Rotodynamic Pump Performance, the parameter B method",
     ranges=(
         Range("B", None, 40.0),
-        Range("kinematic viscosity, m²/s", 1e-6, 3e-3),
-        Range("best-efficiency flow, m³/s", 3.0 / 3600.0, 260.0 / 3600.0),
-        Range("best-efficiency head per stage, m", 6.0, 130.0),
-        Range("specific speed (rpm, m³/s, m)", None, 60.0),
+        Range("viscosity in mm²/s", 1.0, 3000.0),
+        Range("best-efficiency flow in m³/h", 3.0, 260.0),
+        Range("best-efficiency head of a stage in m", 6.0, 130.0),
+        Range("specific speed (1/min, m³/s, m)", None, 60.0),
     ),
     note=(
         "for Newtonian liquids, radial impellers, open or closed; up to 4000 mm²/s allowed; the standard excludes "

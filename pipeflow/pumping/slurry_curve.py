@@ -16,9 +16,11 @@ from numpy.typing import NDArray
 from pipeflow.arrays import Array, FloatOrArray
 from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.pumping.correction import (
+    CENTISTOKE,
     HI_NPSH,
     HI_VISCOSITY,
     HIGHEST_B,
+    HOUR,
     efficiency_factor,
     flow_factor,
     head_factor,
@@ -245,7 +247,7 @@ class SlurryCurve:
 
     @property
     def values_in_range(self) -> dict[str, float]:
-        """The variables of the ranges of :attr:`sources`, by name, at the best-efficiency flow."""
+        """The variables of the ranges of :attr:`sources`, by name and in their units, at the best-efficiency flow."""
         found = {"d50, m": self.solids.median_size} if self._has_solids and self.solids is not None else {}
         if not self._is_viscous or self.water.best_flow is None:
             return found
@@ -253,8 +255,8 @@ class SlurryCurve:
         viscosity = self._viscosity(self._flow_at_best)
         named = (
             max(self._b_at_best),
-            float(np.maximum(viscosity.apparent, viscosity.differential)),
-            self.water.best_flow,
+            CENTISTOKE * float(np.maximum(viscosity.apparent, viscosity.differential)),
+            HOUR * self.water.best_flow,
             head,
             float(specific_speed(self._speed, self.water.best_flow, head)),
         )

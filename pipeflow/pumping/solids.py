@@ -19,8 +19,8 @@ CAVE = Source(
     note="HR is the factor of the head; ER equal to it is a first estimate; the maker's test decides",
 )
 CAVE_SIZE = 2.27e-5
-FINE, COARSE = 25e-6, 50e-6
-"""Median sizes, m, up to which particles are part of the fluid, and from which they derate a pump by themselves."""
+FINE = 25e-6
+"""Median size, m, up to which particles are part of the fluid (25 to 50 µm are named)."""
 
 Kind = Literal["viscous", "solids", "lower of both"]
 
@@ -82,9 +82,8 @@ def derating(median_size: float | None, is_viscous: bool) -> Derating:
         return Derating("viscous", f"{size} is at most 25 µm: the solids are part of the fluid")
     if not is_viscous:
         return Derating("solids", f"{size} is above 25 µm, and the slurry as a liquid is too thin to derate a pump")
-    between = "lies between 25 and 50 µm" if median_size < COARSE else "is 50 µm or more, and the slurry is viscous too"
     return Derating(
         "lower of both",
-        f"{size} {between}: the lower factor of both corrections is taken, not their product, and only a test can "
-        "tell whether they add",
+        f"{size} is above 25 µm, and the slurry is viscous too: the lower factor of both corrections is taken, not "
+        "their product, and only a test can tell whether they add",
     )

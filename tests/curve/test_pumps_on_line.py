@@ -414,6 +414,20 @@ class TestPositiveDisplacement:
         said = next(caution for caution in pump.cautions if "more than maximum flow" in caution)
         assert said.endswith("slow it, never throttle it")
 
+    def test_torque_and_motor_hold_at_a_restart_too(self, tmp_path):
+        """``P = Q_th dp/eta_hm`` and ``T = P/omega`` at the pressure of the restart, from the rows by hand."""
+        more = "relief_pressure: 1600 kPa\ntorque_limit: 500 N.m\nmotor: {power: 11 kW}"
+        case = load_case(self.line(tmp_path, more))
+        pump = by_name(curve(case), "restart after a stop")
+        pressure = check_of(pump, "restart_head").value * case.fluid.density * GRAVITY
+        table, displaced = case.pumps[0].table, 100 / 3600
+        ratio = [displaced * e / q for e, q in zip(table.efficiency, table.flow, strict=True)]
+        power = displaced * pressure / float(PchipInterpolator(table.pressure, ratio)(pressure))
+        assert check_of(pump, "torque").value == pytest.approx(power / case.pumps[0].speed, rel=1e-9)
+        assert check_of(pump, "torque").status == "fail"
+        assert check_of(pump, "motor_power").value == pytest.approx(1.15 * power, rel=1e-9)
+        assert check_of(pump, "motor_power").status == "fail"
+
     def test_speed_follows_the_flow_wanted(self, tmp_path):
         more = f"{self.MORE}\nvariable_speed: {{minimum: 50 rpm, maximum: 400 rpm}}"
         case = load_case(self.line(tmp_path, more))
@@ -468,8 +482,11 @@ def test_no_file_of_another_kind_is_written_over(tmp_path, option, name):
 def test_a_table_and_a_chart_are_written_anew(tmp_path):
     line = line_with(tmp_path)
     files = ["--csv", str(tmp_path / "out.csv"), "--svg", str(tmp_path / "out.svg")]
-    for flow in ("90 m3/h", "95 m3/h"):
-        text = line.read_text(encoding="utf-8").replace("design: 90 m3/h", f"design: {flow}")
+    written = []
+    for flow in ("100 m3/h", "110 m3/h"):
+        text = line.read_text(encoding="utf-8").replace("maximum: 100 m3/h", f"maximum: {flow}")
         line.write_text(text, encoding="utf-8")
         assert RUN.invoke(app, ["curve", str(line), *files]).exit_code in (0, 1)
-    assert ">95<" in (tmp_path / "out.svg").read_text(encoding="utf-8")
+        written.append([(tmp_path / name).read_bytes() for name in ("out.csv", "out.svg")])
+    assert written[0][0] != written[1][0]
+    assert written[0][1] != written[1][1]

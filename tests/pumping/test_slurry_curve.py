@@ -214,7 +214,7 @@ def test_the_ranges_a_correction_leaves_can_be_said():
         for bound in source.ranges
         if bound.variable in values and not bound.holds(values[bound.variable])
     ]
-    assert outside == ["kinematic viscosity"]
+    assert outside == ["viscosity in mm²/s"]
 
 
 def test_a_shear_thickening_slurry_is_judged_by_its_steeper_viscosity():

@@ -104,16 +104,19 @@ def share_check(duties: Sequence[DutyPoint]) -> Check | None:
 
 
 def motor_check(pump: Pump, duties: Sequence[DutyPoint]) -> Check | None:
-    """Hold the power asked for, the lower efficiency and the margin in it, against a motor that is there."""
-    asked = [duty.motor_power for duty in duties if duty.motor_power is not None]
+    """Hold the power asked for at the duties against a motor that is there."""
+    return motor_at(pump, max((duty.motor_power for duty in duties if duty.motor_power is not None), default=None))
+
+
+def motor_at(pump: Pump, asked: float | None, where: str = "") -> Check | None:
+    """Hold a power asked for, W, the lower efficiency and the margin in it, against a motor that is there."""
     if pump.motor_power is None:
         return None
     each = "each motor, " if pump.number > 1 else ""
-    basis = f"{each}by the lower of the two efficiencies, {pump.motor_margin:.0%} spare"
-    if not asked:
+    basis = f"{each}by the lower of the two efficiencies, {pump.motor_margin:.0%} spare{where}"
+    if asked is None:
         return not_checked("motor_power", (_efficiency_at_duty(pump),), "W", basis)
-    value = max(asked)
-    return at_most("motor_power", value, value, pump.motor_power, "W", basis)
+    return at_most("motor_power", asked, asked, pump.motor_power, "W", basis)
 
 
 def needs_of_npsh(case: Case) -> dict[str, bool]:
@@ -133,14 +136,13 @@ def npsh_check(available: float | None, asked: float, needs: tuple[str, ...]) ->
     return at_least("npsh", available, asked, "m", basis)
 
 
-def torque_check(pump: Pump, torque: float | None) -> Check | None:
+def torque_check(pump: Pump, torque: float | None, where: str = "at the highest pressure of a duty") -> Check | None:
     """Hold the torque against the limit of the shaft."""
     if pump.torque_limit is None:
         return None
-    basis = "at the highest pressure of a duty"
     if torque is None:
-        return not_checked("torque", (_efficiency_at_duty(pump),), "N.m", basis)
-    return at_most("torque", torque, torque, pump.torque_limit, "N.m", basis)
+        return not_checked("torque", (_efficiency_at_duty(pump),), "N.m", where)
+    return at_most("torque", torque, torque, pump.torque_limit, "N.m", where)
 
 
 def _efficiency_at_duty(pump: Pump) -> str:

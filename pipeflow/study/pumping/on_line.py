@@ -207,12 +207,20 @@ class _Candidate:
         if isinstance(machine, DisplacementPump):
             limit, basis = self.pump.relief_pressure, "against the relief setting"
             credit = None if limit is None else limit / weight
+            yield from self._strength_at(machine, pressure)
         else:
             basis = "against 80 % of the least corrected head from 0 to 40 % of best-efficiency flow"
             credit = _credit(at_low_flow(machine))
         established = isinstance(machine, DisplacementPump) or machine.method == "none"
         yield pump_checks.restart_check(pressure / weight, credit, basis, is_established=established)
         yield from filter(None, [pump_checks.suction_yield_check(self.case)])
+
+    def _strength_at(self, machine: DisplacementPump, pressure: float) -> Iterator[Check]:
+        """Hold torque and motor of a positive-displacement pump against a pressure it must start against, Pa."""
+        where, power = "at the pressure of a restart", _known(machine.state(pressure).shaft_power_upper)
+        asked = None if power is None else float(motor_power(power / self.pump.number, self.pump.motor_margin))
+        torque = pump_checks.torque_check(self.pump, _known(machine.torque(pressure)), where)
+        yield from filter(None, [torque, pump_checks.motor_at(self.pump, asked, f", {where} and this speed")])
 
     def _cautions(self, machine: Machine, duty: DutyPoint | None, found: Duties, upper: Duties) -> Iterator[str]:
         if self.kind == "restart":
