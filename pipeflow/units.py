@@ -136,7 +136,7 @@ _HINTS: Final = {
     "cfm": "write ft3/min",
     "hp": "horsepower is ambiguous: give kW",
     "cSt": "a kinematic viscosity; give the dynamic one",
-    "Hz": "ambiguous: write 1/s or rpm",
+    "Hz": "ambiguous: write rpm for a speed, 1/s for a shear rate",
     "1/min": "ambiguous: write rpm",
     '"': "write in",
     "'": "write ft",

@@ -37,6 +37,7 @@ _FOREIGN: Final = {
     "pressure": "a centrifugal pump's curve has 'head [m]', which is that of any liquid of low viscosity",
 }
 _CURVES_KEPT: Final = 64
+ONE_PER_CENT: Final = 0.01
 
 
 def read_curve(path: str, kind: str) -> PumpTable:
@@ -93,8 +94,19 @@ def _problems(table: Table, kind: str) -> Iterator[Problem]:
         line = int(table.lines[MAX_POINTS])
         yield Problem(table.file, line, 1, "", f"{points} points; a curve has at most {MAX_POINTS}")
     elif not missing:
+        yield from _in_fractions(table)
         found = _of_head(table) if kind == "centrifugal" else _of_pressure(table)
         yield from (_problem(table, fault) for fault in _said_once(table, found) if not fault.is_caution)
+
+
+def _in_fractions(table: Table) -> Iterator[Problem]:
+    """Tell efficiencies that are all at most 1 % for what they are: fractions under the head of per cents."""
+    efficiency = table.numbers.get("efficiency")
+    if efficiency is None or not table.units["efficiency"] or not 0 < efficiency.max() <= ONE_PER_CENT:
+        return
+    cell = table.cells["efficiency"][int(efficiency.argmax())]
+    message = "the highest efficiency is 1 % or less; fractions stand under efficiency without a unit"
+    yield Problem(table.file, cell.line, cell.column, "efficiency", f"found {echo(cell.text)}; {message}")
 
 
 def _of_head(table: Table) -> Iterator[Fault]:

@@ -11,7 +11,7 @@ from hypothesis import strategies as st
 
 from pipeflow.case.loading import load_text
 from pipeflow.case.model import Pump, PumpTable
-from pipeflow.case.pump_curves import COLUMNS, MAX_POINTS, read_curve
+from pipeflow.case.pump_curves import COLUMNS, MAX_POINTS, faults_of, read_curve
 from pipeflow.errors import InputError
 from pipeflow.units import UNITS
 
@@ -250,3 +250,12 @@ def test_a_full_job_and_pump() -> None:
     assert (found.motor_power, found.motor_margin) == (55e3, 0.1)
     assert case.assumed == ("pumps[A]",)
     assert pump(", motor: {power: 55 kW}").motor_margin == pump().motor_margin == 0.15
+
+
+def test_fractions_under_the_head_of_per_cents_are_told(tmp_path: Path) -> None:
+    """0.70 under ``efficiency [%]`` would be a shaft power a hundred times too high."""
+    rows = "flow [m3/h], head [m], efficiency [%]\n0, 31, 0.1\n60, 28, 0.5\n100, 24, 0.70\n"
+    (tmp_path / "curve.csv").write_text(rows, encoding="utf-8")
+    found = faults_of(str(tmp_path / "curve.csv"), "centrifugal")
+    assert [(one.line, one.column, one.key_path) for one in found] == [(4, 10, "efficiency")]
+    assert "fractions stand under efficiency without a unit" in found[0].message
