@@ -110,8 +110,10 @@ def solve(
         At zero flow the limit as the flow starts: yield stress in pipes and fittings, no loss of equipment that
         follows the flow.
     """
+    source, destination = source or Vessel(), destination or Vessel()
     pipes = [element for element in route if isinstance(element, Pipe)]
     equipment = [element for element in route if isinstance(element, Equipment)]
+    flow = np.broadcast_to(flow, _leading_shape(flow, fluid, (*route, source, destination), particle_size))
     diameter = side_by_side([pipe.diameter for pipe in pipes])
     velocity = _last_axis(flow) / (np.pi / 4.0 * diameter**2)
     density, rheology = _last_axis(fluid.density), with_pipe_axis(fluid.rheology)
@@ -131,7 +133,7 @@ def solve(
     pressure_loss, pressure_loss_upper = friction.sum(axis=-1) + minor, friction_upper.sum(axis=-1) + minor
 
     weight = np.asarray(fluid.density) * STANDARD_GRAVITY
-    static_head = _static_head(weight, pipes, source or Vessel(), destination or Vessel())
+    static_head = _static_head(weight, pipes, source, destination)
     return LineFlow(
         velocity=np.broadcast_to(velocity, solved.status.shape),
         pipes=solved,
@@ -156,6 +158,14 @@ def solve(
         entrance_loss=losses.entrance,
         exit_loss=losses.exit,
     )
+
+
+def _leading_shape(
+    flow: FloatOrArray, fluid: Fluid, parts: Sequence[Element | Vessel], particle_size: FloatOrArray
+) -> tuple[int, ...]:
+    """Give the shape that all quantities broadcast to, those that move no friction as well."""
+    values = [value for part in (fluid, fluid.rheology, *parts) for value in vars(part).values()]
+    return np.broadcast_shapes(*(np.shape(value) for value in (flow, particle_size, *values) if np.ndim(value)))
 
 
 def _last_axis(values: FloatOrArray) -> Array:

@@ -139,7 +139,7 @@ class Analysis:
 
     def deviation(self, output: str) -> Estimate:
         """Standard deviation of an output."""
-        return self._over(output, np.std)
+        return self._over(output, _deviation)
 
     def _over(self, output: str, figure: Callable[[Array], Any]) -> Estimate:
         """Work a figure out over all samples; its error from the replicates."""
@@ -153,9 +153,14 @@ def _of_sound(figure: Callable[[Array], Any], values: Array) -> float:
     return float(figure(sound)) if sound.size else math.nan
 
 
+def _deviation(values: Array) -> float:
+    """Standard deviation; 0 where it is but the rounding of one figure."""
+    return 0.0 if np.ptp(values) <= ROUNDING * np.max(np.abs(values)) else float(np.std(values))
+
+
 def _error(replicates: Array) -> float:
     """Standard error of the mean of replicates."""
-    return float(np.std(replicates, ddof=1) / np.sqrt(replicates.size))
+    return _deviation(replicates) / math.sqrt(replicates.size - 1)
 
 
 def analyse(

@@ -35,6 +35,10 @@ class Distribution(ABC):
     def quantile(self, probability: FloatOrArray) -> Array:
         """The value that a share ``probability``, above 0 and below 1, of the possible part lies below."""
 
+    @abstractmethod
+    def below(self, value: float) -> float:
+        """Share of the possible part that lies below a value."""
+
 
 @dataclass(frozen=True)
 class Rectangular(Distribution):
@@ -61,6 +65,11 @@ class Rectangular(Distribution):
         low, high = self.ends
         return np.asarray(low + (high - low) * np.asarray(probability))
 
+    def below(self, value: float) -> float:
+        """In proportion."""
+        low, high = self.ends
+        return min(max((value - low) / (high - low), 0.0), 1.0)
+
 
 @dataclass(frozen=True)
 class Normal(Distribution):
@@ -81,6 +90,11 @@ class Normal(Distribution):
         """Of the truncated normal."""
         low, high = (np.asarray((end - self.mean) / self.deviation) for end in (self.least, self.most))
         return self.mean + self.deviation * truncated_normal(probability, low, high)
+
+    def below(self, value: float) -> float:
+        """Of the truncated normal."""
+        low, high, at = (float(ndtr((end - self.mean) / self.deviation)) for end in (self.least, self.most, value))
+        return min(max((at - low) / (high - low), 0.0), 1.0)
 
 
 def truncated_normal(probability: FloatOrArray, lower: Array, upper: Array) -> Array:

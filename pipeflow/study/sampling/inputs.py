@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
@@ -50,12 +51,18 @@ class UncertainInput:
         What it runs over.
     impossible : float
         Share of the distribution stated that is not possible, and is left out.
+    of_case : str
+        What the case gives.
+    above : float
+        Share of the distribution above what the case gives.
     """
 
     name: str
     said: str
     covers: str
     impossible: float = 0.0
+    of_case: str = ""
+    above: float = 0.5
 
 
 def factors_of(case: Case) -> tuple[tuple[Factor, ...], tuple[UncertainInput, ...]]:
@@ -77,10 +84,17 @@ def factors_of(case: Case) -> tuple[tuple[Factor, ...], tuple[UncertainInput, ..
 def _of_block(case: Case) -> Iterator[tuple[Factor, UncertainInput]]:
     for uncertain in case.uncertainty:
         distribution = _distribution(uncertain)
-        shown = variable(case, uncertain.path).shown
-        told = _range(*(shown(float(distribution.quantile(share))) for share in (0.05, 0.95)))
-        factor = Independent(uncertain.path, distribution)
-        yield factor, UncertainInput(uncertain.path, uncertain.text, told, distribution.impossible)
+        known = variable(case, uncertain.path)
+        covers = _range(*(known.shown(float(distribution.quantile(share))) for share in (0.05, 0.95)))
+        told = UncertainInput(
+            name=uncertain.path,
+            said=uncertain.text,
+            covers=covers,
+            impossible=distribution.impossible,
+            of_case=known.shown(known.value),
+            above=0.5 if math.isnan(known.value) else 1.0 - distribution.below(known.value),
+        )
+        yield Independent(uncertain.path, distribution), told
 
 
 def _range(low: str, high: str) -> str:
@@ -104,7 +118,7 @@ def _of_method(case: Case) -> Iterator[tuple[Factor, UncertainInput]]:
 
 def _of_readings(case: Case) -> Iterator[tuple[Factor, UncertainInput]]:
     """Scatter of the fitted parameters, unless the case says itself how uncertain one of them is."""
-    if not case.sheets or any(uncertain.path.startswith(RHEOLOGY) for uncertain in case.uncertainty):
+    if not case.sheets or instead_of_readings(case):
         return
     model = case.fluid.rheology.key
     fits = [sheet.fit.of(model) for sheet in case.sheets]
@@ -114,6 +128,12 @@ def _of_readings(case: Case) -> Iterator[tuple[Factor, UncertainInput]]:
         return
     factor = SeriesFactor(READINGS, tuple(sheets), _weights(case))
     yield factor, UncertainInput(READINGS, f"the fits of {len(sheets)} sheets", "parameters as they scatter")
+
+
+def instead_of_readings(case: Case) -> tuple[str, ...]:
+    """Give the parameters listed as uncertain in a case with readings, whose scatter is left out for them."""
+    listed = (uncertain.path for uncertain in case.uncertainty if uncertain.path.startswith(RHEOLOGY))
+    return tuple(listed) if case.sheets else ()
 
 
 def sheet_factor(fit: ModelFit) -> Correlated:

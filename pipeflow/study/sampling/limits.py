@@ -4,12 +4,14 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
+from functools import cached_property
 from typing import Final
 
 import numpy as np
 
 from pipeflow.arrays import Array, FloatOrArray
 from pipeflow.case.model import Case
+from pipeflow.case.varying import VariedCase, varied
 from pipeflow.friction import Regime
 from pipeflow.line.elements import Pipe
 from pipeflow.line.fittings import DEFAULT_METHOD, EXIT, resistance
@@ -75,7 +77,8 @@ def _restart_pressure(at: SampledLine) -> Array:
     laminar = np.array([_laminar_resistance(pipe, method) for pipe in at.pipes])
     factor = at.case.restart.factor or RESTART_FACTOR
     yielding = factor * yield_pressure(length, diameter, np.asarray(static)[..., None], laminar)
-    yielding, rising = np.broadcast_arrays(yielding, np.asarray(at.weight)[..., None] * rise)
+    every = at.line.pressure_loss[..., None]
+    yielding, rising, _ = np.broadcast_arrays(yielding, np.asarray(at.weight)[..., None] * rise, every)
     source, end = at.given.source, at.given.destination
     demand = demand_along(yielding, rising, end.pressure + at.weight * np.asarray(end.head_of_level))
     return np.asarray(demand[..., 0] - source.pressure - at.weight * source.level)
@@ -124,22 +127,57 @@ def failing(name: str) -> str:
     return f"fails {name}"
 
 
+def figure_of(name: str) -> str:
+    """Name of the output that holds the figure a limit is held against."""
+    return f"{name} itself"
+
+
+def figures_of_case(case: Case) -> dict[str, float]:
+    """Give the figure of each limit for the case as it stands, by the upper method, as its checks are judged."""
+    at_flows = _AtFlows(case, varied(case, {}), 1.0)
+    return {name: float(limit.figure(at_flows.of(limit))) for name, (limit, _) in limits_of(case).items()}
+
+
+class _AtFlows:
+    """The line at the flows that limits are judged at, each solved once, and only if asked for."""
+
+    def __init__(self, case: Case, given: VariedCase, share: FloatOrArray) -> None:
+        self.case, self.given, self.share = case, given, share
+
+    @cached_property
+    def slow(self) -> SampledLine:
+        """At minimum flow; no limit there asks for an upper figure."""
+        return SampledLine.of(self.case, self.given, self.given.minimum, None)
+
+    @cached_property
+    def fast(self) -> SampledLine:
+        """At maximum flow."""
+        return SampledLine.of(self.case, self.given, self.given.maximum, self.share)
+
+    def of(self, limit: Limit) -> SampledLine:
+        """The one a limit is judged at."""
+        return self.slow if limit.at_minimum_flow else self.fast
+
+
 @dataclass(frozen=True)
 class Failures:
-    """Whether each limit of a case fails: 1 or 0, nan where the line has no answer."""
+    """The figure of each limit of a case, and whether it fails: 1 or 0; nan where the line has no answer."""
 
     case: Case
 
     def __call__(self, inputs: Mapping[str, Array]) -> dict[str, Array]:
         """Hold every limit against every sample."""
         given, share, samples = split(self.case, inputs)
-        slow, fast = (SampledLine.of(self.case, given, flow, share) for flow in (given.minimum, given.maximum))
+        at_flows = _AtFlows(self.case, given, share)
         found: dict[str, FloatOrArray] = {BEYOND_TESTED: given.is_carried_on}
         for name, (limit, value) in limits_of(self.case).items():
-            at = slow if limit.at_minimum_flow else fast
-            figure = np.asarray(limit.figure(at))
-            fails = figure < value if limit.is_least else figure > value
-            found[failing(name)] = np.where(np.isnan(figure) | np.isnan(at.pressure_loss), np.nan, fails)
+            found |= _held(limit, value, at_flows.of(limit))
             if name == "deposition":
-                found[NOT_TURBULENT] = np.any(at.line.pipes.regime != Regime.TURBULENT, axis=-1)
+                found[NOT_TURBULENT] = np.any(at_flows.slow.line.pipes.regime != Regime.TURBULENT, axis=-1)
         return of_every_sample(found, samples)
+
+
+def _held(limit: Limit, value: float, at: SampledLine) -> dict[str, FloatOrArray]:
+    figure = np.where(np.isnan(at.pressure_loss), np.nan, limit.figure(at))
+    fails = figure < value if limit.is_least else figure > value
+    return {failing(limit.name): np.where(np.isnan(figure), np.nan, fails), figure_of(limit.name): figure}

@@ -46,8 +46,8 @@ class SampledLine:
     share: FloatOrArray
 
     @classmethod
-    def of(cls, case: Case, given: VariedCase, flow: FloatOrArray, share: FloatOrArray) -> SampledLine:
-        """Solve it."""
+    def of(cls, case: Case, given: VariedCase, flow: FloatOrArray, share: FloatOrArray | None) -> SampledLine:
+        """Solve it; by the central method alone where no place between the two is given."""
         line = route.solve(
             flow,
             given.fluid,
@@ -58,8 +58,10 @@ class SampledLine:
             critical=case.methods.critical,
             fittings=case.methods.fittings,
             particle_size=given.particle_size,
+            with_edges=False,
+            with_upper=share is not None,
         )
-        return cls(case, given, flow, line, share)
+        return cls(case, given, flow, line, 0.0 if share is None else share)
 
     @property
     def pipes(self) -> list[Pipe]:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import os
 import time
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
 from typing import Final
 
@@ -14,7 +14,15 @@ from pipeflow.arrays import Array
 from pipeflow.case.model import Case
 from pipeflow.sources import Source
 from pipeflow.study.sampling.inputs import METHOD, METHOD_SPREAD, UncertainInput, factors_of
-from pipeflow.study.sampling.limits import BEYOND_TESTED, NOT_TURBULENT, Failures, failing, limits_of
+from pipeflow.study.sampling.limits import (
+    BEYOND_TESTED,
+    NOT_TURBULENT,
+    Failures,
+    failing,
+    figure_of,
+    figures_of_case,
+    limits_of,
+)
 from pipeflow.study.sampling.line import HEAD_LOSS, POWER, TOTAL_HEAD, Figures
 from pipeflow.uncertainty import Analysis, Factor, Settings, analyse, inputs_of, points
 from pipeflow.uncertainty import Estimate as Estimate
@@ -56,7 +64,11 @@ class Spread:
 
 @dataclass(frozen=True)
 class Odds:
-    """A limit, SI, and the probability that it fails."""
+    """A limit, SI, and the probability that it fails.
+
+    ``of_case`` is the figure of the case as it stands, by the upper method, as its check is judged; ``median`` that of
+    the samples.
+    """
 
     name: str
     limit: float
@@ -64,6 +76,13 @@ class Odds:
     basis: str
     is_least: bool
     probability: Estimate
+    of_case: float
+    median: float
+
+    @property
+    def case_fails(self) -> bool:
+        """Whether it fails in the case as it stands."""
+        return self.of_case < self.limit if self.is_least else self.of_case > self.limit
 
 
 @dataclass(frozen=True)
@@ -169,7 +188,7 @@ def uncertainty(
     workers = workers or _worth(figures, factors, settings)
     found = analyse(figures, factors, replace(settings, workers=workers), beside=Failures(case))
     bars, median = tornado(figures, factors)
-    limits = limits_of(case)
+    odds = tuple(_odds(case, found))
     return UncertaintyResult(
         case=case,
         samples=settings.samples,
@@ -177,11 +196,8 @@ def uncertainty(
         evaluations=found.evaluations,
         inputs=told,
         figures={name: _spread(found, name) for name in UNITS},
-        limits=tuple(
-            Odds(name, value, limit.unit, limit.basis, limit.is_least, found.mean(failing(name)))
-            for name, (limit, value) in limits.items()
-        ),
-        not_sampled=tuple(dict.fromkeys(name for name in checks if name not in limits)),
+        limits=odds,
+        not_sampled=tuple(dict.fromkeys(name for name in checks if name not in {one.name for one in odds})),
         median=median,
         tornado=bars,
         lost=found.lost,
@@ -194,6 +210,14 @@ def uncertainty(
 def _spread(found: Analysis, name: str) -> Spread:
     p5, p50, p95 = found.quantiles(name)
     return Spread(name, UNITS[name], found.mean(name), found.deviation(name), p5, p50, p95, found.indices[name])
+
+
+def _odds(case: Case, found: Analysis) -> Iterator[Odds]:
+    of_case = figures_of_case(case)
+    for name, (limit, value) in limits_of(case).items():
+        _, median, _ = found.quantiles(figure_of(name))
+        stated = limit.unit, limit.basis, limit.is_least
+        yield Odds(name, value, *stated, found.mean(failing(name)), of_case[name], median.value)
 
 
 def _methods(case: Case, factors: Sequence[Factor]) -> tuple[Source, ...]:
