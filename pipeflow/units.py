@@ -174,7 +174,7 @@ NUMBER: Final = r"[+-]?(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?"
 """A number as case files and tables write it."""
 
 _QUANTITY: Final = re.compile(rf"({NUMBER})[ ]*(.*)", re.DOTALL)
-_RANGE: Final = re.compile(rf"({NUMBER})[ ]*\.\.[ ]*({NUMBER})[ ]*(.*)", re.DOTALL)
+_RANGE: Final = re.compile(rf"({NUMBER})[ ]*(?<!\.)\.\.(?!\.)[ ]*({NUMBER})[ ]*(.*)", re.DOTALL)
 _DECIMAL_COMMA: Final = re.compile(r"[+-]?(?:0*,[0-9]+|[0-9]+,(?![0-9]{3}(?![0-9]))[0-9]+)(?![0-9.,])")
 """Digits and a comma that cannot be a thousands mark."""
 _TYPOGRAPHY: Final = str.maketrans("³²·⋅*μ⁻¹", "32...µ-1")

@@ -189,7 +189,10 @@ def test_ranges(text: str) -> None:
     assert units.parse_range(text, "shear rate") == (5.0, 400.0)
 
 
-@pytest.mark.parametrize("text", ["400 .. 5 1/s", "5 .. 5 1/s", "5 1/s", "5 - 400 1/s", "5 .. 400", "5 .. 4 m"])
+@pytest.mark.parametrize(
+    "text",
+    ["400 .. 5 1/s", "5 .. 5 1/s", "5 1/s", "5 - 400 1/s", "5 .. 400", "5 .. 4 m", "5...400 1/s", "5 ... 400 1/s"],
+)
 def test_ranges_refused(text: str) -> None:
     with pytest.raises(units.UnitError, match="found"):
         units.parse_range(text, "shear rate")

@@ -14,7 +14,8 @@ from pipeflow.case.variables import Variable, VariableError, variable
 from pipeflow.errors import InputError, Problem
 from pipeflow.units import NUMBER, accepted, echo
 
-_RANGE = re.compile(rf"({NUMBER})[ ]*(.*?)[ ]*\.\.[ ]*({NUMBER})[ ]*(.*)", re.DOTALL)
+_RANGE = re.compile(rf"({NUMBER})[ ]*(.*?)[ ]*(?<!\.)\.\.(?!\.)[ ]*({NUMBER})[ ]*(.*)", re.DOTALL)
+"""Of two dots: three could hold a decimal point of either number."""
 FORM = "PATH=FROM..TO"
 
 

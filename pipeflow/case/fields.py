@@ -153,7 +153,7 @@ class RangeReader:
 def read_fractions(value: object) -> tuple[float, float]:
     """Read a range of fractions of solids."""
     text = _scalar(value, "a range of fractions, as '0.48 .. 0.58',").text
-    match = re.fullmatch(rf" *({units.NUMBER}) *\.\. *({units.NUMBER}) *", text)
+    match = re.fullmatch(rf" *({units.NUMBER}) *(?<!\.)\.\.(?!\.) *({units.NUMBER}) *", text)
     if match is None:
         raise said(f"found {units.echo(text)}; a range of fractions is needed, as '0.48 .. 0.58'")
     low, high = float(match[1]), float(match[2])

@@ -23,7 +23,7 @@ _FRACTIONS: Final = ("fluid.solids.mass_fraction", "fluid.solids.volume_fraction
 
 _WRITTEN = re.compile(r"(±|\+/?-|normal(?![a-z])|uniform(?![a-z])) *(.*)")
 _SHARE = re.compile(rf"({units.NUMBER}) *%")
-_NUMBERS = re.compile(rf"({units.NUMBER}) *\.\. *({units.NUMBER})")
+_NUMBERS = re.compile(rf"({units.NUMBER}) *(?<!\.)\.\.(?!\.) *({units.NUMBER})")
 
 
 class _TextError(Exception):
@@ -120,7 +120,7 @@ def distribution(variable: Variable, text: str) -> Uncertain:
     shape = "normal" if form == "normal" else "rectangular"
     bounds = variable.bounds
     if shape == "rectangular" and not _reaches(bounds, middle - spread, middle + spread):
-        raise _TextError(f"found {units.echo(text)}; no value of it is possible: must be {bounds}")
+        raise _TextError(f"found {units.echo(text)}; no value of it is possible: {bounds.refusal(middle)}")
     return Uncertain(variable.path, shape, middle, spread, bounds.lower, bounds.upper, text)
 
 

@@ -11,11 +11,10 @@ from dataclasses import dataclass, fields
 from difflib import get_close_matches
 from typing import Final
 
-import numpy as np
-from numpy.typing import NDArray
-
 from pipeflow import units
-from pipeflow.arrays import FloatOrArray
+from pipeflow.case import bounds as possible
+from pipeflow.case.bounds import ANY, EXPONENT, FRACTION, INDEX, NOT_NEGATIVE, POSITIVE
+from pipeflow.case.bounds import Bounds as Bounds
 from pipeflow.case.model import Case, Liquid, Solids
 from pipeflow.line.elements import Pipe, Vessel
 
@@ -24,43 +23,11 @@ class VariableError(ValueError):
     """A key path that cannot be varied, or a value that it cannot have; the message says what can."""
 
 
-@dataclass(frozen=True)
-class Bounds:
-    """Values that are possible, SI; the lower end belongs to them where ``with_lower``, the upper where ``with_upper``.
-
-    An end at infinity is none.
-    """
-
-    lower: float = -math.inf
-    upper: float = math.inf
-    with_lower: bool = False
-    with_upper: bool = False
-
-    def hold(self, values: FloatOrArray) -> NDArray[np.bool_]:
-        """Whether each value is possible."""
-        given = np.asarray(values, dtype=np.float64)
-        above = given >= self.lower if self.with_lower else given > self.lower
-        below = given <= self.upper if self.with_upper else given < self.upper
-        return np.asarray(above & below)
-
-    def __str__(self) -> str:
-        """``above 0``, ``0 or more``, ``above 0 and at most 2``."""
-        lower = f"{self.lower:g} or more" if self.with_lower else f"above {self.lower:g}"
-        upper = f"{'at most' if self.with_upper else 'below'} {self.upper:g}"
-        ends = [text for text, end in ((lower, self.lower), (upper, self.upper)) if math.isfinite(end)]
-        return " and ".join(ends) or "any number"
-
-
+IN_MILLIMETRES: Final = ("diameter", "roughness")
+IN_MICROMETRES: Final = ("d50", "d85")
+"""Keys of the lengths that a reader has in small units."""
 SHORT: Final = 0.05
-"""Lengths below which a reader wants millimetres, m."""
-
-ANY: Final = Bounds()
-POSITIVE: Final = Bounds(0.0)
-NOT_NEGATIVE: Final = Bounds(0.0, with_lower=True)
-FRACTION: Final = Bounds(0.0, 1.0)
-INDEX: Final = Bounds(0.0, 2.0, with_upper=True)
-EXPONENT: Final = Bounds(0.0, 10.0, with_upper=True)
-ELLIS: Final = Bounds(1.0, 10.0, with_lower=True, with_upper=True)
+"""Other lengths below which a reader wants millimetres, m."""
 
 PARAMETERS: Final[dict[str, tuple[str, Bounds]]] = {
     "viscosity": ("viscosity", POSITIVE),
@@ -93,13 +60,27 @@ class Variable:
     value : float
         What the case gives, SI; nan where it gives nothing.
     bounds : Bounds
-        What is possible, SI.
+        What is possible beside the other inputs of the case, SI.
+    agreeing : Bounds, optional
+        What does not contradict the others, where that is less: asked of a value that is given, not of a tolerance.
     """
 
     path: str
     dimension: str
     value: float
     bounds: Bounds = POSITIVE
+    agreeing: Bounds | None = None
+
+    def refusal(self, value: float) -> str:
+        """Say why the input cannot have a value; empty where it can."""
+        asked = (self.bounds,) if self.agreeing is None else (self.bounds, self.agreeing)
+        return next((one.refusal(value) for one in asked if not one.hold(value)), "")
+
+    @property
+    def unit(self) -> str:
+        """Unit or dimension that a reader has it in."""
+        key = self.path.rpartition(".")[2]
+        return "mm" if key in IN_MILLIMETRES else "µm" if key in IN_MICROMETRES else self.dimension
 
     def read(self, text: str) -> float:
         """Read a value of this input, as ``14 Pa`` or, of a bare number, ``0.52``.
@@ -113,15 +94,16 @@ class Variable:
             value = units.parse(text, self.dimension) if self.dimension else units.parse_number(text)
         except units.UnitError as error:
             raise VariableError(str(error)) from None
-        if not self.bounds.hold(value):
-            raise VariableError(f"found {units.echo(text)}; must be {self.bounds}")
+        refusal = self.refusal(value)
+        if refusal:
+            raise VariableError(f"found {units.echo(text)}; {refusal}")
         return value
 
     def shown(self, value: float, digits: int = 4) -> str:
         """Write a value of this input for a reader."""
         if not self.dimension:
             return units.significant(value, digits)
-        unit = "mm" if self.dimension == "length" and abs(value) < SHORT else self.dimension
+        unit = "mm" if self.unit == "length" and abs(value) < SHORT else self.unit
         return units.format_value(value, unit, digits)
 
 
@@ -150,11 +132,13 @@ def variable(case: Case, path: str) -> Variable:
 
 
 def _of_fluid(case: Case) -> Iterator[Variable]:
-    yield Variable("fluid.density", "density", float(case.fluid.density))
+    density = float(case.fluid.density)
+    yield Variable("fluid.density", "density", density, agreeing=possible.of_density(case))
     law = case.fluid.rheology
+    beside = possible.of_rheology(law)
     for field in fields(law):  # type: ignore[arg-type]
         dimension, bounds = PARAMETERS[field.name]
-        bounds = ELLIS if law.key == "ellis" and field.name == "exponent" else bounds
+        bounds = beside.get(field.name, bounds)
         yield Variable(f"fluid.rheology.{field.name}", dimension, float(getattr(law, field.name)), bounds)
     if case.temperature is not None and any(one.law.variable == "temperature" for one in case.followed):
         yield Variable("fluid.temperature", "temperature", case.temperature)
@@ -166,6 +150,7 @@ def _of_solids(case: Case, solids: Solids) -> Iterator[Variable]:
     yield Variable("fluid.solids.mass_fraction", "", solids.mass_fraction, FRACTION)
     yield Variable("fluid.solids.volume_fraction", "", solids.volume_fraction, FRACTION)
     liquid = case.liquid or Liquid()
+    sizes = possible.of_sizes(solids)
     for key, dimension, value in (
         ("solids.density", "density", solids.density),
         ("solids.d50", "length", solids.d50),
@@ -174,7 +159,7 @@ def _of_solids(case: Case, solids: Solids) -> Iterator[Variable]:
         ("liquid.viscosity", "viscosity", liquid.viscosity),
     ):
         if value is not None:
-            yield Variable(f"fluid.{key}", dimension, value)
+            yield Variable(f"fluid.{key}", dimension, value, sizes.get(key.rpartition(".")[2], POSITIVE))
 
 
 def flow_path(case: Case) -> str:
@@ -190,25 +175,25 @@ def _of_flow(case: Case) -> Iterator[Variable]:
     if flow.design > 0:
         yield Variable(path, dimension, flow.design * unit)
     if not flow.minimum == flow.design == flow.maximum:
-        for key in ("minimum", "design", "maximum"):
-            yield Variable(f"{path}.{key}", dimension, getattr(flow, key) * unit, NOT_NEGATIVE)
+        each = {key: getattr(flow, key) * unit for key in ("minimum", "design", "maximum")}
+        for key, bounds in possible.of_flows(**each).items():
+            yield Variable(f"{path}.{key}", dimension, each[key], bounds)
 
 
 def _of_vessels(case: Case) -> Iterator[Variable]:
     for name, vessel in (("source", case.source or Vessel()), ("destination", case.destination or Vessel())):
-        yield Variable(f"{name}.pressure", "pressure", float(vessel.pressure), ANY)
-        yield Variable(f"{name}.level", "length", float(vessel.level), ANY)
+        levels = possible.of_source_level(case.lowest_level) if name == "source" else ANY
+        yield Variable(f"{name}.pressure", "pressure", float(vessel.pressure), possible.GAUGE)
+        yield Variable(f"{name}.level", "length", float(vessel.level), levels)
 
 
 def _of_route(case: Case) -> Iterator[Variable]:
     for element in case.route:
         home = f"route[{element.name}]"
         if isinstance(element, Pipe):
-            yield Variable(f"{home}.diameter", "length", float(element.diameter))
-            yield Variable(f"{home}.length", "length", float(element.length))
-            yield Variable(f"{home}.rise", "length", float(element.rise), ANY)
-            yield Variable(f"{home}.roughness", "length", float(element.roughness), NOT_NEGATIVE)
-            yield Variable(f"{home}.loss_coefficient", "", float(element.loss_coefficient), NOT_NEGATIVE)
+            for key, bounds in possible.of_pipe(element).items():
+                dimension = "" if key == "loss_coefficient" else "length"
+                yield Variable(f"{home}.{key}", dimension, float(getattr(element, key)), bounds)
         else:
             yield Variable(f"{home}.pressure_loss", "pressure", float(element.pressure_loss), NOT_NEGATIVE)
 

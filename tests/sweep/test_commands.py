@@ -90,6 +90,7 @@ SPOILT = {
     "flow=80..160": "without a unit; give one of m3/h",
     "flow=80..160 kPa": "kPa is a unit of pressure",
     "flow=a..b m3/h": "a range is needed",
+    "flow=50...70 m3/h": "found '50...70 m3/h'; a range is needed, as '5 .. 20 m3/h'",
     "flow.design=1..2 m3/h": "the case gives its flow as flow",
     f"{STRESS}=-5..5 Pa": "found '-5 Pa'; must be 0 or more",
     "fluid.rheology.yield_stres=1..2 Pa": f"did you mean {STRESS}?",

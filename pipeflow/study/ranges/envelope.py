@@ -122,11 +122,12 @@ def up_variable(case: Case) -> Variable:
 
 
 def default_ends(case: Case, up: Variable) -> tuple[float, float]:
-    """Ends of the other input: the range tested of solids, else from half to twice that of the case."""
+    """Ends of the other input: the range tested of solids, else half and twice that of the case where that can be."""
     laws = [one.law for one in case.followed if one.law.variable == "solids"]
     if up.path == SOLIDS and laws:
         return max(law.tested[0] for law in laws), min(law.tested[1] for law in laws)
-    return up.value * STRESSES[0], up.value * STRESSES[1]
+    low, high = (up.value * share for share in STRESSES)
+    return max(low, up.bounds.lower), min(high, up.bounds.upper)
 
 
 def envelope(case: Case, flow: Axis | None = None, up: Axis | None = None) -> Envelope:

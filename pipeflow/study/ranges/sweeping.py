@@ -12,7 +12,8 @@ from pipeflow.arrays import Array
 from pipeflow.case.axes import Axis as Axis
 from pipeflow.case.model import Case, shown_condition
 from pipeflow.case.variables import Variable as Variable
-from pipeflow.case.variables import variable
+from pipeflow.case.variables import variable, variables
+from pipeflow.errors import InputError, Problem
 from pipeflow.friction import Regime
 from pipeflow.operability.energy import specific_energy
 from pipeflow.study.flows import DESIGN, pipes_of
@@ -121,13 +122,30 @@ def sweep(case: Case, axes: Sequence[Axis]) -> Sweep:
     case : Case
     axes : sequence of Axis
         One or two, of different inputs.
+
+    Raises
+    ------
+    InputError
+        A value of one input is not possible beside one of the other.
     """
     mesh = np.meshgrid(*(axis.array for axis in axes), indexing="ij")
     values = {axis.variable.path: each.ravel() for axis, each in zip(axes, mesh, strict=True)}
     solved = points(case, values)
+    if len(axes) > 1:
+        _refuse_at_odds(axes, solved.cases)
     every = tuple(_point(solved, index, tuple(float(each[index]) for each in values.values()))
                   for index in range(mesh[0].size))  # fmt: skip
     return Sweep(case, tuple(axes), every, tuple(_cautions(solved, case, axes)), _boundaries(case, axes))
+
+
+def _refuse_at_odds(axes: Sequence[Axis], cases: Sequence[Case]) -> None:
+    for case in cases:
+        known = variables(case)
+        for one in (known[axis.variable.path] for axis in axes if axis.variable.path in known):
+            refusal = one.refusal(one.value)
+            if refusal:
+                message = f"found {one.shown(one.value)} in these ranges; {refusal}"
+                raise InputError([Problem("sweep", None, None, one.path, message)])
 
 
 def _boundaries(case: Case, axes: Sequence[Axis]) -> tuple[Boundary, ...]:
