@@ -17,6 +17,9 @@ if TYPE_CHECKING:
 
 STEPS = 3
 """Reading, working out and writing, of each case."""
+SUFFIXES = (".html", ".htm")
+MOST_REASONS = 6
+"""Reasons for which a page fails that are told; the page has them all."""
 
 
 @dataclass(frozen=True)
@@ -38,7 +41,8 @@ def report(
 ) -> None:
     """Write the page that goes in the design file; of several cases, a page each and an index.
 
-    Exit status: 0 every limit holds; 1 a limit or check fails; 2 a case can't be used, or a page can't be written.
+    Exit status: 0 every limit holds; 1 a limit or check fails, each page saying why in a line of its own on standard
+    error; 2 a case can't be used, or a page can't be written.
     """
     try:
         pages = _pages(cases, output)
@@ -56,10 +60,12 @@ def _pages(cases: Sequence[str], output: str) -> dict[str, Path]:
     """Say where the page of each case goes, and refuse before anything is solved what cannot be written."""
     target = Path(output)
     if not _is_folder(cases, output):
-        if target.suffix.lower() not in (".html", ".htm"):
+        if target.suffix.lower() not in SUFFIXES:
             raise _refused(output, "the page is HTML: name it so, as line.html; or give a folder, as pages/")
         _keep_off(target)
         return {cases[0]: target}
+    if len(cases) > 1 and (target.is_file() or target.suffix.lower() in SUFFIXES):
+        raise _refused(output, "several cases need a folder, as pages/; one page holds one case")
     pages = {case: target / f"{Path(case).stem}.html" for case in cases}
     _keep_apart(pages, output)
     try:
@@ -98,11 +104,14 @@ def _write(pages: dict[str, Path], index: Path | None) -> int:
     from pipeflow.report.progress import with_progress
     from pipeflow.report.written import write_text
 
-    rows, statuses = [], [0]
+    rows, statuses, failing = [], [0], []
     for done in with_progress(_steps(pages), STEPS * len(pages), "reports"):
         if done is not None:
             rows.append(index_row(done.found, done.page) if done.found else unusable_row(done.case))
             statuses.append(done.status)
+            failing += [_why_it_fails(done.found, done.page)] if done.found and done.found.fails else []
+    for line in failing:
+        typer.echo(line, err=True)
     if index is not None:
         try:
             write_text(index, index_page(rows))
@@ -110,6 +119,15 @@ def _write(pages: dict[str, Path], index: Path | None) -> int:
             typer.echo(str(refused), err=True)
             statuses.append(refused.exit_code)
     return max(statuses)
+
+
+def _why_it_fails(found: DesignFile, page: Path) -> str:
+    """``line.html: written; FAIL: head loss, npsh of candidate B (thick)``."""
+    from pipeflow.report.judged import judged_texts
+
+    reasons = judged_texts(found.failing, found.conditions)
+    more = [f"{len(reasons) - MOST_REASONS} more"] if len(reasons) > MOST_REASONS else []
+    return f"{page}: written; FAIL: {', '.join([*reasons[:MOST_REASONS], *more])}"
 
 
 def _steps(pages: dict[str, Path]) -> Iterator[_Done | None]:

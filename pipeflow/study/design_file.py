@@ -2,13 +2,16 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
 from dataclasses import dataclass
 
 from pipeflow.case.model import Case
 from pipeflow.errors import InputError
 from pipeflow.study.assumed import AssumedInput, assumed_inputs
+from pipeflow.study.pumping.conditions import OWN
 from pipeflow.study.pumping.curve import curve
 from pipeflow.study.pumping.result import CurveResult
+from pipeflow.study.pumping.vendor import VendorDuty, vendor_duties
 from pipeflow.study.ranges.sweeping import Sweep, solids_sweep
 from pipeflow.study.result import Result
 from pipeflow.study.sampling.uncertainty import UncertaintyResult, uncertainty
@@ -21,12 +24,21 @@ SAMPLES = 1024
 
 
 @dataclass(frozen=True)
+class Judged:
+    """A check with where it was made: the condition, and the pump if it is one of a pump."""
+
+    condition: str
+    check: Check
+    pump: str = ""
+
+
+@dataclass(frozen=True)
 class DesignFile:
     """A case solved, its system curves with the pumps, its sizes, and what rests on assumed inputs.
 
     ``sizing`` is None where no size can be tried; ``why_not_sized`` then says what the case lacks. ``solids`` is the
     line at a little more and less solids, None where the rheology does not follow them; ``uncertainty`` is None where
-    the case neither states any nor rests on readings.
+    the case neither states any nor rests on readings. ``vendor`` holds the duties that a pump is to be offered for.
     """
 
     result: Result
@@ -36,6 +48,7 @@ class DesignFile:
     assumed: tuple[AssumedInput, ...]
     solids: Sweep | None = None
     uncertainty: UncertaintyResult | None = None
+    vendor: tuple[VendorDuty, ...] = ()
 
     @property
     def case(self) -> Case:
@@ -45,23 +58,53 @@ class DesignFile:
     @property
     def checks_of_line(self) -> tuple[Check, ...]:
         """Every check of the line, in the case itself and in every scenario."""
-        return tuple(check for one in (self.result, *self.result.scenarios.values()) for check in one.checks)
+        return tuple(one.check for one in self._judged_line())
+
+    def _judged_line(self) -> Iterator[Judged]:
+        for name, result in ((OWN, self.result), *self.result.scenarios.items()):
+            yield from (Judged(name, check) for check in result.checks)
+
+    def _judged_pumps(self) -> Iterator[Judged]:
+        for one in self.curve.conditions:
+            for pump in one.pumps:
+                yield from (Judged(one.name, check, pump.name) for check in pump.checks)
 
     @property
-    def checks(self) -> tuple[Check, ...]:
-        """Every check: of the line, and of the pumps in every condition."""
-        pumps = [check for one in self.curve.conditions for pump in one.pumps for check in pump.checks]
-        return (*self.checks_of_line, *pumps)
+    def conditions(self) -> tuple[str, ...]:
+        """Names of the case itself and its scenarios."""
+        return OWN, *self.result.scenarios
+
+    @property
+    def judged(self) -> tuple[Judged, ...]:
+        """The checks that matter: of the line, and of the pump ranked first if it holds, of every pump if none does."""
+        kept = (one for one in self._judged_pumps() if self.curve.fails or one.pump == self.first_pump)
+        return (*self._judged_line(), *kept)
+
+    @property
+    def first_pump(self) -> str | None:
+        """The candidate ranked first, if it holds in every condition."""
+        return next((one.name for one in self.curve.ranking[:1] if one.holds), None)
+
+    @property
+    def failing(self) -> tuple[Judged, ...]:
+        """Why the case fails: checks of the line, and those of the pumps where no candidate holds."""
+        return tuple(one for one in self.judged if one.check.status == "fail")
+
+    @property
+    def not_checked(self) -> tuple[Judged, ...]:
+        """What could not be checked of the line, and of the pump ranked first if it holds; others will not be bought."""
+        unsure = (one for one in self.judged if one.check.status == "not checked")
+        return tuple(one for one in unsure if one.pump in ("", self.first_pump))
 
     @property
     def is_preliminary(self) -> bool:
-        """Some check could not be made."""
-        return any(check.status == "not checked" for check in self.checks)
+        """Some check that matters could not be made."""
+        return bool(self.not_checked)
 
     @property
     def fails(self) -> bool:
         """A limit or check of the line fails, or no candidate pump holds."""
-        return self.result.fails or self.curve.fails
+        return bool(self.failing)
 
 
 def design_file(case: Case) -> DesignFile:
@@ -69,7 +112,14 @@ def design_file(case: Case) -> DesignFile:
     sizing, why_not = _sizing(case)
     result = solve(case)
     return DesignFile(
-        result, curve(case), sizing, why_not, assumed_inputs(case), solids_sweep(case), _sampled(case, result)
+        result=result,
+        curve=curve(case),
+        sizing=sizing,
+        why_not_sized=why_not,
+        assumed=assumed_inputs(case),
+        solids=solids_sweep(case),
+        uncertainty=_sampled(case, result),
+        vendor=vendor_duties(case),
     )
 
 

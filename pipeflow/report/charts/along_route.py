@@ -14,7 +14,7 @@ from pipeflow.case.model import Case
 from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.report.charts.axis import round_ends
 from pipeflow.report.charts.canvas import GREY, INK, PALE, WIDTH, as_svg, canvas, drawing, panel, set_ends, shortened
-from pipeflow.report.charts.labels import POINTS_PER_INCH, Above, Beside, Placer, size_of
+from pipeflow.report.charts.labels import POINTS_PER_INCH, Above, Beside, Placer, left_room, size_of
 from pipeflow.study.profile import atmospheric_pressure
 from pipeflow.study.result import ProfilePoint, Result
 from pipeflow.units import significant
@@ -62,20 +62,44 @@ def _vapour(case: Case, points: Sequence[ProfilePoint]) -> Array | None:
 
 def _figure(result: Result) -> Figure:
     figure = canvas(UNDER + PRESSURE + BETWEEN + MAIN + OVER)
-    width = figure.get_size_inches()[0] - LEFT - RIGHT
-    axes = panel(figure, LEFT, UNDER + PRESSURE + BETWEEN, width, MAIN)
-    below = panel(figure, LEFT, UNDER, width, PRESSURE)
     points = _walked(result)
+    axes, below = _panels(figure, result, points)
     ends = round_ends(0.0, max(one.distance for one in points))
     for each in (axes, below):
         set_ends(each.xaxis, ends)
     axes.tick_params(labelbottom=False)
-    axes.set_ylabel("head, m of the slurry")
     below.set_xlabel("distance along the route, m")
-    below.set_ylabel("pressure,\nkPa gauge")
     _heads(axes, result, points)
     _pressures(below, points)
     return figure
+
+
+def _panels(figure: Figure, result: Result, points: Sequence[ProfilePoint]) -> tuple[Axes, Axes]:
+    """Panels of heads and of pressures with their vertical axes, as far from the edge as these need."""
+    axes, below = panel(figure, LEFT, UNDER + PRESSURE + BETWEEN, 1.0, MAIN), panel(figure, LEFT, UNDER, 1.0, PRESSURE)
+    set_ends(axes.yaxis, _ends_of_heads(result, points))
+    set_ends(below.yaxis, _ends_of_pressures(points))
+    axes.set_ylabel("head, m of the slurry")
+    below.set_ylabel("pressure,\nkPa gauge")
+    left = max(LEFT, left_room(axes), left_room(below))
+    across, up = figure.get_size_inches()
+    for each in (axes, below):
+        place = each.get_position()
+        each.set_position((left / across, place.y0, (across - left - RIGHT) / across, place.height))
+    return axes, below
+
+
+def _ends_of_heads(result: Result, points: Sequence[ProfilePoint]) -> tuple[float, float, float]:
+    case, vapour = result.case, _vapour(result.case, points)
+    surfaces = [result.profile.points[0].elevation, result.profile.points[-1].elevation]
+    grades = (_grade(case, points), _grade(case, points, upper=True), *([] if vapour is None else [vapour]))
+    known = np.concatenate([[one.elevation for one in points], *grades, surfaces])
+    return round_ends(float(np.nanmin(known)), float(np.nanmax(known)))
+
+
+def _ends_of_pressures(points: Sequence[ProfilePoint]) -> tuple[float, float, float]:
+    every = [pressure / 1e3 for one in points for pressure in (one.pressure, one.pressure_upper)]
+    return round_ends(min(0.0, *every), max(every), 5)
 
 
 def _heads(axes: Axes, result: Result, points: Sequence[ProfilePoint]) -> None:
@@ -84,8 +108,6 @@ def _heads(axes: Axes, result: Result, points: Sequence[ProfilePoint]) -> None:
     elevation = np.array([one.elevation for one in points])
     central, upper, vapour = _grade(case, points), _grade(case, points, upper=True), _vapour(case, points)
     surfaces = [result.profile.points[0].elevation, result.profile.points[-1].elevation]
-    known = np.concatenate([elevation, central, upper, surfaces, vapour if vapour is not None else []])
-    set_ends(axes.yaxis, round_ends(float(np.nanmin(known)), float(np.nanmax(known))))
     beside, placer = Beside(axes), Placer(axes)
     apart = bool(np.any(np.abs(upper - central) > 5e-3 * max(float(np.nanmax(np.abs(central))), 1e-9)))
     lines: list[tuple[Array, str, float, Any, str]] = [
@@ -142,7 +164,7 @@ def _elements(axes: Axes, result: Result) -> None:
     ends: dict[str, list[float]] = {}
     for point in result.profile.points[2:-1]:
         ends.setdefault(point.element, []).append(point.distance)
-    room = (WIDTH - LEFT - RIGHT) * POINTS_PER_INCH + 120.0
+    room = axes.get_position().width * WIDTH * POINTS_PER_INCH + 120.0
     names = [shortened(name, 18) for name in ends]
     if sum(size_of(name)[0] + 8.0 for name in names) > room:
         names = [str(number) for number in range(1, len(ends) + 1)]
@@ -157,7 +179,6 @@ def _elements(axes: Axes, result: Result) -> None:
 def _pressures(axes: Axes, points: Sequence[ProfilePoint]) -> None:
     distance = [one.distance for one in points]
     central, upper = ([getattr(one, name) / 1e3 for one in points] for name in ("pressure", "pressure_upper"))
-    set_ends(axes.yaxis, round_ends(min(0.0, *central, *upper), max(*central, *upper), 5))
     beside = Beside(axes)
     axes.plot(distance, central, color=INK, linewidth=1.6)
     apart = any(abs(high - low) > 5e-3 * max(abs(high), 1.0) for low, high in zip(central, upper, strict=True))

@@ -27,12 +27,12 @@ def system_in_terminal(result: CurveResult) -> str:
     canvas = plotille.Canvas(COLUMNS, ROWS, 0.0, low, flow, high)
     for _, across, up in lines:
         _curve(canvas, across, up)
+    duties = [duty for pump in result.own.pumps for duty in (pump.duty, pump.duty_upper) if duty]
+    taken = {_cell(canvas, to_display(duty.flow, "m3/h"), duty.head) for duty in duties}
     for letter, across, up in lines:
-        _letter(canvas, letter, across, up)
-    for pump in result.own.pumps:
-        for duty in (pump.duty, pump.duty_upper):
-            if duty:
-                canvas.text(to_display(duty.flow, "m3/h"), duty.head, "@")
+        _letter(canvas, letter, across, up, taken)
+    for duty in duties:
+        canvas.text(to_display(duty.flow, "m3/h"), duty.head, "@")
     # a cell without dots is a letter of its own to plotille
     rows = canvas.plot().replace("\u2800", " ").split("\n")
     return "\n".join((*_framed(rows, low, high, flow), *_key(result)))
@@ -61,14 +61,35 @@ def _curve(canvas: plotille.Canvas, across: Array, up: Array) -> None:
             canvas.line(across[start], up[start], across[start + 1], up[start + 1])
 
 
-def _letter(canvas: plotille.Canvas, letter: str, across: Array, up: Array) -> None:
-    """Stand a letter on a line at three places, those of pumps a little to the side."""
+def _letter(canvas: plotille.Canvas, letter: str, across: Array, up: Array, taken: set[tuple[int, int]]) -> None:
+    """Stand a letter on a line at three places, each moved along it past what is ``taken``; it then is.
+
+    Curves on top of each other so carry their letters side by side.
+    """
     places = (0.2, 0.55, 0.9) if letter.isalpha() else (0.1, 0.45, 0.8)
     for share in places:
-        at = share * across[-1]
-        head = float(np.interp(at, across, up)) if len(across) > 1 else float(up[0])
-        if np.isfinite(head):
-            canvas.text(float(at), head, letter)
+        for at in _along(share, float(across[-1])):
+            head = float(np.interp(at, across, up)) if len(across) > 1 else float(up[0])
+            if np.isfinite(head) and (cell := _cell(canvas, at, head)) not in taken:
+                taken.add(cell)
+                canvas.text(at, head, letter)
+                break
+
+
+def _along(share: float, end: float) -> Iterator[float]:
+    """Flows from a share of the last one on, a column at a time, then back from there."""
+    column = end / COLUMNS
+    yield share * end
+    if column > 0:
+        yield from np.arange(share * end + column, end, column).tolist()
+        yield from np.arange(share * end - column, 0.0, -column).tolist()
+
+
+def _cell(canvas: plotille.Canvas, at: float, head: float) -> tuple[int, int]:
+    """Column and row that plotille writes a text at."""
+    across = (at - canvas.xmin) / (canvas.xmax - canvas.xmin) * 2 * COLUMNS
+    up = (head - canvas.ymin) / (canvas.ymax - canvas.ymin) * 4 * ROWS
+    return round(across) // 2, round(up) // 4
 
 
 def _framed(rows: Sequence[str], low: float, high: float, flow: float) -> Iterator[str]:

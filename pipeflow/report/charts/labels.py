@@ -13,10 +13,12 @@ from matplotlib.lines import Line2D
 from matplotlib.textpath import TextToPath
 
 from pipeflow.arrays import Array
-from pipeflow.report.charts.canvas import GREY, SMALL
+from pipeflow.report.charts.canvas import GREY, SMALL, TEXT
 
 _MEASURE = TextToPath()
 _PADDING = 2.0
+_AROUND = 12.0
+"""Points between a panel, the figures of its ticks, the name of its axis and the edge of the chart."""
 POINTS_PER_INCH = 72.0
 Box = tuple[float, float, float, float]
 """Left, bottom, right and top, points."""
@@ -28,6 +30,15 @@ def size_of(text: str, size: float = SMALL) -> tuple[float, float]:
     font = FontProperties(size=size)
     widths = [_MEASURE.get_text_width_height_descent(line, font, ismath=False)[0] for line in lines]
     return float(max(widths)), 1.2 * size * len(lines)
+
+
+def left_room(axes: Axes) -> float:
+    """Width that ticks, their figures and the name of a vertical axis take left of a panel, inches."""
+    axis: Any = axes.yaxis
+    figures = axis.get_major_formatter().format_ticks(axis.get_ticklocs())
+    widest = max((size_of(figure, TEXT)[0] for figure in figures), default=0.0)
+    name = size_of(axis.get_label_text(), TEXT)[1] if axis.get_label_text() else 0.0
+    return (widest + name + _AROUND) / POINTS_PER_INCH
 
 
 def spread(wanted: Sequence[float], extents: Sequence[float], low: float, high: float) -> list[float]:

@@ -26,6 +26,7 @@ from pipeflow.report.charts.canvas import (
     set_ends,
     shortened,
 )
+from pipeflow.report.charts.duties import upper_apart
 from pipeflow.report.charts.labels import Above, Beside, Placer
 from pipeflow.study.pumping.result import Condition, CurveResult, DrawnCurve, DutyPoint, PumpOnLine
 from pipeflow.units import significant, to_display
@@ -52,9 +53,11 @@ def described(result: CurveResult) -> Iterator[str]:
         f"condition{'s' if len(result.conditions) > 1 else ''} of the line."
     )
     for pump in own.pumps:
-        for figure, duty in (("central", pump.duty), ("upper", pump.duty_upper)):
+        upper = upper_apart(pump)
+        both = "central curve" if upper or not pump.duty_upper else "central curve and on the upper"
+        for figure, duty in ((both, pump.duty), ("upper curve", upper)):
             if duty:
-                yield f"{pump.name} on the {figure} curve: {_duty_text(duty)}."
+                yield f"{pump.name} on the {figure}: {_duty_text(duty)}."
         if not pump.duty and not pump.duty_upper:
             yield f"{pump.name} does not meet the curve."
 
@@ -229,9 +232,8 @@ def _mark_flat(axes: Axes, result: CurveResult) -> None:
 
 
 def _mark_duties(axes: Axes, placer: Placer, pump: PumpOnLine, index: int) -> None:
-    central, upper = pump.duty, pump.duty_upper
-    same = central and upper and abs(upper.flow - central.flow) <= 0.01 * central.flow
-    for duty, face, word in ((central, INK, "" if same else " central"), (None if same else upper, "white", " upper")):
+    central, upper = pump.duty, upper_apart(pump)
+    for duty, face, word in ((central, INK, " central" if upper else ""), (upper, "white", " upper")):
         if duty:
             at = to_display(duty.flow, "m3/h")
             mark = MARKS[index % len(MARKS)]

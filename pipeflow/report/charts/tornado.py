@@ -20,11 +20,14 @@ from pipeflow.report.charts.canvas import (
     set_ends,
     shortened,
 )
+from pipeflow.report.charts.labels import POINTS_PER_INCH, size_of
 from pipeflow.study.sampling.line import HEAD_LOSS
 from pipeflow.study.sampling.uncertainty import Bar, UncertaintyResult
 from pipeflow.units import significant
 
 LEFT, RIGHT, UNDER, OVER, ROW = 2.3, 0.6, 0.5, 0.12, 0.3
+OFF = 3.0
+"""Points between a bar and its figure."""
 NAME = "tornado"
 LEAST = 1e-6
 """Share of the head loss below which a bar is none."""
@@ -60,6 +63,7 @@ def _figure(bars: Sequence[Bar], middle: float) -> Figure:
     set_ends(axes.xaxis, round_ends(min([middle, *ends]), max([middle, *ends]), 6))
     for row, bar in enumerate(bars):
         _drawn(axes, -row, bar, middle)
+    _make_room(axes, ends, middle)
     axes.axvline(middle, color=INK, linewidth=1.2)
     axes.set_ylim(-len(bars) + 0.5, 0.5)
     axes.set_yticks([-row for row in range(len(bars))], labels=[shortened(bar.factor, 34) for bar in bars])
@@ -67,6 +71,17 @@ def _figure(bars: Sequence[Bar], middle: float) -> Figure:
     axes.grid(visible=False, axis="y")
     axes.set_xlabel("head loss, m of the slurry")
     return figure
+
+
+def _make_room(axes: Axes, ends: Sequence[float], middle: float) -> None:
+    """Begin the axis farther left where the figure of a bar would else stand on the name of its input."""
+    low, high = axes.get_xlim()
+    width = axes.get_window_extent().width * POINTS_PER_INCH / axes.figure.dpi
+    for end in ends:
+        share = (size_of(significant(end))[0] + 2.0 * OFF) / width
+        if end < middle:
+            low = min(low, (end - share * high) / (1.0 - share))
+    axes.set_xlim(low, high)
 
 
 def _drawn(axes: Axes, row: int, bar: Bar, middle: float) -> None:
@@ -81,5 +96,5 @@ def _drawn(axes: Axes, row: int, bar: Bar, middle: float) -> None:
         if math.isfinite(end):
             is_left = end < middle
             place = "right" if is_left else "left"
-            axes.annotate(significant(end), (end, row), (-3 if is_left else 3, 0), textcoords="offset points",
+            axes.annotate(significant(end), (end, row), (-OFF if is_left else OFF, 0), textcoords="offset points",
                           ha=place, va="center", fontsize=SMALL, annotation_clip=False)  # fmt: skip

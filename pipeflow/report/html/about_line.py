@@ -8,6 +8,7 @@ from markupsafe import Markup
 
 from pipeflow.line.elements import Pipe
 from pipeflow.report.charts import flow_curve_chart_svg, route_chart_svg
+from pipeflow.report.html.about_vendor import vendor_blocks
 from pipeflow.report.html.blocks import Block, Chart, Items, Section, Subsection, Text, names_and_values, section, table
 from pipeflow.report.rheology_lines import (
     BEYOND_COLUMNS,
@@ -35,22 +36,19 @@ from pipeflow.report.rows import (
     route_rows,
     totals_rows,
 )
+from pipeflow.study.design_file import DesignFile
 from pipeflow.study.result import Result
 from pipeflow.units import format_value
 
-VENDOR = (
-    "To the vendor of the pump goes the upper figure: published methods for turbulent and transitional flow differ, "
-    "and a pump chosen by the lowest of them may not deliver. In laminar flow, which is exact, both figures are one."
-)
 
-
-def line_sections(result: Result) -> Iterator[Section]:
+def line_sections(found: DesignFile) -> Iterator[Section]:
     """Give the sections on the line."""
+    result = found.result
     design = format_value(result.case.flow.design, "volume flow")
     yield from section("basis", "Fluid and basis", _basis(result))
     yield from section("route", "Route", _route(result))
     yield from section("flow", f"Flow at design, {design}", _flow(result))
-    yield from section("totals", "Totals", _totals(result))
+    yield from section("totals", "Totals", _totals(found))
     yield from section("profile", "Pressure and head along the route", _profile(result))
 
 
@@ -105,18 +103,19 @@ def _flow(result: Result) -> Iterator[Block]:
     yield from table("Flow in each element", FLOW_COLUMNS, [flow_row(one) for one in result.elements], (0, 4))
 
 
-def _totals(result: Result) -> Iterator[Block]:
+def _totals(found: DesignFile) -> Iterator[Block]:
+    result = found.result
     yield from table("Losses and heads of the line", TOTALS_COLUMNS, totals_rows(result), (0, 3))
     profile = result.profile
     upper = f"{number(profile.pump_head_upper)} m of slurry, {number(profile.pump_pressure_upper, 'kPa')} kPa"
-    yield Text(f"Pump, at design flow: {upper}.", "strong")
-    yield Text(VENDOR)
+    yield Text(f"Pump of the case itself, at design flow: {upper} by the upper figure.")
     if result.spread.head_loss:
         figures = ", ".join(f"{key} {number(head)}" for key, head in result.spread.head_loss.items())
         yield Text(f"Head loss by method, m: {figures}.")
     if result.spread.left_out:
         reasons = "; ".join(f"{key}, {why}" for key, why in result.spread.left_out.items())
         yield Text(f"Not in the upper figure: {reasons}.")
+    yield from vendor_blocks(found.vendor)
 
 
 def _profile(result: Result) -> Iterator[Block]:

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 
 from markupsafe import Markup
 
 from pipeflow.report.charts import system_chart_svg
+from pipeflow.report.charts.duties import upper_apart
 from pipeflow.report.curve_page import (
     DUTY_COLUMNS,
     boundaries,
@@ -20,14 +21,11 @@ from pipeflow.report.curve_page import (
 from pipeflow.report.html.blocks import Block, Chart, Items, Section, Subsection, Text, section, table
 from pipeflow.report.size_page import COLUMNS, candidate_row, choice_texts, failing_sizes, near_sizes
 from pipeflow.study.design_file import DesignFile
-from pipeflow.study.pumping.result import CurveResult
+from pipeflow.study.pumping.result import CurveResult, PumpOnLine
 from pipeflow.study.sizes.sizing import SizingResult
 from pipeflow.units import format_value
 
-MARKS_OF_PUMPS = (
-    "Pumps: curves with marks as corrected, dashed where not established, thin grey on water; full marks are duties on "
-    "the central curve, empty ones on the upper."
-)
+LINES_OF_PUMPS = "Pumps: curves with marks as corrected, dashed where not established, thin grey on water"
 
 
 def pump_sections(found: DesignFile) -> Iterator[Section]:
@@ -65,7 +63,16 @@ def _system(result: CurveResult) -> Iterator[Block]:
 def _about_chart(result: CurveResult) -> str:
     shaded = "; the shaded band holds the case and its scenarios" if len(result.conditions) > 1 else ""
     beside = f"Head the line asks of its pump, by flow{shaded}. Conditions beside the case by their upper figure."
-    return f"{beside} {MARKS_OF_PUMPS}" if result.own.pumps else beside
+    return f"{beside} {LINES_OF_PUMPS}{_about_marks(result.own.pumps)}." if result.own.pumps else beside
+
+
+def _about_marks(pumps: Sequence[PumpOnLine]) -> str:
+    """Say what the marks of the duties are, of those that are drawn."""
+    if any(upper_apart(pump) for pump in pumps):
+        moves = any(pump.speed != pump.speed_upper for pump in pumps)
+        faster = ", there at the speed that it asks for" if moves else ""
+        return f"; full marks are duties on the central curve, empty ones on the upper{faster}"
+    return "; full marks are duties, on the central curve and the upper alike" if any(p.duty for p in pumps) else ""
 
 
 def _pump(result: CurveResult, index: int) -> Iterator[Block]:

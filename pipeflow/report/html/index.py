@@ -21,9 +21,11 @@ class IndexRow:
     link: str
     case: str
     title: str
+    revision: str = ""
     flow: str = ""
     head_loss: str = ""
     head_loss_upper: str = ""
+    pump: str = ""
     worst: str = ""
     status: str = ""
 
@@ -35,12 +37,20 @@ def index_row(found: DesignFile, page: Path) -> IndexRow:
         link=quote(page.name),
         case=found.case.file,
         title=found.case.title,
+        revision=found.case.revision or "–",
         flow=format_value(found.case.flow.design, "volume flow"),
         head_loss=number(totals.head_loss),
         head_loss_upper=number(totals.head_loss_upper),
-        worst=worst_mark(found.checks_of_line),
-        status="preliminary" if found.is_preliminary else "complete",
+        pump=_pump(found),
+        worst=worst_mark(one.check for one in found.judged),
+        status="preliminary" if found.is_preliminary else "every check made",
     )
+
+
+def _pump(found: DesignFile) -> str:
+    if not found.curve.ranking:
+        return "–"
+    return found.first_pump or "none holds"
 
 
 def unusable_row(case: str) -> IndexRow:

@@ -15,6 +15,7 @@ from pipeflow.report.html.about_uncertainty import uncertainty_sections
 from pipeflow.report.html.blocks import Block, Section, Table, Text, Verbatim, names_and_values, section
 from pipeflow.report.html.rendering import rendered
 from pipeflow.report.html.summary import job_rows, signatures, summary_rows
+from pipeflow.report.judged import judged_texts
 from pipeflow.study.design_file import DesignFile
 
 LONGEST_LISTING = 400
@@ -41,8 +42,8 @@ def report_page(found: DesignFile, files: Sequence[SourceFile]) -> str:
         case=case,
         running=f"{case.title}{f', revision {case.revision}' if case.revision else ''}",
         preliminary=found.is_preliminary,
-        fails=found.fails,
-        not_checked=sorted({check.name.replace("_", " ") for check in found.checks if check.status == "not checked"}),
+        not_checked=judged_texts(found.not_checked, found.conditions),
+        failing=judged_texts(found.failing, found.conditions),
         job=tuple(job_rows(case, files[0].name)),
         signatures=signatures(case.job),
         sections=tuple(_sections(found, files)),
@@ -52,7 +53,7 @@ def report_page(found: DesignFile, files: Sequence[SourceFile]) -> str:
 
 def _sections(found: DesignFile, files: Sequence[SourceFile]) -> Iterator[Section]:
     yield from section("summary", "Summary", names_and_values("Summary", summary_rows(found)))
-    yield from line_sections(found.result)
+    yield from line_sections(found)
     yield from solids_sections(found.solids)
     yield from uncertainty_sections(found.uncertainty)
     yield from pump_sections(found)

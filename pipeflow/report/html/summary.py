@@ -6,6 +6,7 @@ from collections.abc import Iterator
 
 from pipeflow.case.model import Case, Job
 from pipeflow.report.curve_page import ranking_rows
+from pipeflow.report.html.about_vendor import governing_text
 from pipeflow.report.rows import MARK, number
 from pipeflow.study.design_file import DesignFile
 from pipeflow.units import format_value
@@ -35,7 +36,10 @@ def summary_rows(found: DesignFile) -> Iterator[tuple[str, str]]:
     yield "head loss", f"{number(totals.head_loss)} m of slurry, upper {number(totals.head_loss_upper)} m"
     yield "static head", f"{number(totals.static_head)} m"
     upper = f"{number(profile.pump_head_upper)} m, {number(profile.pump_pressure_upper, 'kPa')} kPa"
-    yield "pump head, upper figure, to the vendor", upper
+    yield "pump head at design flow, upper", upper
+    governing = governing_text(found.vendor)
+    if governing:
+        yield "governing duty, upper figure, to the vendor", governing
     regimes = dict.fromkeys(element.regime for element in result.elements if element.regime)
     if regimes:
         yield "regime", ", ".join(regimes)
