@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import fields, is_dataclass
 from typing import Any
 
 
-def laid_out(item: Any, units: Mapping[str, str]) -> dict[str, Any]:
+def laid_out(item: Any, units: Mapping[str, str], names: Iterable[str] = ()) -> dict[str, Any]:
     """Lay a dataclass out, and those in it.
 
     Parameters
@@ -16,6 +16,8 @@ def laid_out(item: Any, units: Mapping[str, str]) -> dict[str, Any]:
     item : dataclass
     units : mapping of str to str
         What stands at the end of the key of a field, as ``m3_s``, by the field's name.
+    names : iterable of str, optional
+        The fields to lay out; all of them by default.
 
     Examples
     --------
@@ -23,7 +25,8 @@ def laid_out(item: Any, units: Mapping[str, str]) -> dict[str, Any]:
     >>> laid_out(Range("rate", 0.1, float("inf")), {"lower": "1_s"})
     {'variable': 'rate', 'lower_1_s': 0.1, 'upper': None}
     """
-    return {key_of(field.name, units): plain(getattr(item, field.name), units) for field in fields(item)}
+    told = tuple(names) or tuple(field.name for field in fields(item))
+    return {key_of(name, units): plain(getattr(item, name), units) for name in told}
 
 
 def key_of(name: str, units: Mapping[str, str]) -> str:

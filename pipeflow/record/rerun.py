@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from typing import Literal
 
@@ -13,7 +13,8 @@ from pipeflow.case.files import printable
 from pipeflow.case.loading import load_case
 from pipeflow.case.model import Case
 from pipeflow.errors import InputError
-from pipeflow.record.comparison import Comparison, Document, LineComparison, compare, failing
+from pipeflow.record.changes import Document
+from pipeflow.record.comparison import Comparison, LineComparison, compare, failing
 from pipeflow.record.explanation import PROGRAM, Explanation, explain
 from pipeflow.record.inputs import Json, UnknownInputsError, decoded, differences, without_folder
 from pipeflow.record.mixes import line_of
@@ -44,10 +45,10 @@ FELT = (
     "methods.critical",
     "methods.fittings",
     "solids.d85",
-    "scenarios",
-    "file",
 )
-"""Inputs that reach the totals, or are told otherwise; by their paths in a laid-out case."""
+"""Inputs that reach the totals, by their paths in a laid-out case."""
+TOLD = ("scenarios", "file")
+"""What is told otherwise."""
 ALONG = ("sizes", "default_roughness", "followed", "fitted", "sheets", "density_is_mixed")
 """What goes along with other inputs, or is shown by them."""
 _FOLLOWS = re.compile(r"uncertainty\[.*\]\.(middle|spread|least|most)")
@@ -61,8 +62,23 @@ AS_WRITTEN = {
     "readings": "fluid.rheology.flow_curve",
     "hold_times": "hold times",
     "assumed": "status of inputs",
+    "lowest_level": "source.lowest_level",
+    "pump_place": "place of the pump",
 }
 """Keys of the case file for parts of a case of another name."""
+OF_A_PUMP = {
+    "table": "curve",
+    "speed_minimum": "variable_speed.minimum",
+    "speed_maximum": "variable_speed.maximum",
+    "impeller_diameter": "impeller.diameter",
+    "trimmed_diameter": "impeller.trimmed_to",
+    "outlet_width": "impeller.outlet_width",
+    "motor_power": "motor.power",
+    "motor_margin": "motor.margin",
+}
+"""Keys of a pump likewise; its curve is one input."""
+_FIELD_OF_A_PUMP = re.compile(r"(pumps\[.*\]\.)(\w+).*")
+PUMPS_NOT_THERE = "pumps: not in the record"
 NO_PART = 1e-12
 """A part below this fraction of the figure is none."""
 
@@ -96,10 +112,16 @@ class Rerun:
         Why there is none, likewise.
     without_effect : tuple of str
         Inputs that changed and moved no total.
+    within_tolerance : tuple of str
+        Where pumps moved and no total did: inputs that changed and reach the totals.
     program : dict of str to tuple of str
         Versions before and after, where they differ.
     fails : tuple of str
-        Checks that fail now.
+        Checks that fail now; and that no pump holds, where there are any.
+    lacks_pumps : bool
+        The record is of a case with pumps, and has no figures of them.
+    pumps_moved : bool
+        Something of the pumps is among what moved.
     """
 
     file: str
@@ -113,8 +135,11 @@ class Rerun:
     explanations: dict[str, Explanation] = field(default_factory=dict)
     unexplained: dict[str, str] = field(default_factory=dict)
     without_effect: tuple[str, ...] = ()
+    within_tolerance: tuple[str, ...] = ()
     program: dict[str, tuple[str, str]] = field(default_factory=dict)
     fails: tuple[str, ...] = ()
+    lacks_pumps: bool = False
+    pumps_moved: bool = False
 
     @property
     def name(self) -> str:
@@ -128,7 +153,7 @@ class Rerun:
             return UNUSABLE
         if self.accepted:
             return GOOD
-        return MOVED if self.moved or self.fails or self.outcome != "compared" else GOOD
+        return MOVED if self.moved or self.fails or self.lacks_pumps or self.outcome != "compared" else GOOD
 
 
 @dataclass(frozen=True)
@@ -222,12 +247,16 @@ def _accepted(file: str, now: Record, found: Rerun) -> Rerun:
 
 
 def _compared(file: str, now: Record, before: _Before, options: Options) -> Rerun:
-    comparison = compare(before.results, now.results)
+    lacks_pumps = _lacks_pumps(before, now)
+    comparison = compare(before.results, {**now.results, "pumps": None} if lacks_pumps else now.results)
     explanations, unexplained = _explained(now, before, comparison, options.tolerance)
+    pumps_moved = comparison.pumps_moved(options.tolerance)
+    by_pumps_alone = pumps_moved and not (explanations or unexplained)
     fresh = versions()
     return Rerun(
         file,
         "compared",
+        (PUMPS_NOT_THERE,) if lacks_pumps else (),
         title=str(now.results["title"]),
         moved=comparison.is_beyond(options.tolerance),
         inputs_changed=before.digest != now.digest,
@@ -235,9 +264,17 @@ def _compared(file: str, now: Record, before: _Before, options: Options) -> Reru
         explanations=explanations,
         unexplained=unexplained,
         without_effect=tuple(_without_effect(before, now, explanations)) if before.digest != now.digest else (),
+        within_tolerance=tuple(_changed(before, now, felt=True)) if by_pumps_alone else (),
         program={name: (old, fresh[name]) for name, old in before.program.items() if fresh.get(name, old) != old},
         fails=failing(now.results),
+        lacks_pumps=lacks_pumps,
+        pumps_moved=pumps_moved,
     )
+
+
+def _lacks_pumps(before: _Before, now: Record) -> bool:
+    """Whether there were pumps and are, and the record, of an earlier version, has no figures of them."""
+    return bool(before.inputs.get("pumps")) and "pumps" in now.results and "pumps" not in before.results
 
 
 def _explained(
@@ -281,13 +318,18 @@ def _explanation(old: Case, new: Case, line: LineComparison) -> Explanation | st
 
 def _without_effect(before: _Before, now: Record, explanations: dict[str, Explanation]) -> Iterator[str]:
     """Inputs that reach no total, by their keys, and groups of inputs whose parts are all nothing."""
-    own = list(_unfelt(before.inputs, now.inputs))
+    yield from _changed(before, now, felt=False)
+    groups = dict.fromkeys(group for found in explanations.values() for group in found.groups if group != PROGRAM)
+    yield from (group for group in groups if all(_is_nothing(found, group) for found in explanations.values()))
+
+
+def _changed(before: _Before, now: Record, *, felt: bool) -> Iterator[str]:
+    """Inputs that reach the totals, or do not, by their keys; of a scenario those that are not the case's own."""
+    own = list(_changed_of(before.inputs, now.inputs, felt))
     yield from own
     old, new = _scenarios(before.inputs), _scenarios(now.inputs)
     for name in (name for name in new if name in old):
-        yield from (f"{name}: {path}" for path in _unfelt(old[name], new[name]) if path not in own)
-    groups = dict.fromkeys(group for found in explanations.values() for group in found.groups if group != PROGRAM)
-    yield from (group for group in groups if all(_is_nothing(found, group) for found in explanations.values()))
+        yield from (f"{name}: {path}" for path in _changed_of(old[name], new[name], felt) if path not in own)
 
 
 def _scenarios(inputs: Json) -> dict[str, Json]:
@@ -296,15 +338,24 @@ def _scenarios(inputs: Json) -> dict[str, Json]:
     return entries if isinstance(entries, dict) else {}
 
 
-def _unfelt(before: Json, after: Json) -> Iterator[str]:
-    changed = list(differences(before, after))
+def _changed_of(before: Json, after: Json, felt: bool) -> Iterator[str]:
+    changed = list(dict.fromkeys(map(_as_a_pump_has_it, differences(before, after))))
     # a flow given by one figure is least, design and most at once
     felt_here = (*FELT, "flow") if "flow.design" in changed else FELT
     for path in (path for path in changed if not _FOLLOWS.fullmatch(path)):
         head, _, rest = path.partition(".")
-        is_felt = any(path == felt or path.startswith((f"{felt}.", f"{felt}[")) for felt in felt_here)
-        if not is_felt and head not in ALONG:
+        if _is_below(path, felt_here) is felt and head not in ALONG and not _is_below(path, TOLD):
             yield f"{AS_WRITTEN.get(head, head)}.{rest}" if rest else AS_WRITTEN.get(head, head)
+
+
+def _is_below(path: str, keys: Sequence[str]) -> bool:
+    return any(path == key or path.startswith((f"{key}.", f"{key}[")) for key in keys)
+
+
+def _as_a_pump_has_it(path: str) -> str:
+    """The key of the case file for a field of a pump; any other path as it is."""
+    match = _FIELD_OF_A_PUMP.fullmatch(path)
+    return f"{match[1]}{OF_A_PUMP.get(match[2], match[2])}" if match else path
 
 
 def _is_nothing(found: Explanation, group: str) -> bool:

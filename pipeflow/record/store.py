@@ -46,7 +46,8 @@ class Record:
     inputs : Json
         The case laid out by :mod:`pipeflow.record.inputs`.
     results : dict
-        The document of :mod:`pipeflow.record.document`.
+        The document of :mod:`pipeflow.record.document`; of a case with pumps, under ``pumps``, that of
+        :mod:`pipeflow.study.pumping.document` too.
     """
 
     program: dict[str, str]
@@ -68,8 +69,20 @@ def record_path(case_file: str | Path) -> Path:
 def record_of(case: Case, result: Result) -> Record:
     """Make the record of a case solved with its files by name alone, as ``inputs.without_folder`` gives it."""
     keys = {use.source.key for one in (result, *result.scenarios.values()) for use in one.methods}
-    inputs = encoded(case)
-    return Record(versions(), digest(inputs), tuple(sorted(keys)), inputs, document(result))
+    inputs, results = encoded(case), document(result)
+    if case.pumps:
+        pumps, of_pumps = _of_pumps(case)
+        results["pumps"], keys = pumps, keys | of_pumps
+    return Record(versions(), digest(inputs), tuple(sorted(keys)), inputs, results)
+
+
+def _of_pumps(case: Case) -> tuple[Json, set[str]]:
+    """What is stored of the pumps of a case, and the keys of the methods that it rests on."""
+    from pipeflow.study.pumping.curve import curve
+    from pipeflow.study.pumping.document import pumps_document
+
+    found = curve(case)
+    return pumps_document(found), {use.source.key for use in found.methods}
 
 
 @cache

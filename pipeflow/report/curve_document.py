@@ -6,36 +6,10 @@ from collections.abc import Iterator
 from typing import Any
 
 from pipeflow.documents import key_of, laid_out, plain
+from pipeflow.study.pumping.document import UNITS
 from pipeflow.study.pumping.result import Condition, CurveResult, SystemCurve
 from pipeflow.study.result import SAFETY_NOTICE
 
-_UNITS = {
-    "flow": "m3_s",
-    "flow_from": "m3_s",
-    "flow_to": "m3_s",
-    "laminar_until": "m3_s",
-    "turbulent_from": "m3_s",
-    "deposition_flow": "m3_s",
-    "total_head": "m",
-    "total_head_upper": "m",
-    "pump_head": "m",
-    "pump_head_upper": "m",
-    "static_head": "m",
-    "head": "m",
-    "npsh_available": "m",
-    "npsh_required": "m",
-    "shaft_power": "W",
-    "motor_power": "W",
-    "standard_motor": "W",
-    "speed": "rad_s",
-    "speed_upper": "rad_s",
-    "viscosity_head": "Pa_s",
-    "viscosity_efficiency": "Pa_s",
-    "shear_rate": "1_s",
-    "velocity": "m_s",
-    "volume": "m3",
-    "time": "s",
-}
 _COLUMNS = ("flow", "total_head", "total_head_upper", "pump_head", "pump_head_upper", "static_head", "regime")
 
 
@@ -56,7 +30,7 @@ def curve_document(result: CurveResult) -> dict[str, Any]:
             "low_m": list(result.envelope_low),
             "high_m": list(result.envelope_high),
         },
-        "ranking": [laid_out(one, _UNITS) for one in result.ranking],
+        "ranking": [laid_out(one, UNITS) for one in result.ranking],
         "selected": next((one.name for one in result.ranking if one.holds), None),
         "cautions": [*result.cautions, *_cautions(own)],
         "methods": [
@@ -77,12 +51,12 @@ def _condition(one: Condition) -> dict[str, Any]:
         "kind": one.kind,
         "system": _rows(system),
         "boundaries": {
-            key_of(name, _UNITS): getattr(system, name)
+            key_of(name, UNITS): getattr(system, name)
             for name in ("laminar_until", "turbulent_from", "deposition_flow")
         },
-        "flat_bands": [laid_out(band, _UNITS) for band in system.flat_bands],
-        "pumps": [laid_out(pump, _UNITS) for pump in one.pumps],
-        "flushes": [laid_out(flush, _UNITS) for flush in one.flushes],
+        "flat_bands": [laid_out(band, UNITS) for band in system.flat_bands],
+        "pumps": [laid_out(pump, UNITS) for pump in one.pumps],
+        "flushes": [laid_out(flush, UNITS) for flush in one.flushes],
     }
 
 
@@ -94,6 +68,5 @@ def _cautions(one: Condition) -> Iterator[str]:
 def _rows(system: SystemCurve) -> list[dict[str, Any]]:
     columns = zip(*(getattr(system, name) for name in _COLUMNS), strict=True)
     return [
-        {key_of(name, _UNITS): plain(value, _UNITS) for name, value in zip(_COLUMNS, row, strict=True)}
-        for row in columns
+        {key_of(name, UNITS): plain(value, UNITS) for name, value in zip(_COLUMNS, row, strict=True)} for row in columns
     ]

@@ -4,8 +4,10 @@ from __future__ import annotations
 
 from typing import Any
 
-from pipeflow.record.comparison import TOTALS, Change, CheckChange, LineComparison
+from pipeflow.record.changes import Change, CheckChange
+from pipeflow.record.comparison import TOTALS, LineComparison
 from pipeflow.record.explanation import Explanation
+from pipeflow.record.pump_comparison import Candidate, PumpsComparison
 from pipeflow.record.rerun import Rerun
 from pipeflow.report.rerun_page import explained
 
@@ -25,6 +27,8 @@ def rerun_document(found: Rerun, tolerance: float) -> dict[str, Any]:
         "fails": list(found.fails),
         "program": {name: {"before": old, "after": new} for name, (old, new) in found.program.items()},
         "changed_without_effect": list(found.without_effect),
+        "changed_within_tolerance": list(found.within_tolerance),
+        "lacks_pumps": found.lacks_pumps,
     }
     if comparison is not None:
         own, *scenarios = (_line(line, found, tolerance) for line in comparison.lines)
@@ -32,6 +36,7 @@ def rerun_document(found: Rerun, tolerance: float) -> dict[str, Any]:
         laid_out["scenarios"] = {line.scenario: one for line, one in zip(comparison.lines[1:], scenarios, strict=True)}
         laid_out["scenarios_added"] = list(comparison.scenarios_added)
         laid_out["scenarios_gone"] = list(comparison.scenarios_gone)
+        laid_out["pumps"] = comparison.pumps and _pumps(comparison.pumps, tolerance)
     return laid_out
 
 
@@ -65,6 +70,35 @@ def _check(check: CheckChange, tolerance: float) -> dict[str, Any]:
         "value": _change(check.value, tolerance),
         "value_upper": _change(check.value_upper, tolerance),
         "limit": _change(check.limit, tolerance),
+    }
+
+
+def _pumps(pumps: PumpsComparison, tolerance: float) -> dict[str, Any]:
+    """Lay the pumps out: each with its figures and checks by condition; those added and gone have none."""
+    return {
+        "moved": pumps.is_beyond(tolerance),
+        "added": list(pumps.added),
+        "gone": list(pumps.gone),
+        "first_before": pumps.first_before,
+        "first_after": pumps.first_after,
+        "candidates": {one.name: _candidate(one, pumps, tolerance) for one in pumps.candidates},
+    }
+
+
+def _candidate(one: Candidate, pumps: PumpsComparison, tolerance: float) -> dict[str, Any]:
+    return {
+        "holds_before": one.held,
+        "holds_after": one.holds,
+        "reasons": list(one.reasons),
+        one.motor.name: _change(one.motor, tolerance),
+        "conditions": {
+            duty.condition: {
+                "figures": {figure.name: _change(figure, tolerance) for figure in duty.figures},
+                "checks": [_check(check, tolerance) for check in duty.checks],
+            }
+            for duty in pumps.duties
+            if duty.pump == one.name
+        },
     }
 
 

@@ -8,11 +8,14 @@ from collections.abc import Iterator, Sequence
 
 import numpy as np
 
-from pipeflow.record.comparison import TOTALS, Change, CheckChange, LineComparison
+from pipeflow.record.changes import Change
+from pipeflow.record.comparison import TOTALS, LineComparison
 from pipeflow.record.explanation import Explanation
 from pipeflow.record.rerun import Rerun
+from pipeflow.report.rerun_pumps import pump_lines
+from pipeflow.report.rerun_rows import COLUMNS, WORDS, check_rows, figures, signed
 from pipeflow.report.text import WIDTH, paragraph, table
-from pipeflow.units import significant, to_display
+from pipeflow.units import to_display
 
 SHOWN = {
     "head_loss_m": ("head loss", "m"),
@@ -24,10 +27,10 @@ SHOWN = {
 }
 """The words and the unit for each total."""
 CENTRAL = {key.replace("_upper", ""): key for key in TOTALS if "_upper" in key}
-STATUS = {"ok": "ok", "not checked": "not checked", "caution": "CAUTION", "fail": "FAIL", None: "none"}
 OUTCOMES = {
     "moved": "moved",
     "unmoved": "as before",
+    "lacks pumps": "with pumps not in the record",
     "accepted": "accepted",
     "no record": "without a record",
     "unusable record": "with a record that can't be used",
@@ -79,7 +82,7 @@ def summary_line(runs: Sequence[Rerun], tolerance: float) -> str:
 
 def _became(found: Rerun) -> str:
     if found.comparison is not None and not found.moved:
-        return "unmoved"
+        return "lacks pumps" if found.lacks_pumps and not found.accepted else "unmoved"
     return "accepted" if found.accepted else "moved" if found.moved else found.outcome
 
 
@@ -98,7 +101,7 @@ def explained(change: Change, explanation: Explanation) -> str:
     digits = _decimals(largest)
     shown = {group: part for group, part in parts.items() if round(part, digits)}
     said = sorted(shown.items(), key=lambda item: -abs(item[1]))
-    moves = ", ".join(f"{group} {_signed(part, digits)}" for group, part in said)
+    moves = ", ".join(f"{group} {signed(part, digits)}" for group, part in said)
     return f"{words} {before:.{digits}f} → {after:.{digits}f} {unit}: {moves}"
 
 
@@ -107,10 +110,6 @@ def _decimals(largest: float) -> int:
     if not largest:
         return 1
     return min(max(2 - math.floor(math.log10(largest)), 0), 9)
-
-
-def _signed(value: float, digits: int) -> str:
-    return f"{value:+.{digits}f}".replace("-", "−")
 
 
 def _headline(found: Rerun, *said: str) -> str:
@@ -123,8 +122,11 @@ def _beside(found: Rerun) -> Iterator[str]:
     yield from found.said
     if found.inputs_changed and not found.moved and not found.without_effect:
         yield "inputs changed, within the tolerance"
+    if found.within_tolerance:
+        yield f"changed, head within the tolerance: {', '.join(found.within_tolerance)}"
     if found.without_effect:
-        yield f"changed, no effect on head: {', '.join(found.without_effect)}"
+        of = "the line's head" if found.pumps_moved else "head"
+        yield f"changed, no effect on {of}: {', '.join(found.without_effect)}"
 
 
 def _moved(found: Rerun, tolerance: float, width: int) -> Iterator[str]:
@@ -142,6 +144,8 @@ def _moved(found: Rerun, tolerance: float, width: int) -> Iterator[str]:
             yield from _line(line, found, tolerance, width)
         else:
             yield f"  {line.scenario or 'the case itself'}: nothing moved"
+    if comparison.pumps is not None:
+        yield from pump_lines(comparison.pumps, tolerance, width)
     if found.program:
         versions = ", ".join(f"{name} {old} → {new}" for name, (old, new) in found.program.items())
         yield paragraph(f"Program: {versions}.", width, "  ")
@@ -150,9 +154,10 @@ def _moved(found: Rerun, tolerance: float, width: int) -> Iterator[str]:
 
 
 def _line(line: LineComparison, found: Rerun, tolerance: float, width: int) -> Iterator[str]:
-    columns = (line.scenario or "the case itself", "before", "after", "change", "then", "now")
-    rows = [*_totals(line), *_checks(line, tolerance)]
-    yield from (f"  {text}" for text in table(columns, rows, words=(0, 4, 5), width=width - 2))
+    columns = (line.scenario or "the case itself", *COLUMNS)
+    moved = (check for check in line.checks if check.is_beyond(tolerance) or check.after == "fail")
+    rows = [*_totals(line), *(row for check in moved for row in check_rows(check, tolerance))]
+    yield from (f"  {text}" for text in table(columns, rows, words=WORDS, width=width - 2))
     explanation = found.explanations.get(line.scenario)
     if explanation is None:
         why = found.unexplained.get(line.scenario)
@@ -194,43 +199,4 @@ def _different(line: LineComparison) -> Iterator[Change]:
 def _totals(line: LineComparison) -> Iterator[tuple[str, ...]]:
     for total in _different(line):
         words, unit = SHOWN[total.name]
-        yield (f"{words}, {unit}", _figure(total.before, unit), _figure(total.after, unit), _percent(total), "", "")
-
-
-def _checks(line: LineComparison, tolerance: float) -> Iterator[tuple[str, ...]]:
-    """The checks that moved or fail: the figure judged, and the limit where that is a figure that moved."""
-    for check in line.checks:
-        if check.is_beyond(tolerance) or check.after == "fail":
-            unit = "kPa" if check.unit == "Pa" else check.unit
-            judged = _judged(check)
-            name = f"{check.name.replace('_', ' ')}{', ' if unit else ''}{unit}"
-            figures = (_figure(judged.before, unit), _figure(judged.after, unit), _percent(judged))
-            yield (f"check: {name}", *figures, STATUS.get(check.before, ""), STATUS.get(check.after, ""))
-            if check.limit.is_beyond(tolerance):
-                figures = (_figure(check.limit.before, unit), _figure(check.limit.after, unit), _percent(check.limit))
-                yield ("  its limit", *figures, "", "")
-
-
-def _judged(check: CheckChange) -> Change:
-    """The figure that the limit is held against: the upper one where there is one."""
-    before, after = (
-        upper if upper is not None else central
-        for central, upper in (
-            (check.value.before, check.value_upper.before),
-            (check.value.after, check.value_upper.after),
-        )
-    )
-    return Change("value", before, after)
-
-
-def _figure(value: float | None, unit: str) -> str:
-    if value is None:
-        return ""
-    return significant(to_display(value, unit) if unit == "kPa" else value)
-
-
-def _percent(change: Change) -> str:
-    if change.relative is None:
-        return ""
-    percent = 100 * change.relative
-    return f"{_signed(percent, 2 if abs(percent) < 10 else 1)} %" if round(percent, 2) else "0 %"
+        yield (f"{words}, {unit}", *figures(total, unit), "", "")
