@@ -8,6 +8,7 @@ from typing import Any
 from pipeflow.report.sweep_text import energy_unit
 from pipeflow.study.ranges.boundaries import Boundary
 from pipeflow.study.ranges.envelope import Envelope
+from pipeflow.study.ranges.runs import Run
 from pipeflow.study.ranges.sweeping import Axis, Sweep, SweptPoint
 from pipeflow.study.ranges.window import Interval
 from pipeflow.study.result import SAFETY_NOTICE
@@ -28,6 +29,7 @@ def sweep_document(sweep: Sweep) -> dict[str, Any]:
         "axes": [_axis(axis) for axis in sweep.axes],
         "points": [_point(point) for point in sweep.points],
         "boundaries": [_boundary(one) for one in sweep.boundaries],
+        "limits": [_run(run) for run in sweep.runs],
         "energy_unit": energy_unit(sweep.case),
         "cautions": list(sweep.cautions),
         "safety_notice": SAFETY_NOTICE,
@@ -99,6 +101,10 @@ def _check(check: Check) -> dict[str, Any]:
         "limit": _number(check.limit),
         "unit": check.unit,
     }
+
+
+def _run(run: Run) -> dict[str, Any]:
+    return {"name": run.check.name, "status": run.check.status, "from": run.low, "to": run.high}
 
 
 def _boundary(one: Boundary) -> dict[str, Any]:

@@ -4,9 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from pipeflow.report.sweep_text import energy_unit, figure_and_unit, name_of, steps, title_of, told, unit_of
+from pipeflow.report.sweep_text import AT_MAXIMUM, energy_unit, figure_and_unit, name_of, title_of, told, unit_of
 from pipeflow.report.text import heading, paragraph, table
-from pipeflow.study.ranges.sweeping import Sweep, SweptPoint
+from pipeflow.study.ranges.runs import Run
+from pipeflow.study.ranges.sweeping import Sweep, SweptPoint, Variable
 from pipeflow.study.result import SAFETY_NOTICE
 from pipeflow.units import significant, to_display
 from pipeflow.verdict import Check
@@ -57,9 +58,13 @@ def sweep_table(sweep: Sweep) -> Iterator[str]:
     yield from table(columns, [tuple(sweep_row(sweep, point)) for point in sweep.points], words=(1, 9))
     yield paragraph(
         "Head loss by the central and the upper figure; total head, pressure required, hydraulic power and energy by "
-        f"the upper. Energy of the losses, {energy_unit(sweep.case)}. Limits as solve judges them.",
+        f"the upper. Energy of the losses, {energy_unit(sweep.case)}. Limits as solve judges them{_judged(sweep)}.",
         mark="  ",
     )
+
+
+def _judged(sweep: Sweep) -> str:
+    return ": each at the flow that is hardest on it, losses at the maximum" if sweep.has_other_flows else ""
 
 
 def sweep_row(sweep: Sweep, point: SweptPoint) -> Iterator[str]:
@@ -78,25 +83,24 @@ def sweep_row(sweep: Sweep, point: SweptPoint) -> Iterator[str]:
 
 def limits_over(sweep: Sweep) -> Iterator[tuple[str, str]]:
     """Where each check fails or calls for thought, the failing first: its status, and the values in words."""
-    yield from _runs(sweep, "fail")
-    yield from _runs(sweep, "caution")
+    by_check: dict[tuple[str, str], list[Run]] = {}
+    for run in sweep.runs:
+        by_check.setdefault((run.check.name, run.check.status), []).append(run)
+    for runs in by_check.values():
+        check = runs[0].check
+        values = ", ".join(_between(sweep.axes[0].variable, run) for run in runs)
+        yield SHOWN[check.status], f"{check.name.replace('_', ' ')}{_sense(check)}{_flow_of(sweep, check)}: {values}"
 
 
-def _runs(sweep: Sweep, status: str) -> Iterator[tuple[str, str]]:
-    axis = sweep.axes[0]
-    every = [{check.name: check for check in point.checks} for point in sweep.points]
-    for name in dict.fromkeys(name for one in every for name in one):
-        chosen = [name in one and one[name].status == status for one in every]
-        if any(chosen):
-            runs = (_run(axis.variable, *ends) for ends in steps(axis.values, chosen))
-            check = next(one[name] for one, is_one in zip(every, chosen, strict=True) if is_one)
-            yield SHOWN[status], f"{name.replace('_', ' ')}{_sense(check)}: {', '.join(runs)}"
+def _between(variable: Variable, run: Run) -> str:
+    (low, unit), (high, _) = (figure_and_unit(variable, value) for value in (run.low, run.high))
+    said = f" {unit}" if unit else ""
+    return f"at {low}{said}" if run.low == run.high else f"{low} to {high}{said}"
 
 
-def _run(variable: object, first: float, last: float) -> str:
-    shown = [figure_and_unit(variable, value) for value in (first, last)]  # type: ignore[arg-type]
-    unit = f" {shown[0][1]}" if shown[0][1] else ""
-    return f"at {shown[0][0]}{unit}" if first == last else f"{shown[0][0]} to {shown[1][0]}{unit}"
+def _flow_of(sweep: Sweep, check: Check) -> str:
+    """The flow that a check of the whole line is of, where the table is of another."""
+    return f", {check.basis}" if sweep.has_other_flows and check.basis == AT_MAXIMUM else ""
 
 
 def _sense(check: Check) -> str:

@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
-
 from pipeflow.case.model import Case
 from pipeflow.study.ranges.boundaries import Boundary
 from pipeflow.study.ranges.sweeping import Axis, Variable
@@ -17,6 +15,8 @@ NAMES = {
     "fluid.rheology.yield_stress": "yield stress",
 }
 """What an input is called on a page; another by its key path."""
+AT_MAXIMUM = "at maximum flow"
+"""What checks of the losses of the whole line say they are of."""
 
 
 def name_of(variable: Variable) -> str:
@@ -31,7 +31,7 @@ def figure_and_unit(variable: Variable, value: float, digits: int = 4) -> tuple[
     """A value in the unit an engineer reads it in, and that unit."""
     if not variable.dimension:
         return significant(value, digits), ""
-    figure, _, unit = format_value(value, variable.dimension, digits).partition(" ")
+    figure, _, unit = format_value(value, variable.unit, digits).partition(" ")
     return figure, unit
 
 
@@ -67,14 +67,3 @@ def boundary_name(boundary: Boundary) -> str:
 def title_of(case: Case) -> str:
     """Title and revision."""
     return case.title + (f", revision {case.revision}" if case.revision else "")
-
-
-def steps(values: tuple[float, ...], chosen: list[bool]) -> Iterator[tuple[float, float]]:
-    """First and last value of each run of chosen ones."""
-    start: float | None = None
-    for index, value in enumerate(values):
-        if chosen[index] and start is None:
-            start = value
-        if start is not None and (not chosen[index] or index == len(values) - 1):
-            yield start, value if chosen[index] else values[index - 1]
-            start = None

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from dataclasses import dataclass
 
 import numpy as np
 from matplotlib.axes import Axes
@@ -23,7 +24,7 @@ from pipeflow.report.charts.canvas import (
 )
 from pipeflow.report.charts.labels import Above, Beside
 from pipeflow.report.charts.map_parts import printed, shown
-from pipeflow.report.sweep_text import steps, told
+from pipeflow.report.sweep_text import AT_MAXIMUM, told
 from pipeflow.study.ranges.sweeping import Sweep
 from pipeflow.units import significant
 
@@ -64,7 +65,7 @@ def _figure(sweep: Sweep) -> Figure:
     for axes in panels[:-1]:
         axes.tick_params(labelbottom=False)
     panels[-1].set_xlabel(printed(sweep.axes[0].variable))
-    limit = sweep.case.limits.head_loss
+    limit = _limit(sweep)
     _pair(main, across, sweep.grid("head_loss"), sweep.grid("head_loss_upper"), limit, 7)
     main.set_ylabel("head loss, m of the slurry")
     _mark_failing(main, sweep)
@@ -77,10 +78,27 @@ def _figure(sweep: Sweep) -> Figure:
     return figure
 
 
-def _pair(axes: Axes, across: Array, central: Array, upper: Array | None, limit: float | None, most: int) -> None:
+@dataclass(frozen=True)
+class _Limit:
+    """A limit of the head loss; ``judged`` is the central figure held against it, where that is of another flow."""
+
+    value: float
+    judged: Array | None
+
+
+def _limit(sweep: Sweep) -> _Limit | None:
+    limit = sweep.case.limits.head_loss
+    if limit is None:
+        return None
+    found = [next((one.value for one in point.checks if one.name == "head_loss"), None) for point in sweep.points]
+    return _Limit(limit, np.array(found, dtype=np.float64) if sweep.has_other_flows else None)
+
+
+def _pair(axes: Axes, across: Array, central: Array, upper: Array | None, limit: _Limit | None, most: int) -> None:
     """Draw a figure, by both methods where they differ, and its limit."""
-    known = np.concatenate([one[np.isfinite(one)] for one in (central, upper) if one is not None])
-    high = max([*known.tolist(), limit or 0.0], default=1.0)
+    judged = None if limit is None else limit.judged
+    known = np.concatenate([one[np.isfinite(one)] for one in (central, upper, judged) if one is not None])
+    high = max([*known.tolist(), limit.value if limit else 0.0], default=1.0)
     set_ends(axes.yaxis, round_ends(min([0.0, *known.tolist()]), high or 1.0, most))
     axes.set_xlim(float(across[0]), float(across[-1]))
     beside = Beside(axes)
@@ -91,20 +109,22 @@ def _pair(axes: Axes, across: Array, central: Array, upper: Array | None, limit:
     if apart and upper is not None:
         axes.plot(across, upper, color=INK, linewidth=1.2, dashes=(8, 2.5))
         beside.add(float(across[-1]), float(upper[-1]), "upper", SMALL)
+    if judged is not None:
+        axes.plot(across, judged, color=GREY, linewidth=1.0, dashes=(3, 1.5))
+        beside.add(float(across[-1]), float(judged[-1]), f"central,\n{AT_MAXIMUM}", SMALL)
     if limit is not None:
-        axes.axhline(limit, color=GREY, linewidth=0.9, dashes=(1, 2))
-        beside.add(float(across[-1]), limit, f"limit {significant(limit, 3)} m", SMALL)
+        axes.axhline(limit.value, color=GREY, linewidth=0.9, dashes=(1, 2))
+        where = "" if judged is None else f",\n{AT_MAXIMUM}"
+        beside.add(float(across[-1]), limit.value, f"limit {significant(limit.value, 3)} m{where}", SMALL)
     beside.draw()
 
 
 def _failing(sweep: Sweep) -> Iterator[tuple[str, float, float]]:
-    """Each check that fails, and first and last value of the run of points where it does, in the unit of the axis."""
-    axis = sweep.axes[0]
-    every = [{check.name for check in point.checks if check.status == "fail"} for point in sweep.points]
-    for name in dict.fromkeys(name for one in every for name in sorted(one)):
-        for start, end in steps(axis.values, [name in one for one in every]):
-            low, high = shown(axis.variable, [start, end])
-            yield name.replace("_", " "), float(low), float(high)
+    """Each check that fails, and the values between which it does, in the unit of the axis."""
+    for run in sweep.runs:
+        if run.check.status == "fail":
+            low, high = shown(sweep.axes[0].variable, [run.low, run.high])
+            yield run.check.name.replace("_", " "), float(low), float(high)
 
 
 def _mark_failing(axes: Axes, sweep: Sweep) -> None:
@@ -115,7 +135,7 @@ def _mark_failing(axes: Axes, sweep: Sweep) -> None:
         names.setdefault((low, high), []).append(text)
     left, right = axes.get_xlim()
     for (low, high), texts in names.items():
-        thin = 0.004 * (right - left)
+        thin = 0.004 * (right - left) if low == high else 0.0
         axes.axvspan(max(low - thin, left), min(high + thin, right), facecolor="none", edgecolor="#b5b5b5",
                      hatch="////", linewidth=0.0, zorder=0)  # fmt: skip
         above.add((low + high) / 2.0, "fails:\n" + shortened(", ".join(texts), 40))

@@ -20,6 +20,7 @@ from pipeflow.study.flows import DESIGN, pipes_of
 from pipeflow.study.ranges.boundaries import Boundary, crossings
 from pipeflow.study.ranges.limits_over import LimitsOver
 from pipeflow.study.ranges.points import Points, points, worst_of
+from pipeflow.study.ranges.runs import Run, runs_over
 from pipeflow.verdict import Check
 
 SOLIDS: Final = "fluid.solids.mass_fraction"
@@ -91,6 +92,8 @@ class Sweep:
     cautions : tuple of str
     boundaries : tuple of Boundary
         Where limits are met and the regime of the governing pipe changes, over two inputs: (first, second), SI.
+    runs : tuple of Run
+        Over one input, the values at which each check fails or calls for thought.
     """
 
     case: Case
@@ -98,6 +101,7 @@ class Sweep:
     points: tuple[SweptPoint, ...]
     cautions: tuple[str, ...]
     boundaries: tuple[Boundary, ...] = ()
+    runs: tuple[Run, ...] = ()
 
     @property
     def shape(self) -> tuple[int, ...]:
@@ -107,6 +111,12 @@ class Sweep:
     def grid(self, name: str) -> Array:
         """A figure of the points, of the shape of the sweep."""
         return np.array([getattr(point, name) for point in self.points], dtype=np.float64).reshape(self.shape)
+
+    @property
+    def has_other_flows(self) -> bool:
+        """Limits are judged at other flows than the design flow."""
+        flow = self.case.flow
+        return not flow.minimum == flow.design == flow.maximum
 
     @property
     def fails(self) -> bool:
@@ -135,7 +145,8 @@ def sweep(case: Case, axes: Sequence[Axis]) -> Sweep:
         _refuse_at_odds(axes, solved.cases)
     every = tuple(_point(solved, index, tuple(float(each[index]) for each in values.values()))
                   for index in range(mesh[0].size))  # fmt: skip
-    return Sweep(case, tuple(axes), every, tuple(_cautions(solved, case, axes)), _boundaries(case, axes))
+    runs = runs_over(case, axes[0], [point.checks for point in every]) if len(axes) == 1 else ()
+    return Sweep(case, tuple(axes), every, tuple(_cautions(solved, case, axes)), _boundaries(case, axes), runs)
 
 
 def _refuse_at_odds(axes: Sequence[Axis], cases: Sequence[Case]) -> None:
