@@ -92,7 +92,7 @@ class DesignFile:
 
     @property
     def not_checked(self) -> tuple[Judged, ...]:
-        """What could not be checked of the line, and of the pump ranked first if it holds; others will not be bought."""
+        """What could not be checked of the line, and of the pump ranked first if it holds; no other is bought."""
         unsure = (one for one in self.judged if one.check.status == "not checked")
         return tuple(one for one in unsure if one.pump in ("", self.first_pump))
 

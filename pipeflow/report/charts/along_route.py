@@ -82,7 +82,7 @@ def _panels(figure: Figure, result: Result, points: Sequence[ProfilePoint]) -> t
     axes.set_ylabel("head, m of the slurry")
     below.set_ylabel("pressure,\nkPa gauge")
     left = max(LEFT, left_room(axes), left_room(below))
-    across, up = figure.get_size_inches()
+    across = figure.get_size_inches()[0]
     for each in (axes, below):
         place = each.get_position()
         each.set_position((left / across, place.y0, (across - left - RIGHT) / across, place.height))

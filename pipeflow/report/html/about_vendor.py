@@ -9,7 +9,7 @@ from pipeflow.report.html.blocks import Block, Subsection, Text, table
 from pipeflow.report.rows import number
 from pipeflow.report.text import PARAMETER_UNITS
 from pipeflow.rheology import Rheology
-from pipeflow.study.pumping.vendor import HIGHEST_HEAD, VendorDuty
+from pipeflow.study.pumping.vendor import HIGHEST_HEAD, HIGHEST_POWER, VendorDuty
 from pipeflow.units import format_value, significant
 
 UPPER = (
@@ -29,7 +29,7 @@ def vendor_blocks(duties: Sequence[VendorDuty]) -> Iterator[Block]:
     yield Subsection("For the pump's vendor")
     governing = governing_text(duties)
     if governing:
-        yield Text(f"Governing duty, upper figure: {governing}.", "strong")
+        yield Text(f"Governing duty, upper figure: {governing}{_another_power(duties)}.", "strong")
     yield Text(UPPER)
     yield from table("Duties for the pump's vendor", DUTY_COLUMNS, [_duty_row(one) for one in duties], (0, 1, 7))
     yield Text("Heads are metres of what flows; NPSH available is at the lowest level of the source, a dash where the "
@@ -46,6 +46,15 @@ def governing_text(duties: Sequence[VendorDuty]) -> str:
     flow = format_value(highest.flow, "volume flow")
     figures = f"{number(highest.head)} m, {number(highest.pressure, 'kPa')} kPa at {flow}"
     return f"{figures} ({highest.condition}, {highest.at} flow)"
+
+
+def _another_power(duties: Sequence[VendorDuty]) -> str:
+    """``; the most power, 25.82 kW, is asked for in thick at maximum flow``: where that is another duty."""
+    most = next((one for one in duties if HIGHEST_POWER in one.governs and HIGHEST_HEAD not in one.governs), None)
+    if most is None:
+        return ""
+    power = format_value(most.power or 0.0, "kW")
+    return f"; the most hydraulic power, {power}, is asked for in {most.condition} at {most.at} flow"
 
 
 def _duty_row(duty: VendorDuty) -> tuple[str, ...]:

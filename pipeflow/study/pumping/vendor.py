@@ -1,4 +1,4 @@
-"""What the pump's vendor is to be told: the duty of case and scenarios at design and maximum flow, and which governs."""
+"""What the pump's vendor is to be told: duties of case and scenarios at design and maximum flow; which governs."""
 
 from __future__ import annotations
 
