@@ -174,7 +174,8 @@ NUMBER: Final = r"[+-]?(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?"
 """A number as case files and tables write it."""
 
 _QUANTITY: Final = re.compile(rf"({NUMBER})[ ]*(.*)", re.DOTALL)
-_RANGE: Final = re.compile(rf"({NUMBER})[ ]*(?<!\.)\.\.(?!\.)[ ]*({NUMBER})[ ]*(.*)", re.DOTALL)
+_RANGE: Final = re.compile(rf"({NUMBER})[ ]*(.*?)[ ]*(?<!\.)\.\.(?!\.)[ ]*({NUMBER})[ ]*(.*)", re.DOTALL)
+"""Of two dots: three could hold a decimal point of either number."""
 _DECIMAL_COMMA: Final = re.compile(r"[+-]?(?:0*,[0-9]+|[0-9]+,(?![0-9]{3}(?![0-9]))[0-9]+)(?![0-9.,])")
 """Digits and a comma that cannot be a thousands mark."""
 _TYPOGRAPHY: Final = str.maketrans("³²·⋅*μ⁻¹", "32...µ-1")
@@ -219,23 +220,40 @@ def parse_with_dimension(text: str, *dimensions: str) -> tuple[float, str]:
 
 
 def parse_range(text: str, dimension: str) -> tuple[float, float]:
-    """Read a range such as ``5 .. 400 1/s``: its lower and upper end in SI units, lower < upper.
+    """Read a range such as ``5 .. 400 1/s`` or ``8 Pa .. 0.1 kPa``: lower and upper end in SI units, lower < upper.
 
     Raises
     ------
     UnitError
         The text is no such range.
     """
+    ends = split_range(text, f"5 .. 400 {next(iter(UNITS[dimension]))}")
+    low, high = (_in_si(text, number, _find(text, unit, (dimension,))) for number, unit in ends)
+    if not low < high:
+        raise UnitError(f"found {echo(text)}; the lower end comes first and differs from the upper")
+    return low, high
+
+
+def split_range(text: str, example: str) -> tuple[tuple[str, str], tuple[str, str]]:
+    """Take a range apart: number and unit of its lower and of its upper end.
+
+    A unit that stands once is that of both; it is empty where none stands.
+
+    Raises
+    ------
+    UnitError
+        The text is no range; the message shows the example.
+
+    Examples
+    --------
+    >>> split_range("8 .. 14 Pa", "5 .. 20 Pa")
+    (('8', 'Pa'), ('14', 'Pa'))
+    """
     match = _RANGE.fullmatch(text.strip(" "))
     if match is None:
-        example = f"5 .. 400 {next(iter(UNITS[dimension]))}"
         raise UnitError(f"found {echo(text)}; a range is needed, as '{example}'")
-    low, high, written = match.groups()
-    unit = _find(text, written, (dimension,))
-    ends = _in_si(text, low, unit), _in_si(text, high, unit)
-    if not ends[0] < ends[1]:
-        raise UnitError(f"found {echo(text)}; the lower end comes first and differs from the upper")
-    return ends
+    low, first, high, last = match.groups()
+    return (low, first or last), (high, last or first)
 
 
 def parse_number(text: str) -> float:

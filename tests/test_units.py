@@ -184,7 +184,10 @@ def test_of_two_dimensions_the_one_found_is_told() -> None:
     assert units.parse_with_dimension("36 m3/h", "volume flow", "mass flow")[1] == "volume flow"
 
 
-@pytest.mark.parametrize("text", ["5 .. 400 1/s", "5..400 1/s", "5. .. 4e2 1/s", "5 ..400 s^-1"])
+RANGES = ["5 .. 400 1/s", "5..400 1/s", "5. .. 4e2 1/s", "5 ..400 s^-1", "5 1/s .. 400 s^-1", "5s^-1..400 1/s"]
+
+
+@pytest.mark.parametrize("text", RANGES)
 def test_ranges(text: str) -> None:
     assert units.parse_range(text, "shear rate") == (5.0, 400.0)
 

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Sequence
 from dataclasses import dataclass
 
@@ -12,10 +11,8 @@ from pipeflow.arrays import Array
 from pipeflow.case.model import Case
 from pipeflow.case.variables import Variable, VariableError, variable
 from pipeflow.errors import InputError, Problem
-from pipeflow.units import NUMBER, accepted, echo
+from pipeflow.units import UnitError, accepted, echo, split_range
 
-_RANGE = re.compile(rf"({NUMBER})[ ]*(.*?)[ ]*(?<!\.)\.\.(?!\.)[ ]*({NUMBER})[ ]*(.*)", re.DOTALL)
-"""Of two dots: three could hold a decimal point of either number."""
 FORM = "PATH=FROM..TO"
 
 
@@ -101,12 +98,12 @@ def refuse_one_quantity_twice(axes: Sequence[Axis], command: str) -> None:
 
 
 def _ends(known: Variable, text: str) -> tuple[float, float]:
-    match = _RANGE.fullmatch(text)
-    if match is None:
-        example = f"5 .. 20 {accepted(known.dimension).partition(',')[0]}" if known.dimension else "0.45 .. 0.58"
-        raise VariableError(f"found {echo(text)}; a range is needed, as '{example}'")
-    low, unit, high, last = match.groups()
-    found = known.read(f"{low} {unit or last}".strip()), known.read(f"{high} {last or unit}".strip())
-    if not found[0] < found[1]:
+    example = f"5 .. 20 {accepted(known.dimension).partition(',')[0]}" if known.dimension else "0.45 .. 0.58"
+    try:
+        ends = split_range(text, example)
+    except UnitError as error:
+        raise VariableError(str(error)) from None
+    low, high = (known.read(f"{number} {unit}".strip()) for number, unit in ends)
+    if not low < high:
         raise VariableError(f"found {echo(text)}; the lower end comes first and differs from the upper")
-    return found
+    return low, high

@@ -193,7 +193,7 @@ class Writer:
     def _range(self, reader: RangeReader) -> Schema:
         number = units.NUMBER.replace("[+-]?", r"\+?", 1) if reader.floor == 0 else units.NUMBER
         spelt = "|".join(_spelt(text) for text in units.UNITS[reader.dimension])
-        schema = {"type": "string", "pattern": rf"^ *{number} *\.\. *{number} *(?:{spelt}) *$"}
+        schema = {"type": "string", "pattern": rf"^ *{number} *(?:(?:{spelt}) *)?\.\. *{number} *(?:{spelt}) *$"}
         title = f"lower and upper {reader.dimension}, as {reader.example}"
         return self._named(f"{reader.dimension}s".replace(" ", "_"), {**schema, "title": title})
 
@@ -204,7 +204,7 @@ class Writer:
 
     def _uncertainty(self) -> Schema:
         number = units.NUMBER
-        forms = rf"(?:(?:±|\+/?-|normal) *{number}.*|uniform *{number} *\.\. *{number}.*)"
+        forms = rf"(?:(?:±|\+/?-|normal) *{number}.*|uniform *{number}.*\.\. *{number}.*)"
         told = "'± 10 %' or '± 0.5 Pa', 'uniform 8 .. 14 Pa', 'normal 5 %' (a standard deviation)"
         value = {"type": "string", "title": told, "pattern": rf"^\s*{forms}$"}
         places = r"^(fluid|flow|source|destination|route|restart)\b"

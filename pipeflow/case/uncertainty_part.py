@@ -23,7 +23,6 @@ _FRACTIONS: Final = ("fluid.solids.mass_fraction", "fluid.solids.volume_fraction
 
 _WRITTEN = re.compile(r"(±|\+/?-|normal(?![a-z])|uniform(?![a-z])) *(.*)")
 _SHARE = re.compile(rf"({units.NUMBER}) *%")
-_NUMBERS = re.compile(rf"({units.NUMBER}) *(?<!\.)\.\.(?!\.) *({units.NUMBER})")
 
 
 class _TextError(Exception):
@@ -176,11 +175,9 @@ def _range(variable: Variable, size: str, text: str) -> tuple[float, float]:
 
 
 def _numbers(size: str) -> tuple[float, float]:
-    match = _NUMBERS.fullmatch(size)
-    if match is None:
-        raise units.UnitError(f"found {units.echo(size)}; a range of bare numbers is needed, as '0.5 .. 0.6'")
-    low, high = float(match[1]), float(match[2])
-    if not low < high < math.inf:
+    ends = units.split_range(size, "0.5 .. 0.6")
+    low, high = (units.parse_number(f"{number} {unit}".strip()) for number, unit in ends)
+    if not low < high:
         raise units.UnitError(f"found {units.echo(size)}; the lower end comes first and differs from the upper")
     return low, high
 
