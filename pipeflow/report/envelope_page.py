@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 
 from pipeflow.report.sweep_text import boundary_name, energy_unit, figure_and_unit, name_of, title_of, told, unit_of
 from pipeflow.report.text import heading, paragraph, table
@@ -68,9 +68,11 @@ def _value(envelope: Envelope, value: float) -> str:
 def _said(row: WindowAt) -> Iterator[str]:
     """The window of one value in words, with what the central figure alone adds."""
     if not row.upper and not row.central:
-        yield "none"
+        yield f"none, {closed(row.closed_by['central'])}"
         return
     yield from (_interval(one) for one in row.upper)
+    if not row.upper:
+        yield f"none by the upper figure, {closed(row.closed_by['upper'])}"
     if row.central != row.upper:
         alone = " and ".join(_ends(one) for one in row.central) or "none"
         yield f"on the central figure alone {alone}"
@@ -88,6 +90,11 @@ def words(name: str) -> str:
     return "what the pumps give" if name == PUMPS else name.replace("_", " ")
 
 
+def closed(names: Sequence[str]) -> str:
+    """Say which limits leave no flow."""
+    return f"closed by {' and '.join(words(name) for name in names)}"
+
+
 def _ends(one: Interval) -> str:
     low, high = (significant(to_display(flow, "m3/h")) for flow in (one.low, one.high))
     return f"{low} to {high} m3/h"
@@ -95,9 +102,19 @@ def _ends(one: Interval) -> str:
 
 def _boundaries(envelope: Envelope) -> Iterator[str]:
     for one in envelope.boundaries:
-        flows = [x for line in one.lines for x, _ in line]
-        low, high = (significant(to_display(flow, "m3/h")) for flow in (min(flows), max(flows)))
-        yield paragraph(f"{_named(one, envelope)}: {low} to {high} m3/h over the map", mark="- ")
+        yield paragraph(f"{_named(one, envelope)}: {_place(one, envelope)}", mark="- ")
+
+
+def _place(one: Boundary, envelope: Envelope) -> str:
+    """Where a boundary runs: by flow, or by the other input where it runs across the map."""
+    flows, values = zip(*(point for line in one.lines for point in line), strict=True)
+    if one.level is not None:
+        return f"{'from' if one.side == 'above' else 'up to'} {_value(envelope, one.level)}"
+    if one.side:
+        low, high = (_value(envelope, end) for end in (min(values), max(values)))
+        return f"at {low} to {high} over the map"
+    low, high = (significant(to_display(flow, "m3/h")) for flow in (min(flows), max(flows)))
+    return f"{f'at {low}' if low == high else f'{low} to {high}'} m3/h over the map"
 
 
 def _named(one: Boundary, envelope: Envelope) -> str:

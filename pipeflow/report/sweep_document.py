@@ -56,6 +56,7 @@ def envelope_document(envelope: Envelope) -> dict[str, Any]:
                 "value": row.value,
                 "upper": [_interval(one) for one in row.upper],
                 "central": [_interval(one) for one in row.central],
+                "closed_by": {figure: list(names) for figure, names in row.closed_by.items()},
             }
             for row in envelope.rows
         ],

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import replace
 from pathlib import Path
 
@@ -13,6 +14,7 @@ from pipeflow.case.axes import Axis
 from pipeflow.case.loading import load_case
 from pipeflow.case.variables import variable
 from pipeflow.errors import InputError
+from pipeflow.report.envelope_page import envelope_page
 from pipeflow.study.pumping.on_line import pumps_on_line
 from pipeflow.study.ranges import envelope as study
 from pipeflow.study.ranges.envelope import envelope
@@ -150,6 +152,37 @@ def test_the_edges_of_the_transition_are_those_of_the_governing_pipe(found):
             for flow, value in boundary.lines[0]:
                 (pipe,) = (e for e in solve(found.case_at(flow, value)).elements if e.name == found.governing_pipe)
                 assert pipe.velocity == pytest.approx(getattr(pipe, key), rel=1e-5)
+
+
+@every_line
+def test_what_closes_a_row_fails_at_every_flow_of_it(found):
+    random = np.random.default_rng(5)
+    for row in found.rows:
+        assert bool(row.closed_by["central"]) is not bool(row.central)
+        assert bool(row.closed_by["upper"]) is not bool(row.upper)
+        for flow in random.uniform(found.flow.values[0], found.flow.values[-1], 3) if not row.central else ():
+            failing = {check.name for check in solve(found.case_at(flow, row.value)).checks if check.status == "fail"}
+            assert failing & {*row.closed_by["central"]}, (row.value, flow)
+
+
+def test_limits_that_leave_no_flow_between_them_are_both_named():
+    found = envelope(line(BINGHAM, more="limits: {head_loss: 5 m, velocity: {minimum: 1.4 m/s}}\n"))
+    assert set(found.rows[0].closed_by["central"]) == {"head_loss", "velocity_minimum"}
+    assert "none, closed by head loss and velocity minimum" in " ".join(envelope_page(found).split())
+
+
+def test_a_limit_that_the_flow_does_not_touch_is_told_by_the_other_input():
+    """230 kPa = 1.3 * 2 tau 4 L/D + rho g 5 m."""
+    found = envelope_of("bingham")
+    by_name = {one.name: one for one in found.boundaries}
+    stress = (230e3 - 1300.0 * 9.80665 * 5.0) / (1.3 * 2.0 * 4.0 * 400.0 / 0.15)
+    assert by_name["restart_pressure"].level == pytest.approx(stress, rel=1e-6)
+    assert by_name["restart_pressure"].side == "above"
+    assert by_name["head_loss"].level is None
+    page = " ".join(envelope_page(found).split())
+    assert "restart pressure, at most 230.0 kPa: from yield stress 5.995 Pa" in page
+    assert re.search(r"velocity maximum, at most 2\.200 m/s: at 140\.0 m3/h over the map", page)
+    assert "at yield stress 12.00 Pa: none, closed by restart pressure" in page
 
 
 def test_deposition_bounds_the_turbulent_side_only():

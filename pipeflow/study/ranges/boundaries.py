@@ -19,6 +19,9 @@ Key = tuple[str, Figure]
 """Name of what is asked, and the figure it is judged on: the limit on the upper one, the window's end on either."""
 
 FIGURES: Final[tuple[Figure, ...]] = ("central", "upper")
+Side = Literal["", "above", "below"]
+LEVEL: Final = 1e-6
+"""Share within which the y of a level line are alike."""
 JUMP: Final = 1.0
 """Stands for how far beyond a limit a point is where its figure does not say."""
 
@@ -43,11 +46,20 @@ class Boundary:
         where the limit fails.
     lines : tuple of lines
         Points (x, y), SI, joined in order; nan where a root was not found.
+    side : str
+        Where the figure is beyond its limit, if every x is alike: ``above`` or ``below`` the line in y; else empty.
     """
 
     name: str
     figure: Figure
     lines: tuple[tuple[tuple[float, float], ...], ...]
+    side: Side = ""
+
+    @property
+    def level(self) -> float | None:
+        """The y of a line that is level; None for another."""
+        every = [y for line in self.lines for _, y in line]
+        return every[0] if self.side and np.ptp(every) <= LEVEL * abs(every[0]) else None
 
 
 @dataclass(frozen=True)
@@ -85,8 +97,15 @@ class Crossings:
     def boundaries(self) -> tuple[Boundary, ...]:
         """Every boundary; an upper one that is the central one over again is left out."""
         drawn = (key for key in self.excess if not _is_alike(self.excess, key))
-        found = (Boundary(name, figure, self._lines((name, figure))) for name, figure in drawn)
+        found = (Boundary(*key, self._lines(key), self._side(key)) for key in drawn)
         return tuple(one for one in found if one.lines)
+
+    def _side(self, key: Key) -> Side:
+        beyond = self.excess[key] > 0
+        rows = beyond[:, 0]
+        if np.any(beyond != rows[:, None]) or np.count_nonzero(rows[1:] != rows[:-1]) != 1:
+            return ""
+        return "above" if rows[-1] else "below"
 
     def _lines(self, key: Key) -> tuple[tuple[tuple[float, float], ...], ...]:
         every = chains(self.excess[key] > 0)

@@ -34,11 +34,15 @@ Standing = Literal["inside", "central", "outside"]
 
 @dataclass(frozen=True)
 class WindowAt:
-    """The flows of the window at one value of the other input: by the upper figure, and by the central one alone."""
+    """The flows of the window at one value of the other input: by the upper figure, and by the central one alone.
+
+    ``closed_by`` names the limits that leave no flow by a figure.
+    """
 
     value: float
     upper: tuple[Interval, ...]
     central: tuple[Interval, ...]
+    closed_by: dict[Figure, tuple[str, ...]]
 
 
 @dataclass(frozen=True)
@@ -168,7 +172,12 @@ def envelope(case: Case, flow: Axis | None = None, up: Axis | None = None) -> En
         window=_standings(central, upper),
         energy=tuple(map(tuple, _energy(limits, across, up.array).tolist())),
         rows=tuple(
-            WindowAt(float(value), tuple(upper.intervals(j)), tuple(central.intervals(j)))
+            WindowAt(
+                value=float(value),
+                upper=tuple(upper.intervals(j)),
+                central=tuple(central.intervals(j)),
+                closed_by={window.figure: window.closed_by(j) for window in (upper, central)},
+            )
             for j, value in enumerate(found.y)
         ),
         areas={"upper": upper.areas(), "central": central.areas()},

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -63,6 +63,17 @@ class Window:
         if low is not None:
             yield Interval(low[0], float(flow[-1]), low[1], "")
 
+    def closed_by(self, row: int) -> tuple[str, ...]:
+        """What leaves no flow of a row: limits that fail all along it, or else the few that do so together.
+
+        Empty where there is some flow.
+        """
+        if not self.beyond[row].all():
+            return ()
+        over = {name: self.found.excess[name, figure][row] > 0 for name, figure in self.keys}
+        alone = tuple(name for name, is_over in over.items() if is_over.all())
+        return alone or tuple(_covering(over))
+
     def areas(self) -> tuple[Ring, ...]:
         """The lines around what is inside."""
         return tuple(tuple(self._place(edge) for edge in ring) for ring in rings(~self.beyond))
@@ -89,3 +100,12 @@ class Window:
             return float(x[np.clip(max(i, 0), 0, x.size - 1)]), float(y[np.clip(max(j, 0), 0, y.size - 1)])
         share = self._end(edge)[0]
         return float(x[i] + share * (x[last[1]] - x[i])), float(y[j] + share * (y[last[0]] - y[j]))
+
+
+def _covering(over: Mapping[str, NDArray[np.bool_]]) -> Iterator[str]:
+    """Names that between them hold everywhere, the one that holds at most places first."""
+    left = np.ones_like(next(iter(over.values())))
+    while left.any():
+        name = max(over, key=lambda name: np.count_nonzero(over[name] & left))
+        yield name
+        left = left & ~over[name]
