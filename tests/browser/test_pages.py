@@ -36,6 +36,17 @@ OUTSIDE = """
   && !one.closest('.scroll > *')).map(one => one.tagName + ' ' + one.textContent.slice(0, 40))
 """
 
+CUT = """
+[...document.querySelectorAll('svg')].flatMap(svg => {
+  const edge = svg.getBoundingClientRect();
+  return [...svg.querySelectorAll('text')].filter(one => {
+    const box = one.getBoundingClientRect();
+    return box.left < edge.left - 1 || box.right > edge.right + 1 || box.top < edge.top - 1
+      || box.bottom > edge.bottom + 1;
+  }).map(one => one.textContent.trim());
+})
+"""
+
 
 def plain(text: str) -> str:
     """Letters without the spaces, which are guessed from a printed page; letters joined in print are taken apart."""
@@ -87,6 +98,29 @@ def test_charts_are_drawn(width, browser, pages):
         assert len(sizes) >= 3
         assert all(500 <= size <= 700 for size in sizes)
         assert page.value("[...document.querySelectorAll('svg text')].every(one => one.getBBox().width > 0)")
+    finally:
+        page.close()
+
+
+@pytest.mark.parametrize("name", NAMES_OF_CASES)
+def test_no_name_on_a_chart_is_cut_at_its_edge(name, browser, pages):
+    page = Page(browser, (pages / f"{name}.html").as_uri(), 1280)
+    try:
+        assert page.value(CUT) == []
+    finally:
+        page.close()
+
+
+def test_what_scrolls_on_a_narrow_screen_says_so(browser, pages):
+    page = Page(browser, (pages / "thickener-underflow.html").as_uri(), 390)
+    try:
+        hint = "getComputedStyle(document.querySelector('figcaption'), '::before').content"
+        assert "Scroll the chart sideways" in page.value(hint)
+        assert "gradient" in page.value("getComputedStyle(document.querySelector('.scroll')).backgroundImage")
+        page.ask("Emulation.setDeviceMetricsOverride", width=1280, height=900, deviceScaleFactor=1, mobile=False)
+        assert page.value(hint) == "none"
+        page.ask("Emulation.setEmulatedMedia", media="print")
+        assert page.value("getComputedStyle(document.querySelector('.scroll')).backgroundImage") == "none"
     finally:
         page.close()
 

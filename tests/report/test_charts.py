@@ -19,8 +19,8 @@ from pipeflow.case.model import FlowRange
 from pipeflow.line.elements import Fluid
 from pipeflow.report.charts import flow_curve_chart_svg, route_chart_svg, system_chart_svg, terminal_chart
 from pipeflow.report.charts.axis import decade_ends, round_ends
-from pipeflow.report.charts.canvas import shortened
-from pipeflow.report.charts.labels import spread
+from pipeflow.report.charts.canvas import canvas, drawing, panel, shortened
+from pipeflow.report.charts.labels import left_room, spread
 from pipeflow.report.text import columns_of
 from pipeflow.rheology import Newtonian, PowerLaw
 from pipeflow.study import solve
@@ -189,6 +189,47 @@ def test_the_terminal_chart_has_80_columns_of_plain_text(thickener):
     assert not any(line != line.rstrip() for line in lines)
     assert "candidate A: central 165 m3/h" in chart
     assert "@" in chart
+
+
+def test_every_letter_of_the_key_stands_on_the_terminal_chart(thickener):
+    """Conditions that are alike, and so on one line, have their letters beside each other."""
+    own = thickener.curve.own
+    alike = [replace(own, name=name, kind="scenario") for name in ("worn pipe", "another", "a third")]
+    chart = terminal_chart(replace(thickener.curve, conditions=(own, *alike)))
+    drawn, key = chart.split("+---")[0], chart.split("\n\n")[-1]
+    letters = re.findall(r"^  ([a-z0-9])  ", key, re.MULTILINE)
+    assert letters == ["a", "b", "c", "d", "1", "2"]
+    plot = drawn.replace("head, m", "").split("\n")
+    on_lines = "".join(line.partition("|")[2] for line in plot)
+    assert all(letter in on_lines for letter in letters)
+    assert "@" in on_lines
+
+
+def test_a_duty_of_the_same_flow_but_another_head_is_drawn_apart(thickener):
+    """As of a variable speed, which gives the design flow on either curve."""
+    own = thickener.curve.own
+    first = own.pumps[0]
+    pump = replace(first, duty_upper=replace(first.duty, head=1.05 * first.duty.head))
+    result = replace(thickener.curve, conditions=(replace(own, pumps=(pump,)),))
+    found = " ".join(texts(system_chart_svg(result)))
+    assert "candidate A central" in found
+    assert f"{1.05 * first.duty.head:.1f} m" in found
+    assert "candidate A on the upper curve" in read(system_chart_svg(result)).every("desc")[0].text
+
+
+@pytest.mark.parametrize("ticks", [[0.0, 500.0], [-100.0, 12000.0], [-0.05, 0.05]])
+def test_a_vertical_axis_has_room_for_ticks_and_name(ticks):
+    from matplotlib.backends.backend_agg import FigureCanvasAgg
+
+    with drawing("room"):
+        figure = canvas(2.0)
+        axes = panel(figure, 2.0, 0.5, 2.0, 1.0)
+        axes.set_ylim(ticks[0], ticks[-1])
+        axes.set_yticks(ticks)
+        axes.set_ylabel("pressure,\nkPa gauge")
+        renderer = FigureCanvasAgg(figure).get_renderer()
+        taken = (axes.get_window_extent().x0 - axes.yaxis.get_tightbbox(renderer).x0) / figure.dpi
+        assert taken <= left_room(axes) <= taken + 0.15
 
 
 def test_only_the_chart_that_is_drawn_loads_what_draws_it():

@@ -7,6 +7,7 @@ import subprocess
 import sys
 from dataclasses import replace
 from itertools import pairwise
+from pathlib import Path
 
 import pytest
 from hostile import NAMES, spoilt
@@ -15,10 +16,11 @@ from reading import Element, read
 from pipeflow.case.model import Job
 from pipeflow.case.source_files import SourceFile, source_files
 from pipeflow.report.html import index_page, report_page
-from pipeflow.report.html.index import IndexRow
+from pipeflow.report.html.index import IndexRow, index_row
 from pipeflow.report.html.page import LONGEST_LISTING
 from pipeflow.report.html.rendering import css_string
-from pipeflow.study.design_file import design_file
+from pipeflow.report.judged import judged_texts
+from pipeflow.study.design_file import Judged, design_file
 from pipeflow.study.result import SAFETY_NOTICE
 from pipeflow.verdict import Check
 
@@ -132,11 +134,87 @@ def test_what_is_not_checked_makes_the_page_preliminary(page, filtrate):
     assert "PRELIMINARY" not in report_page(done, source_files(filtrate.case))
 
 
+def with_pump_check(found, status, *, holds, pump="candidate A"):
+    """The case with one check of one pump in another state, and only the pumps of ``holds`` holding."""
+    own = found.curve.own
+    odd = Check("motor_power", status, None, None, "W", "by hand", needs=("pumps.motor",))
+    pumps = tuple(replace(one, checks=(*one.checks, odd) if one.name == pump else one.checks) for one in own.pumps)
+    ranking = sorted(
+        (replace(one, holds=one.name in holds) for one in found.curve.ranking), key=lambda one: not one.holds
+    )
+    curve = replace(found.curve, conditions=(replace(own, pumps=pumps), *found.curve.conditions[1:]),
+                    ranking=tuple(ranking))  # fmt: skip
+    return replace(found, curve=curve)
+
+
+def not_checked(found):
+    return judged_texts(found.not_checked, found.conditions)
+
+
+def test_a_pump_that_is_out_does_not_keep_the_page_preliminary(thickener):
+    own = not_checked(thickener)
+    assert "motor power of candidate A (the case)" not in own
+    in_use = with_pump_check(thickener, "not checked", holds=("candidate A",))
+    assert not_checked(in_use) == (*own, "motor power of candidate A (the case)")
+    for holds in (("candidate B",), ()):
+        assert not_checked(with_pump_check(thickener, "not checked", holds=holds)) == own
+    page = report_page(in_use, source_files(thickener.case))
+    assert "Not checked: pipe wall, motor power of candidate A (the case)." in page
+
+
+def test_a_pump_fails_the_case_only_where_none_holds(thickener):
+    held = with_pump_check(thickener, "fail", pump="candidate B", holds=("candidate A",))
+    assert held.failing == ()
+    assert index_row(held, Path("a.html")).pump == "candidate A"
+    none = with_pump_check(thickener, "fail", holds=())
+    assert "motor power of candidate A (the case)" in judged_texts(none.failing, none.conditions)
+    assert none.fails
+    row = index_row(none, Path("a.html"))
+    assert (row.pump, row.worst) == ("none holds", "FAIL")
+
+
+def test_conditions_are_named_where_a_check_is_not_theirs_all():
+    check = Check("head_loss", "fail", 2.0, 1.0, "m", "")
+    everywhere = [Judged(name, check) for name in ("the case", "thick")]
+    assert judged_texts(everywhere, ("the case", "thick")) == ("head loss",)
+    assert judged_texts(everywhere[1:], ("the case", "thick")) == ("head loss (thick)",)
+    assert judged_texts([Judged("thick", check, "candidate B")], ("the case", "thick")) == (
+        "head loss of candidate B (thick)",
+    )
+
+
+def test_the_index_tells_revision_and_what_is_still_to_be_checked(thickener, filtrate):
+    row = index_row(thickener, Path("a.html"))
+    assert (row.revision, row.pump, row.status) == ("A", "candidate A", "preliminary")
+    checked = tuple(replace(check, status="ok") for check in filtrate.result.checks)
+    done = index_row(replace(filtrate, result=replace(filtrate.result, checks=checked)), Path("b.html"))
+    assert (done.pump, done.status) == ("–", "every check made")
+    tree = read(index_page([row, done]))
+    heads = [one.text for one in tree.every("thead")[0].every("th")]
+    assert heads[:3] == ["case", "title", "revision"]
+    assert [len(one.children) for one in tree.every("tbody")[0].every("tr")] == [len(heads)] * 2
+
+
+def test_the_chart_promises_only_the_duties_it_draws(thickener):
+    own = thickener.curve.own
+    pumps = tuple(replace(one, duty_upper=one.duty) for one in own.pumps)
+    alike = replace(thickener, curve=replace(thickener.curve, conditions=(replace(own, pumps=pumps),)))
+    first = own.pumps[0]
+    higher = replace(first.duty, head=1.05 * first.duty.head)
+    apart = replace(own, pumps=(replace(first, duty_upper=higher, speed_upper=110.0), *pumps[1:]))
+    moved = replace(thickener, curve=replace(thickener.curve, conditions=(apart,)))
+    both, two = (said(read(report_page(one, source_files(one.case))), "system") for one in (alike, moved))
+    assert "on the central curve and the upper alike" in both
+    assert "candidate A upper" not in both
+    assert "empty ones on the upper, there at the speed that it asks for" in two
+    assert "candidate A upper" in two
+
+
 def test_a_check_that_fails_is_said_at_the_head(filtrate):
     failing = (Check("head_loss", "fail", 20.0, 18.0, "m", "at maximum flow"),)
     done = replace(filtrate, result=replace(filtrate.result, checks=failing))
     tree = read(report_page(done, source_files(filtrate.case)))
-    assert "FAIL: a limit or check does not hold" in tree.every("header")[0].text
+    assert "FAIL: a limit or check does not hold: head loss." in tree.every("header")[0].text
     assert "20.00 m, at most 18.00 m" in said(tree, "checks")
 
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import shutil
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
@@ -10,6 +11,8 @@ from reading import read
 from typer.testing import CliRunner
 
 from pipeflow.cli import app
+from pipeflow.cli.report import MOST_REASONS, _why_it_fails
+from pipeflow.verdict import Check
 
 CASES = Path(__file__).parents[2] / "cases"
 
@@ -53,9 +56,38 @@ def test_a_page_of_ours_is_replaced_with_the_same_bytes(case, tmp_path):
     assert sorted(path.name for path in tmp_path.iterdir()) == ["line.html", "line.yaml"]
 
 
-def test_a_limit_that_fails_leaves_with_1_and_a_page(case, tmp_path):
-    assert run(failing(case), "-o", tmp_path / "line.html").exit_code == 1
-    assert (tmp_path / "line.html").is_file()
+def test_a_limit_that_fails_leaves_with_1_and_a_page_and_says_why(case, tmp_path):
+    page = tmp_path / "line.html"
+    result = run(failing(case), "-o", page)
+    assert result.exit_code == 1
+    assert page.is_file()
+    assert result.stdout == ""
+    assert result.stderr == f"{page}: written; FAIL: head loss\n"
+
+
+def test_each_page_that_fails_has_a_line_of_its_own(case, tmp_path):
+    result = run(failing(case), case, "-o", tmp_path / "pages")
+    assert result.exit_code == 1
+    assert result.stderr.splitlines() == [f"{tmp_path}/pages/failing.html: written; FAIL: head loss"]
+
+
+def test_reasons_beyond_the_first_few_are_counted(filtrate):
+    checks = tuple(Check(f"limit_{number}", "fail", 2.0, 1.0, "m", "") for number in range(MOST_REASONS + 2))
+    found = replace(filtrate, result=replace(filtrate.result, checks=checks))
+    line = _why_it_fails(found, Path("line.html"))
+    assert line.endswith("limit 4, limit 5, 2 more")
+
+
+@pytest.mark.parametrize("there", [True, False])
+def test_several_cases_are_told_to_need_a_folder(there, case, tmp_path):
+    page = tmp_path / "line.html"
+    if there:
+        run(case, "-o", page)
+    result = run(case, failing(case), "-o", page)
+    assert result.exit_code == 2
+    assert "several cases need a folder, as pages/" in result.stderr
+    assert page.is_file() is there
+    assert not page.is_dir()
 
 
 def test_several_cases_give_a_page_each_and_an_index(case, tmp_path):
