@@ -14,6 +14,8 @@ DUTIES = ("duty", "duty_upper", "duty_maximum")
 """On the central and the upper system curve, and at maximum flow where the speed may vary."""
 FIGURES = ("flow_m3_s", "head_m", "shaft_power_W", "npsh_available_m", "npsh_required_m")
 SPEEDS = ("speed_rad_s", "speed_upper_rad_s")
+RESTART = "restart"
+"""The condition of which checks alone are compared: its duty is that of an unbroken gel."""
 
 
 @dataclass(frozen=True)
@@ -124,14 +126,16 @@ def _duties(before: Document, after: Document, names: Sequence[str]) -> Iterator
         if (key in old and key in new) or key[0] != "scenario":
             one, other = old.get(key, {}), new.get(key, {})
             held, found = _named(one.get("pumps")), _named(other.get("pumps"))
-            said = str((other or one).get("name"))
-            yield from (_duty(said, name, held.get(name, {}), found.get(name, {})) for name in names)
+            for name in names:
+                old_pump, new_pump = held.get(name, {}), found.get(name, {})
+                figures = () if key[0] == RESTART else tuple(_figures(old_pump, new_pump))
+                checks = tuple(check_changes(old_pump, new_pump))
+                yield DutyComparison(str((other or one).get("name")), name, figures, checks)
 
 
-def _duty(condition: str, pump: str, before: Document, after: Document) -> DutyComparison:
-    figures = [_change(before, after, "", key) for key in SPEEDS]
-    figures += [_change(before.get(duty), after.get(duty), duty, key) for duty, key in product(DUTIES, FIGURES)]
-    return DutyComparison(condition, pump, tuple(figures), tuple(check_changes(before, after)))
+def _figures(before: Document, after: Document) -> Iterator[Change]:
+    yield from (_change(before, after, "", key) for key in SPEEDS)
+    yield from (_change(before.get(duty), after.get(duty), duty, key) for duty, key in product(DUTIES, FIGURES))
 
 
 def _change(before: Any, after: Any, duty: str, key: str) -> Change:
