@@ -147,13 +147,11 @@ _ABSOLUTE_HINTS: Final = dict.fromkeys(("psig", "barg"), "an absolute pressure i
 
 
 def _with_small_litre(units: dict[str, float]) -> dict[str, float]:
-    small = {text.replace("L", "l"): factor for text, factor in units.items() if "L" in text}
-    return {**units, **small}
+    return {**units, **{text.replace("L", "l"): factor for text, factor in units.items() if "L" in text}}
 
 
 def _absolute(pressure: dict[str, float]) -> dict[str, float]:
-    marked = {"kPa(a)": 1e3, "bara": 1e5, "psia": pressure["psi"]}
-    return {**pressure, **marked}
+    return {**pressure, "kPa(a)": 1e3, "bara": 1e5, "psia": pressure["psi"]}
 
 
 def _build() -> dict[str, dict[str, Unit]]:
@@ -175,14 +173,13 @@ NUMBER: Final = r"[+-]?(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?"
 
 _QUANTITY: Final = re.compile(rf"({NUMBER})[ ]*(.*)", re.DOTALL)
 _RANGE: Final = re.compile(rf"({NUMBER})[ ]*(.*?)[ ]*(?<!\.)\.\.(?!\.)[ ]*({NUMBER})[ ]*(.*)", re.DOTALL)
-"""Of two dots: three could hold a decimal point of either number."""
 _DECIMAL_COMMA: Final = re.compile(r"[+-]?(?:0*,[0-9]+|[0-9]+,(?![0-9]{3}(?![0-9]))[0-9]+)(?![0-9.,])")
 """Digits and a comma that cannot be a thousands mark."""
 _TYPOGRAPHY: Final = str.maketrans("³²·⋅*μ⁻¹", "32...µ-1")
 
 
 def parse(text: str, *dimensions: str) -> float:
-    """Read a quantity such as ``140 m3/h``.
+    """Read a quantity such as ``140 m3/h``, and give its value in SI units.
 
     Parameters
     ----------
@@ -190,11 +187,6 @@ def parse(text: str, *dimensions: str) -> float:
         A number and its unit.
     *dimensions : str
         The dimensions that fit, keys of :data:`UNITS`.
-
-    Returns
-    -------
-    float
-        The value in SI units.
 
     Raises
     ------
@@ -235,19 +227,12 @@ def parse_range(text: str, dimension: str) -> tuple[float, float]:
 
 
 def split_range(text: str, example: str) -> tuple[tuple[str, str], tuple[str, str]]:
-    """Take a range apart: number and unit of its lower and of its upper end.
-
-    A unit that stands once is that of both; it is empty where none stands.
+    """Take a range apart: number and unit of either end; a unit that stands once is that of both.
 
     Raises
     ------
     UnitError
         The text is no range; the message shows the example.
-
-    Examples
-    --------
-    >>> split_range("8 .. 14 Pa", "5 .. 20 Pa")
-    (('8', 'Pa'), ('14', 'Pa'))
     """
     match = _RANGE.fullmatch(text.strip(" "))
     if match is None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 import sys
 from typing import Annotated, Any
 
@@ -34,6 +35,13 @@ def _common(
     ] = False,
 ) -> None:
     """Take the options that stand before a command."""
+
+
+def whole_number(text: str) -> int:
+    """Read the whole number of an option; what it may be is said by the command."""
+    if not re.fullmatch(r"[+-]?[0-9]{1,100}", text):
+        raise typer.BadParameter(f"found {text[:40]!r}; a whole number is needed, in digits alone, as 4096")
+    return int(text)
 
 
 def print_json(document: dict[str, Any]) -> None:

@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING, Annotated
 
 import typer
 
-from pipeflow.cli.common import FAILS, UNUSABLE, app, print_json
+from pipeflow.cli.common import FAILS, UNUSABLE, app, print_json, whole_number
 from pipeflow.errors import PipeflowError
 
 if TYPE_CHECKING:
@@ -22,10 +22,16 @@ def solve(
         bool, typer.Option("--uncertainty", help="How sure the answer is: sampled over the uncertain inputs.")
     ] = False,
     samples: Annotated[
-        int | None, typer.Option(metavar="N", help="Samples, a power of two; 4096 if left out.", show_default=False)
+        int | None,
+        typer.Option(
+            metavar="N", parser=whole_number, help="Samples, a power of two; 4096 if left out.", show_default=False
+        ),
     ] = None,
     seed: Annotated[
-        int | None, typer.Option(metavar="S", help="Another set of samples; 1 if left out.", show_default=False)
+        int | None,
+        typer.Option(
+            metavar="S", parser=whole_number, help="Another set of samples; 1 if left out.", show_default=False
+        ),
     ] = None,
 ) -> None:
     """Pressure drop, head, regime, checks and cautions of each case.

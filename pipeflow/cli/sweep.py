@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Annotated
 
 import typer
 
-from pipeflow.cli.common import FAILS, app, print_json
+from pipeflow.cli.common import FAILS, app, print_json, whole_number
 from pipeflow.errors import InputError, PipeflowError, Problem
 
 if TYPE_CHECKING:
@@ -28,7 +28,8 @@ def sweep(
         list[str], typer.Argument(metavar="PATH=FROM..TO...", help="One or two inputs, as 'flow=80..160 m3/h'.")
     ],
     points: Annotated[
-        int | None, typer.Option(metavar="N", help="Points along each input; 21 for one input, 13 for two.")
+        int | None,
+        typer.Option(metavar="N", parser=whole_number, help="Points along each input; 21 for one input, 13 for two."),
     ] = None,
     as_json: Annotated[bool, typer.Option("--json", help="Print one JSON document, SI units.")] = False,
     csv: Annotated[Path | None, typer.Option("--csv", metavar="FILE", help="Write every point as a table.")] = None,

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from typing import Any
 
+from pipeflow.study.sampling.inputs import instead_of_readings
 from pipeflow.study.sampling.uncertainty import Bar, Estimate, Index, Odds, Spread, UncertaintyResult
 
 
@@ -19,9 +20,16 @@ def uncertainty_document(result: UncertaintyResult) -> dict[str, Any]:
         "share_beyond_tested": _finite(result.beyond_tested),
         "share_not_turbulent_at_minimum_flow": _finite(result.not_turbulent),
         "inputs": [
-            {"name": one.name, "known_to": one.said, "from_5_to_95": one.covers, "impossible_share": one.impossible}
+            {
+                "name": one.name,
+                "known_to": one.said,
+                "from_5_to_95": one.covers,
+                "impossible_share": one.impossible,
+                "share_above_the_case": one.above,
+            }
             for one in result.inputs
         ],
+        "listed_instead_of_readings": list(instead_of_readings(result.case)),
         "figures": {keys[name]: _spread(spread, result.median[name]) for name, spread in result.figures.items()},
         "limits": [_odds(odds) for odds in result.limits],
         "not_sampled": list(result.not_sampled),
@@ -67,6 +75,8 @@ def _odds(odds: Odds) -> dict[str, Any]:
         "sense": "at least" if odds.is_least else "at most",
         "basis": odds.basis,
         **_with_error("probability_of_failing", odds.probability),
+        "of_case_upper": _finite(odds.of_case),
+        "median_of_samples": _finite(odds.median),
     }
 
 

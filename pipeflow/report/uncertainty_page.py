@@ -4,10 +4,12 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator
+from textwrap import wrap
 from typing import Final
 
 from pipeflow.report.text import WIDTH, columns_of, heading, paragraph, table
-from pipeflow.study.sampling.inputs import READINGS
+from pipeflow.report.uncertainty_notes import input_notes, known_to, limit_notes, percent, uncertainty_cautions
+from pipeflow.study.sampling.inputs import READINGS, UncertainInput
 from pipeflow.study.sampling.uncertainty import Bar, Estimate, Index, Odds, Spread, UncertaintyResult
 from pipeflow.units import format_si, significant
 
@@ -16,9 +18,8 @@ BAR: Final = 30
 """Columns of the widest bar of a tornado."""
 LEAST_SHARE: Final = 0.005
 """Share of the variance below which a factor is not shown."""
-LEAST_IMPOSSIBLE: Final = 1e-4
 LONGEST: Final = 24
-"""Columns of a tolerance as written that fit the table."""
+"""Columns of a tolerance as written; a longer one takes several lines."""
 
 
 def uncertainty_page(result: UncertaintyResult) -> str:
@@ -32,8 +33,10 @@ def _page(result: UncertaintyResult) -> Iterator[str]:
     drawn = f"{result.samples} samples, drawn twice (seed {result.seed})"
     yield paragraph(f"{drawn}, {result.evaluations} lines solved at design flow.{scenarios}")
     yield ""
-    rows = [(one.name, one.said if len(one.said) <= LONGEST else "", one.covers) for one in result.inputs]
+    rows = [row for one in result.inputs for row in _input_rows(one)]
     yield from table(("uncertain", "known to", "from 5 to 95 %"), rows, words=(0, 1, 2))
+    for note in input_notes(result):
+        yield paragraph(note, mark="  - ")
     yield from heading("Figures at design flow, over the samples")
     yield from table(
         ("", "5 %", "50 %", "95 %", "mean", "standard\ndeviation", "error of\nthese"),
@@ -46,6 +49,12 @@ def _page(result: UncertaintyResult) -> Iterator[str]:
     yield ""
     for caution in uncertainty_cautions(result):
         yield paragraph(caution, mark="  - ")
+
+
+def _input_rows(one: UncertainInput) -> Iterator[tuple[str, str, str]]:
+    first, *more = wrap(known_to(one), LONGEST)
+    yield one.name, first, one.covers
+    yield from (("", line, "") for line in more)
 
 
 def figure_row(spread: Spread) -> tuple[str, ...]:
@@ -66,6 +75,8 @@ def _limits(result: UncertaintyResult) -> Iterator[str]:
         yield from heading("Probability that a limit fails")
         rows = [odds_row(odds, result.samples) for odds in result.limits]
         yield from table(("limit", "", "fails in", "± error", ""), rows, words=(0, 4))
+        for note in limit_notes(result):
+            yield paragraph(note, mark="  - ")
     if result.not_sampled:
         names = ", ".join(name.replace("_", " ") for name in result.not_sampled)
         yield paragraph(f"Not sampled, judged at the stated inputs alone: {names}.")
@@ -79,13 +90,6 @@ def odds_row(odds: Odds, samples: int) -> tuple[str, ...]:
     if share.value == 0:
         return odds.name.replace("_", " "), limit, f"none of {2 * samples}", "", odds.basis
     return odds.name.replace("_", " "), limit, percent(share.value), percent(share.error), odds.basis
-
-
-def percent(share: float) -> str:
-    """Write a share in per cent, to a tenth, or finer where it is small."""
-    if not math.isfinite(share):
-        return "–"
-    return f"{100.0 * share:.1f} %" if share >= 0.001 or share == 0 else f"{100.0 * share:.1g} %"
 
 
 def _sensitivities(spread: Spread) -> Iterator[str]:
@@ -147,28 +151,3 @@ def _drawn(low: float, high: float, middle: float, ends: tuple[float, float]) ->
             cells[cell] = mark
     cells[centre] = "|"
     return "".join(cells)
-
-
-def uncertainty_cautions(result: UncertaintyResult) -> Iterator[str]:
-    """Word what must be known of the figures."""
-    for one in result.inputs:
-        if one.impossible > LEAST_IMPOSSIBLE:
-            yield (
-                f"{one.name}: {percent(one.impossible)} of '{one.said}' is not possible; the possible part stands for "
-                "the whole (truncated)"
-            )
-    if result.lost:
-        share = percent(result.lost / result.evaluations)
-        yield f"no answer in {result.lost} of the lines solved ({share}); no figure holds them"
-    if result.beyond_tested > 0:
-        share = percent(result.beyond_tested)
-        yield f"a law of the rheology is asked beyond the range tested in {share} of the samples"
-    if any(odds.name == "deposition" for odds in result.limits) and result.not_turbulent > 0:
-        yield (
-            f"some pipe is not turbulent at minimum flow in {percent(result.not_turbulent)} of the samples: deposition "
-            "says nothing of it, and solids may settle there"
-        )
-    yield (
-        "only what is listed is uncertain; inputs not listed are taken as exact. A bare tolerance is any value within "
-        "it as likely; the method of friction runs from the central to the upper figure (docs/uncertainty.md)"
-    )

@@ -11,8 +11,14 @@ from typer.testing import CliRunner
 
 from pipeflow.case.loading import load_text
 from pipeflow.cli import app
+from pipeflow.report.html.about_uncertainty import uncertainty_sections
+from pipeflow.report.html.blocks import Items
+from pipeflow.report.uncertainty_document import uncertainty_document
 from pipeflow.report.uncertainty_page import tornado_lines, uncertainty_page
+from pipeflow.study import solve
 from pipeflow.study.sampling.uncertainty import Bar, uncertainty
+
+CASES = Path(__file__).parents[2] / "cases"
 
 CASE = """title: Sure or not
 fluid:
@@ -108,6 +114,8 @@ def test_the_same_command_prints_the_same_twice(case):
             "a power of two is needed, where the points are balanced: 512 or 1024",
         ),
         (("--uncertainty", "--samples", "1" + "0" * 30), "samples; from 64 to"),
+        (("--uncertainty", "--samples", "1e9"), "found '1e9'; a whole number is needed, in digits alone, as 4096"),
+        (("--uncertainty", "--seed", "0.5"), "Invalid value for '--seed': found '0.5'; a whole number is needed"),
         (("--uncertainty", "--seed", "-1"), "--seed  found the seed -1"),
         (("--samples", "64"), "--samples  is of --uncertainty, which is not asked for"),
         (("--seed", "2"), "--seed  is of --uncertainty"),
@@ -156,3 +164,105 @@ def test_bars_stand_on_either_side_of_the_middle():
     assert "+" in lines[1][:middle]
     assert "-" in lines[1][middle:]
     assert lines[2][middle - 1] == " "
+
+
+FITTED = """title: Of readings
+fluid: {{density: 1420 kg/m3, rheology: {{flow_curve: thickener-underflow-52.csv}}}}
+flow: 140 m3/h
+route:
+  - {{pipe: line, diameter: 150 mm, length: 100 m}}
+limits: {{head_loss: 5 m}}
+uncertainty:
+  {line}
+"""
+FROM_LOW = "fluid.rheology.yield_stress: uniform 9 .. 30 Pa"
+
+
+def fitted(line: str):
+    return uncertainty(load_text(FITTED.format(line=line), str(CASES / "case.yaml")), samples=256, workers=1)
+
+
+def words_of(result) -> str:
+    return " ".join(uncertainty_page(result).split())
+
+
+def test_a_long_tolerance_is_shown_whole():
+    page = uncertainty_page(fitted("fluid.rheology.consistency: uniform 0.5 Pa.s^n .. 0.75 Pa.s^n"))
+    rows = page[page.index("known to") : page.index("Figures at design")].splitlines()[1:3]
+    assert "".join(row[28:50].strip() + " " for row in rows) == "uniform 0.5 Pa.s^n .. 0.75 Pa.s^n "
+    assert max(map(len, page.splitlines())) <= 80
+
+
+def test_a_scatter_of_readings_that_is_left_out_is_told():
+    left_out = "the scatter of the fit to the readings is left out: of the rheology fluid.rheology.yield_stress alone"
+    assert left_out in words_of(fitted(FROM_LOW))
+    without = fitted("flow: ± 5 %")
+    assert "left out" not in words_of(without)
+    assert [one.name for one in without.inputs] == ["flow", "readings", "method of friction"]
+
+
+def test_a_case_near_the_end_of_its_range_and_unlike_its_samples_is_told():
+    result = fitted(FROM_LOW)
+    page = words_of(result)
+    assert (
+        f"yield_stress: {(30 - 9.523) / 21:.1%}".replace("%", " %") + " of the samples lie above the 9.523 Pa" in page
+    )
+    (odds,) = result.limits
+    assert not odds.case_fails
+    assert odds.probability.value > 0.5
+    alone = solve(result.case)
+    assert odds.of_case == pytest.approx(float(alone.totals.head_loss_upper), rel=1e-12)
+    said = (
+        f"head loss: the case itself has {odds.of_case:.3f} m and holds (upper figure); the median of the samples is "
+    )
+    assert f"{said}{odds.median:.3f} m, and most of them fail" in page
+    limits = page[page.index("Probability that a limit fails") : page.index("What the spread")]
+    assert said in limits
+    assert "the case itself has" not in words_of(fitted("fluid.rheology.yield_stress: ± 5 %"))
+
+
+def test_a_case_that_fails_while_most_samples_hold_is_told():
+    text = CASE.replace("fluid.solids.mass_fraction: ± 0.08", "flow: uniform 90 .. 142 m3/h").replace("16 m", "12 m")
+    found = uncertainty(load_text(text), samples=256, workers=1)
+    assert "and fails (upper figure); the median of the samples is" in words_of(found)
+    assert "and most of them hold" in words_of(found)
+
+
+def test_a_part_left_out_is_marked_in_its_row_and_told_below_the_rows():
+    page = uncertainty_page(uncertainty(load_text(CASE), samples=64))
+    row, note = page.index("normal 60 % *"), page.index("* fluid.rheology.plastic_viscosity: 4.8 % of")
+    assert row < note < page.index("Figures at design flow")
+
+
+def test_what_does_not_vary_has_no_deviation():
+    found = uncertainty(load_text(LEVEL_ALONE), samples=64)
+    row = next(line for line in uncertainty_page(found).splitlines() if line.startswith("head loss"))
+    assert row.split()[-4:] == ["0", "m", "±", "0"]
+
+
+LEVEL_ALONE = """title: Level alone
+fluid: {density: 1250 kg/m3, rheology: {model: newtonian, viscosity: 0.9 Pa.s}}
+flow: 31.7 m3/h
+route: [{pipe: line, diameter: 123 mm, length: 81.3 m}]
+uncertainty: {source.level: ± 0.5 m}
+"""
+
+
+def test_the_document_tells_the_same():
+    found = uncertainty_document(fitted(FROM_LOW))
+    assert found["listed_instead_of_readings"] == ["fluid.rheology.yield_stress"]
+    assert found["inputs"][0]["share_above_the_case"] == pytest.approx((30 - 9.523) / 21, abs=1e-4)
+    assert found["limits"][0]["of_case_upper"] < 5.0 < found["limits"][0]["median_of_samples"]
+
+
+def test_the_page_for_the_design_file_has_the_notes():
+    sections = list(uncertainty_sections(fitted(FROM_LOW)))
+    told = " ".join(item for block in sections[0].blocks if isinstance(block, Items) for item in block.items)
+    assert "the scatter of the fit to the readings is left out" in told
+    assert "the case itself has" in told
+
+
+def test_a_number_of_points_is_refused_in_the_same_words(case):
+    answer = CliRunner().invoke(app, ["sweep", str(case), "flow=80..120 m3/h", "--points", "1e3"])
+    assert answer.exit_code == 2
+    assert "Invalid value for '--points': found '1e3'; a whole number is needed, in digits alone" in answer.stderr
