@@ -143,7 +143,7 @@ def _moved(found: Rerun, tolerance: float, width: int) -> Iterator[str]:
         if line.is_beyond(tolerance):
             yield from _line(line, found, tolerance, width)
         else:
-            yield f"  {line.scenario or 'the case itself'}: nothing moved"
+            yield paragraph(f"{line.scenario or 'the case itself'}: nothing moved", width, "  ")
     if comparison.pumps is not None:
         yield from pump_lines(comparison.pumps, tolerance, width)
     if found.program:

@@ -135,6 +135,19 @@ def test_a_lowest_level_that_fails_npsh_is_seen_and_named(line):
     assert not any(total["moved"] for total in document["totals"].values())
 
 
+def test_long_names_stay_on_the_page(line):
+    long = "a name such as a vendor gives in a quotation that goes past what any column of a page can hold"
+    change(line, ("name: first", f"name: {long}"))
+    scenario = f"scenarios: {{{long}: {{fluid.density: 1000 kg/m3}}}}\n"
+    line.write_text(line.read_text(encoding="utf-8") + scenario, encoding="utf-8")
+    assert run(line, "--accept").exit_code == 0
+    change(line, ("lowest_level: 1 m", "lowest_level: -8 m"))
+    found = run(line)
+    assert says(found, f"{long}: nothing moved")
+    assert says(found, f"{long}: holds → out: the case: npsh")
+    assert max(map(len, found.stdout.splitlines())) <= 80
+
+
 def test_a_pump_that_holds_no_longer_has_moved_and_the_next_ranks_first(line):
     put_curve(line.parent, "first", npsh=4)
     found = run(line)
