@@ -5,6 +5,7 @@ from __future__ import annotations
 import io
 import re
 import sys
+from dataclasses import replace
 from pathlib import Path
 from unicodedata import normalize
 
@@ -16,6 +17,7 @@ from typer.testing import CliRunner
 from pipeflow.case.loading import load_case
 from pipeflow.case.source_files import SourceFile
 from pipeflow.cli import app
+from pipeflow.line.elements import Vessel
 from pipeflow.report.html import report_page
 from pipeflow.study.design_file import design_file
 
@@ -26,6 +28,8 @@ pytestmark = pytest.mark.browser
 
 CASES = Path(__file__).parents[2] / "cases"
 NAMES_OF_CASES = sorted(path.stem for path in CASES.glob("*.yaml"))
+PRESSED = "pressed"
+"""A page whose chart has ticks of five figures."""
 HOSTILE = ("hostile-0", "hostile-6")
 WIDTHS = (1280, 390)
 A4 = (595.0, 842.0)
@@ -70,6 +74,9 @@ def pages(tmp_path_factory):
         case = spoilt(load_case(CASES / "thin-filtrate.yaml"), int(name.rsplit("-", 1)[1]))
         files = [SourceFile(one, one, "0" * 64) for one in NAMES]
         (folder / f"{name}.html").write_text(report_page(design_file(case), files), encoding="utf-8")
+    filtrate = load_case(CASES / "thin-filtrate.yaml")
+    pressed = replace(filtrate, source=Vessel(pressure=2e7, level=4.0))
+    (folder / f"{PRESSED}.html").write_text(report_page(design_file(pressed), files), encoding="utf-8")
     return folder
 
 
@@ -102,7 +109,7 @@ def test_charts_are_drawn(width, browser, pages):
         page.close()
 
 
-@pytest.mark.parametrize("name", NAMES_OF_CASES)
+@pytest.mark.parametrize("name", [*NAMES_OF_CASES, PRESSED])
 def test_no_name_on_a_chart_is_cut_at_its_edge(name, browser, pages):
     page = Page(browser, (pages / f"{name}.html").as_uri(), 1280)
     try:

@@ -13,7 +13,19 @@ from pipeflow.arrays import Array
 from pipeflow.case.model import Case
 from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.report.charts.axis import round_ends
-from pipeflow.report.charts.canvas import GREY, INK, PALE, WIDTH, as_svg, canvas, drawing, panel, set_ends, shortened
+from pipeflow.report.charts.canvas import (
+    GREY,
+    INK,
+    PALE,
+    WIDTH,
+    as_svg,
+    canvas,
+    drawing,
+    panel,
+    set_ends,
+    set_sides,
+    shortened,
+)
 from pipeflow.report.charts.labels import POINTS_PER_INCH, Above, Beside, Placer, left_room, size_of
 from pipeflow.study.profile import atmospheric_pressure
 from pipeflow.study.result import ProfilePoint, Result
@@ -82,10 +94,8 @@ def _panels(figure: Figure, result: Result, points: Sequence[ProfilePoint]) -> t
     axes.set_ylabel("head, m of the slurry")
     below.set_ylabel("pressure,\nkPa gauge")
     left = max(LEFT, left_room(axes), left_room(below))
-    across = figure.get_size_inches()[0]
     for each in (axes, below):
-        place = each.get_position()
-        each.set_position((left / across, place.y0, (across - left - RIGHT) / across, place.height))
+        set_sides(each, left, RIGHT)
     return axes, below
 
 

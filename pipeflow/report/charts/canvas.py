@@ -91,6 +91,13 @@ def panel(figure: Figure, left: float, bottom: float, width: float, height: floa
     return figure.add_axes((left / across, bottom / up, width / across, height / up))
 
 
+def set_sides(axes: Axes, left: float, right: float) -> None:
+    """Move the sides of a panel, inches from those of the figure."""
+    figure: Any = axes.figure
+    across, place = figure.get_size_inches()[0], axes.get_position()
+    axes.set_position((left / across, place.y0, (across - left - right) / across, place.height))
+
+
 def set_ends(axis: Any, ends: tuple[float, float, float]) -> None:
     """Put an axis between round ends, a tick at every step."""
     low, high, step = ends

@@ -24,10 +24,11 @@ from pipeflow.report.charts.canvas import (
     drawing,
     panel,
     set_ends,
+    set_sides,
     shortened,
 )
 from pipeflow.report.charts.duties import upper_apart
-from pipeflow.report.charts.labels import Above, Beside, Placer
+from pipeflow.report.charts.labels import Above, Beside, Placer, left_room
 from pipeflow.study.pumping.result import Condition, CurveResult, DrawnCurve, DutyPoint, PumpOnLine
 from pipeflow.units import significant, to_display
 
@@ -75,16 +76,18 @@ def _figure(result: CurveResult) -> Figure:
     below = [kind for kind, has in (("efficiency", _has_efficiency(pumps)), ("npsh", _has_npsh(pumps))) if has]
     under = UNDER + len(below) * (SMALL_PANEL + BETWEEN)
     figure = canvas(under + MAIN + OVER)
-    width = figure.get_size_inches()[0] - LEFT - RIGHT
-    axes = panel(figure, LEFT, under, width, MAIN)
+    axes = panel(figure, LEFT, under, 1.0, MAIN)
     across, up = _ends(result, pumps)
     set_ends(axes.xaxis, across)
     set_ends(axes.yaxis, up)
     axes.set_ylabel("head, m of what flows")
+    left = max(LEFT, left_room(axes))
+    set_sides(axes, left, RIGHT)
     _draw_line(axes, result, pumps)
     panels = [axes]
     for index, kind in enumerate(below):
-        small = panel(figure, LEFT, under - (index + 1) * (SMALL_PANEL + BETWEEN), width, SMALL_PANEL)
+        small = panel(figure, LEFT, under - (index + 1) * (SMALL_PANEL + BETWEEN), 1.0, SMALL_PANEL)
+        set_sides(small, left, RIGHT)
         set_ends(small.xaxis, across)
         (_draw_efficiency if kind == "efficiency" else _draw_npsh)(small, pumps)
         panels.append(small)
