@@ -4,8 +4,17 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
 
-from pipeflow.report.sweep_text import boundary_name, energy_unit, figure_and_unit, name_of, title_of, told, unit_of
-from pipeflow.report.text import heading, paragraph, table
+from pipeflow.report.sweep_text import (
+    boundary_name,
+    energy_unit,
+    figure_and_unit,
+    fitting,
+    name_of,
+    title_of,
+    told,
+    unit_of,
+)
+from pipeflow.report.text import heading, paragraph
 from pipeflow.study.ranges.boundaries import Boundary
 from pipeflow.study.ranges.envelope import Envelope, WindowAt
 from pipeflow.study.ranges.limits_over import REGIMES
@@ -147,5 +156,5 @@ def _energy(envelope: Envelope) -> Iterator[str]:
         for row, energy in zip(envelope.rows, envelope.energy, strict=True)
         if row in _chosen(envelope)
     ]
-    yield from table((unit_of(envelope.up.variable) or "value", *(f"{head}\nm3/h" for head in heads)), rows)
+    yield from fitting((unit_of(envelope.up.variable) or "value", *(f"{head}\nm3/h" for head in heads)), rows)
     yield paragraph(f"{energy_unit(envelope.case)}, hydraulic, losses by the upper figure.", mark="  ")

@@ -2,10 +2,20 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 
-from pipeflow.report.sweep_text import AT_MAXIMUM, energy_unit, figure_and_unit, name_of, title_of, told, unit_of
-from pipeflow.report.text import heading, paragraph, table
+from pipeflow.report.sweep_text import (
+    AT_MAXIMUM,
+    energy_unit,
+    figure_and_unit,
+    fits,
+    fitting,
+    name_of,
+    title_of,
+    told,
+    unit_of,
+)
+from pipeflow.report.text import heading, paragraph
 from pipeflow.study.ranges.runs import Run
 from pipeflow.study.ranges.sweeping import Sweep, SweptPoint, Variable
 from pipeflow.study.result import SAFETY_NOTICE
@@ -55,7 +65,7 @@ def sweep_table(sweep: Sweep) -> Iterator[str]:
         "press.\nkPa", "power\nkW", f"kWh/\n{per}", "limits",
     )  # fmt: skip
     yield paragraph(f"by {name_of(axis.variable)}; at design flow")
-    yield from table(columns, [tuple(sweep_row(sweep, point)) for point in sweep.points], words=(1, 9))
+    yield from fitting(columns, [tuple(sweep_row(sweep, point)) for point in sweep.points], words=(1, 9))
     yield paragraph(
         "Head loss by the central and the upper figure; total head, pressure required, hydraulic power and energy by "
         f"the upper. Energy of the losses, {energy_unit(sweep.case)}. Limits as solve judges them{_judged(sweep)}.",
@@ -110,16 +120,14 @@ def _sense(check: Check) -> str:
 
 def _grid(sweep: Sweep) -> Iterator[str]:
     """Head loss by the upper figure over two inputs, marked where a limit fails."""
-    first, second = sweep.axes
+    first, _ = sweep.axes
     yield from heading(f"Head loss, m, upper figure: {name_of(first.variable)} across")
-    across = _chosen(len(first.values))
-    heads = [figure_and_unit(first.variable, first.values[i])[0] for i in across]
-    corner = f"{name_of(second.variable)[:20]}\n{unit_of(second.variable)}".rstrip("\n")
-    rows = [
-        [figure_and_unit(second.variable, value)[0], *(_cell(sweep, i, j) for i in across)]
-        for j, value in enumerate(second.values)
-    ]
-    yield from table((corner, *(f"{head}\n{unit_of(first.variable)}".rstrip() for head in heads)), rows)
+    across = _chosen(len(first.values), MOST_COLUMNS)
+    lines = _grid_table(sweep, across)
+    while not fits(lines) and len(across) > 2:
+        across = _chosen(len(first.values), len(across) - 1)
+        lines = _grid_table(sweep, across)
+    yield from lines
     yield paragraph("F a limit fails, c one is kept by the central figure alone.", mark="  ")
     if len(across) < len(first.values):
         yield paragraph(f"{len(across)} of {len(first.values)} columns; --csv writes every point.", mark="  ")
@@ -127,9 +135,20 @@ def _grid(sweep: Sweep) -> Iterator[str]:
     yield from _share_of(sweep)
 
 
-def _chosen(count: int) -> list[int]:
+def _grid_table(sweep: Sweep, across: Sequence[int]) -> list[str]:
+    first, second = sweep.axes
+    heads = [figure_and_unit(first.variable, first.values[i])[0] for i in across]
+    corner = f"{name_of(second.variable)}\n{unit_of(second.variable)}".rstrip("\n")
+    rows = [
+        [figure_and_unit(second.variable, value)[0], *(_cell(sweep, i, j) for i in across)]
+        for j, value in enumerate(second.values)
+    ]
+    return fitting((corner, *(f"{head}\n{unit_of(first.variable)}".rstrip() for head in heads)), rows)
+
+
+def _chosen(count: int, most: int) -> list[int]:
     """Places of the columns shown: evenly spread, the ends among them."""
-    shown = min(count, MOST_COLUMNS)
+    shown = min(count, most)
     return [round(index * (count - 1) / (shown - 1)) for index in range(shown)]
 
 

@@ -2,10 +2,14 @@
 
 from __future__ import annotations
 
+import re
+from collections.abc import Container, Sequence
+
 from pipeflow.case.model import Case
+from pipeflow.report.text import WIDTH, columns_of, table
 from pipeflow.study.ranges.boundaries import Boundary
 from pipeflow.study.ranges.sweeping import Axis, Variable
-from pipeflow.units import format_value, significant
+from pipeflow.units import NUMBER, format_value, significant
 
 NAMES = {
     "fluid.solids.mass_fraction": "solids, fraction by mass",
@@ -15,6 +19,9 @@ NAMES = {
     "fluid.rheology.yield_stress": "yield stress",
 }
 """What an input is called on a page; another by its key path."""
+NARROW = 6
+"""Places of a figure in a table that would otherwise be too wide."""
+_FIGURE = re.compile(rf"({NUMBER})([Fc ]?)")
 AT_MAXIMUM = "at maximum flow"
 """What checks of the losses of the whole line say they are of."""
 
@@ -67,3 +74,36 @@ def boundary_name(boundary: Boundary) -> str:
 def title_of(case: Case) -> str:
     """Title and revision."""
     return case.title + (f", revision {case.revision}" if case.revision else "")
+
+
+def fitting(columns: Sequence[str], rows: Sequence[Sequence[str]], words: Container[int] = (0,)) -> list[str]:
+    """Lines of a table that fits a page: figures in fewer digits, or with an exponent, where it would not."""
+    lines = list(table(columns, rows, words))
+    if fits(lines):
+        return lines
+    heads = ["\n".join(narrowed(part) for part in column.split("\n")) for column in columns]
+    return list(table(heads, [[narrowed(cell) for cell in row] for row in rows], words))
+
+
+def fits(lines: Sequence[str]) -> bool:
+    """Whether lines are no wider than a page."""
+    return all(columns_of(line) <= WIDTH for line in lines)
+
+
+def narrowed(cell: str) -> str:
+    """Write a figure in no more than :data:`NARROW` places, a mark after it kept; words stay.
+
+    Examples
+    --------
+    >>> narrowed("1.064e+14F"), narrowed("6730000"), narrowed("12.34"), narrowed("limits")
+    ('1.1e14F', '6.7e6', '12.34', 'limits')
+    """
+    match = _FIGURE.fullmatch(cell)
+    if match is None or len(match[1]) <= NARROW:
+        return cell
+    for digits in (3, 2):
+        shorter = significant(float(match[1]), digits)
+        if len(shorter) <= NARROW:
+            return shorter + match[2]
+    figure, _, exponent = f"{float(match[1]):.1e}".partition("e")
+    return f"{figure}e{int(exponent)}{match[2]}"

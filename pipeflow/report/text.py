@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Container, Iterator, Sequence
 from textwrap import fill, wrap
 from unicodedata import combining, east_asian_width
@@ -60,13 +61,31 @@ def table(
     widths = [max(columns_of(cell) for cell in column) for column in zip(*cells, strict=True)]
     widths[0] = min(widths[0], max(width - sum(widths[1:]) - len(GAP) * (len(widths) - 1), NARROWEST))
     for first, *others in cells:
-        head, *rest = wrap(first, widths[0]) or [""]
+        head, *rest = wrapped(first, widths[0]) or [""]
         aligned = (
             _padded(cell, column, index in words)
             for index, (cell, column) in enumerate(zip((head, *others), widths, strict=True))
         )
         yield GAP.join(aligned).rstrip()
         yield from (f"  {line}" for line in rest)
+
+
+def wrapped(text: str, width: int) -> list[str]:
+    """Break a text into lines; a key path too long for one is broken after a dot, an underscore or a bracket.
+
+    Examples
+    --------
+    >>> wrapped("fluid.rheology.plastic_viscosity", 15)
+    ['fluid.rheology.', 'plastic_', 'viscosity']
+    """
+    if all(len(word) <= width for word in text.split()):
+        return wrap(text, width)
+    lines = [""]
+    for piece in re.split(r"(?<=[ ._\]])(?=[^ ])", text):
+        if lines[-1] and len((lines[-1] + piece).rstrip()) > width:
+            lines.append("")
+        lines[-1] += piece
+    return [part for line in lines for part in wrap(line, width)]
 
 
 def columns_of(text: str) -> int:

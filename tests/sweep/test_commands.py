@@ -9,15 +9,21 @@ import re
 import xml.etree.ElementTree as ElementTree
 from pathlib import Path
 
+import numpy as np
 import pytest
 from swept_lines import BINGHAM, FOLLOWING, FORM, LIMITED
 from typer.testing import CliRunner
 
+from pipeflow.case.axes import Axis
+from pipeflow.case.variables import Variable
 from pipeflow.cli import app
 from pipeflow.report.charts import envelope_chart_svg, sweep_chart_svg
+from pipeflow.report.charts.canvas import drawing
+from pipeflow.report.charts.map_parts import contours, map_axes
 from pipeflow.report.envelope_page import envelope_page
 from pipeflow.report.sweep_document import envelope_document
 from pipeflow.report.sweep_table import envelope_csv
+from pipeflow.report.text import table
 from pipeflow.study.ranges import envelope as study
 from pipeflow.study.ranges.sweeping import solids_sweep
 
@@ -163,6 +169,48 @@ def test_the_document_has_every_boundary_with_its_limit(mapped):
     assert len(document["window"]) == len(document["axes"][1]["values"])
     rows = list(csv.DictReader(io.StringIO(envelope_csv(mapped))))
     assert {row["boundary"] for row in rows} == set(by_name)
+
+
+def test_figures_without_measure_keep_to_the_page(case):
+    one = run("sweep", case, "flow=60..1e9 m3/h", "--points", 5).stdout
+    two = run("sweep", case, "flow=60..1e9 m3/h", "route[long pipe].roughness=0.01..0.5 mm", "--points", 12).stdout
+    for page in (one, two):
+        assert widest(page) <= 80
+        assert re.search(r"\d\.\de\d+F? ", page)
+    assert "of 12 columns; --csv writes every point" in two
+    assert "e+" not in one.split("Chart")[0].split("fastest")[1]
+    usual = run("sweep", case, "flow=60..100 m3/h", "--points", 3).stdout
+    assert "60.00  " in usual
+
+
+def test_names_are_not_broken_within_a_word(case):
+    page = run("sweep", case, "flow=60..80 m3/h", "fluid.rheology.plastic_viscosity=10..20 mPa.s").stdout
+    assert {"plastic", "viscosity"} <= {word for line in page.splitlines() for word in line.split()}
+    lines = list(table(["input", *"abcdefg"], [["fluid.rheology.plastic_viscosity", *["123456789"] * 7]], width=80))
+    assert [line.split()[0] for line in lines[1:]] == ["fluid.", "rheology.", "plastic_", "viscosity"]
+
+
+def test_bores_and_roughness_come_back_in_millimetres(case, tmp_path):
+    for key, ends, told in (("diameter", "120..160 mm", "120.0 to 160.0 mm"), ("roughness", "0..2 mm", "0 to 2.000 mm"),
+                            ("length", "10..20 m", "10.00 to 20.00 m")):  # fmt: skip
+        path = tmp_path / f"{key}.csv"
+        page = run("sweep", case, f"route[long pipe].{key}={ends}", "--points", 3, "--csv", path).stdout
+        assert f"route[long pipe].{key} {told}, 3 points" in page
+        assert path.read_text(encoding="utf-8").startswith(f"route[long pipe].{key} [{told[-2:].strip()}],")
+
+
+def test_figures_of_lines_of_equal_value_are_not_cut_off_at_the_edge():
+    """A field with a line close to the upper edge: every label lies within the panel, or there is none."""
+    ends = Axis(Variable("flow", "", 1.0), (0.0, 1.0))
+    with drawing("test"):
+        figure, axes = map_axes(ends, ends)
+        x, y = np.meshgrid(np.linspace(0.0, 1.0, 21), np.linspace(0.0, 1.0, 21))
+        contours(axes, x[0], y[:, 0], 10.1 * y + 0.001 * x, 20)
+        figure.canvas.draw()
+        boxes = [text.get_window_extent() for text in axes.texts]
+        assert len(boxes) > 5
+        assert all(axes.bbox.x0 <= box.x0 and box.x1 <= axes.bbox.x1 for box in boxes)
+        assert all(axes.bbox.y0 <= box.y0 and box.y1 <= axes.bbox.y1 for box in boxes)
 
 
 def test_the_same_case_gives_the_same_chart(mapped):

@@ -55,11 +55,16 @@ def test_power_and_energy_are_those_of_the_losses():
 
 
 def test_the_energy_is_2_73_of_the_gradient_over_solids():
-    """2.73 i/(S_s C_v), i in metres of water: as handbooks print it."""
-    gradient, density, share, solids = 0.04, 1300.0, 0.35, 2650.0
-    volume_share = share * density / solids
-    printed = 2.73 * gradient / (solids / 1000.0 * volume_share)
-    assert specific_energy(gradient * 1000.0 * GRAVITY, 1.0, density, share) == pytest.approx(printed, rel=0.003)
+    """2.73 i/(S_s C_v), i in metres of water, or 2.73 j/C_w, j in metres of slurry: docs/sweep.md, with its numbers."""
+    water, solids, volume_share, gradient = 1000.0, 2650.0, 0.20, 0.040
+    density = water + volume_share * (solids - water)
+    share, of_slurry = volume_share * solids / density, gradient * water / density
+    printed = 2.73 * gradient / (solids / water * volume_share)
+    assert [density, share, of_slurry] == pytest.approx([1330.0, 0.398, 0.0301], abs=5e-4)
+    assert printed == pytest.approx(0.206, abs=5e-4)
+    assert 2.73 * of_slurry / share == pytest.approx(printed, rel=1e-12)
+    # 9.80665/3.6 is 2.724: handbooks round it up
+    assert specific_energy(gradient * water * GRAVITY, 1.0, density, share) == pytest.approx(printed, rel=0.0025)
 
 
 @pytest.mark.parametrize("fluid", [BINGHAM, FOLLOWING, SETTLING], ids=["bingham", "following", "settling"])

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -73,7 +73,27 @@ def contours(axes: Axes, across: Array, up: Array, values: Array, count: int) ->
     low, high, step = round_ends(float(known.min()), float(known.max()), count)
     levels = [low + index * step for index in range(1, round((high - low) / step))]
     drawn = axes.contour(across, up, values, levels=levels, colors=[GREY], linewidths=0.5)
-    axes.clabel(drawn, fontsize=SMALL - 1.0, fmt=lambda level: significant(level, 2), inline=True, inline_spacing=2.0)
+    places = list(_label_places(axes, drawn))
+    if places:
+        axes.clabel(drawn, fontsize=SMALL - 1.0, fmt=_level, inline=True, inline_spacing=2.0, manual=places)
+
+
+def _level(level: float) -> str:
+    return significant(level, 2)
+
+
+def _label_places(axes: Axes, drawn: Any) -> Iterator[tuple[float, float]]:
+    """A place on each line for its figure: the farthest from the edge, where it is not cut off."""
+    figure: Any = axes.figure
+    pixels = figure.dpi / POINTS_PER_INCH
+    for level, lines in zip(drawn.levels, drawn.allsegs, strict=True):
+        points = np.concatenate([np.empty((0, 2)), *lines])
+        if len(points):
+            at = axes.transData.transform(points)
+            inside = np.minimum(at - axes.bbox.min, axes.bbox.max - at).min(axis=1)
+            best = int(inside.argmax())
+            if inside[best] > 0.6 * size_of(_level(level), SMALL)[0] * pixels:
+                yield float(points[best, 0]), float(points[best, 1])
 
 
 @dataclass(frozen=True)
