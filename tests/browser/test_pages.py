@@ -33,6 +33,8 @@ PRESSED = "pressed"
 HOSTILE = ("hostile-0", "hostile-6")
 WIDTHS = (1280, 390)
 A4 = (595.0, 842.0)
+TEXT_OF_A4 = 642
+"""Width of a printed line, CSS pixels."""
 FEWEST_PAGES, MOST_PAGES = 6, 20
 OUTSIDE = """
 [...document.querySelectorAll('body *')].filter(one => !one.closest('svg, .said, caption')
@@ -114,6 +116,18 @@ def test_no_name_on_a_chart_is_cut_at_its_edge(name, browser, pages):
     page = Page(browser, (pages / f"{name}.html").as_uri(), 1280)
     try:
         assert page.value(CUT) == []
+    finally:
+        page.close()
+
+
+def test_the_index_is_whole_on_a_wide_screen_and_in_print(browser, pages):
+    page = Page(browser, (pages / "index.html").as_uri(), 1280)
+    beyond = "(one => one.scrollWidth - one.clientWidth)(document.querySelector('.scroll'))"
+    try:
+        assert page.value(beyond) == 0
+        page.ask("Emulation.setEmulatedMedia", media="print")
+        page.ask("Emulation.setDeviceMetricsOverride", width=TEXT_OF_A4, height=900, deviceScaleFactor=1, mobile=False)
+        assert page.value(beyond) == 0
     finally:
         page.close()
 
