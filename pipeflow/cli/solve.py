@@ -10,8 +10,14 @@ from pipeflow.cli.common import FAILS, UNUSABLE, app, print_json, whole_number
 from pipeflow.errors import PipeflowError
 
 if TYPE_CHECKING:
+    from collections.abc import Iterator
+    from typing import Any
+
     from pipeflow.study import Result
     from pipeflow.study.sampling.uncertainty import UncertaintyResult
+
+TELL_BEYOND = 60.0
+"""Seconds of work that are told beforehand."""
 
 
 @app.command()
@@ -80,7 +86,16 @@ def _solve_one(path: str, as_json: bool, sampling: dict[str, int] | None) -> int
 def _sampled(result: Result, sampling: dict[str, int]) -> UncertaintyResult:
     from pipeflow.study.sampling.uncertainty import uncertainty
 
-    return uncertainty(result.case, checks=[check.name for check in result.checks], **sampling)
+    return uncertainty(result.case, checks=[check.name for check in result.checks], watch=_watched, **sampling)
+
+
+def _watched(parts: Iterator[Any], count: int, *, seconds: float) -> Iterator[Any]:
+    """Show how far the samples are, and say beforehand where they take minutes."""
+    from pipeflow.report.progress import PATIENCE, with_progress
+
+    if seconds > TELL_BEYOND:
+        typer.echo(f"this takes about {seconds / 60.0:.0f} min; fewer --samples take less", err=True)
+    return with_progress(parts, count, "parts of the samples", at_once=seconds > PATIENCE)
 
 
 def _print(result: Result, sampled: UncertaintyResult | None, as_json: bool) -> None:

@@ -17,7 +17,7 @@ PATIENCE = 1.0
 """Seconds without a bar."""
 
 
-def with_progress(items: Iterable[T], count: int, what: str) -> Iterator[T]:
+def with_progress(items: Iterable[T], count: int, what: str, *, at_once: bool = False) -> Iterator[T]:
     """Hand items on as they come, with a bar on standard error where that is a terminal.
 
     Parameters
@@ -27,13 +27,15 @@ def with_progress(items: Iterable[T], count: int, what: str) -> Iterator[T]:
         How many there will be.
     what : str
         What is done, as the bar says it.
+    at_once : bool
+        Draw it before the first item, of work that is known to be long.
     """
     if not sys.stderr.isatty():
         yield from items
         return
     begun = time.monotonic()
     with ExitStack() as stack:
-        bar: tuple[Progress, TaskID] | None = None
+        bar = _bar(stack, count, what) if at_once else None
         for done, item in enumerate(items, start=1):
             if bar is None and time.monotonic() - begun > PATIENCE and done < count:
                 bar = _bar(stack, count, what)

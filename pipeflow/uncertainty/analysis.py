@@ -10,6 +10,7 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from concurrent.futures import ProcessPoolExecutor
+from contextlib import nullcontext
 from dataclasses import dataclass
 from functools import partial
 from typing import Any, Final
@@ -23,6 +24,7 @@ from pipeflow.uncertainty.factors import Factor
 
 Evaluate = Callable[[Mapping[str, Array]], Mapping[str, Array]]
 """From inputs to outputs, arrays of one length; nan where there is no answer."""
+Watch = Callable[[Iterator[Any], int], Iterator[Any]]
 
 SOBOL_POINTS = Source(
     key="sobol-points",
@@ -164,7 +166,12 @@ def _error(replicates: Array) -> float:
 
 
 def analyse(
-    evaluate: Evaluate, factors: Sequence[Factor], settings: Settings | None = None, *, beside: Evaluate | None = None
+    evaluate: Evaluate,
+    factors: Sequence[Factor],
+    settings: Settings | None = None,
+    *,
+    beside: Evaluate | None = None,
+    watch: Watch | None = None,
 ) -> Analysis:
     """Sample the factors and work out the outputs and their indices.
 
@@ -177,6 +184,8 @@ def analyse(
     settings : Settings, optional
     beside : callable, optional
         To further outputs, worked out on A and B alone.
+    watch : callable, optional
+        Is handed the replicates as they are done, and how many there will be, and hands them on.
 
     Examples
     --------
@@ -190,11 +199,12 @@ def analyse(
     middle = at_medians(evaluate, factors)
     centres = {name: value if math.isfinite(value) else 0.0 for name, value in middle.items()}
     work = partial(_replicate, evaluate, beside, tuple(factors), settings, centres)
-    if settings.workers > 1:
-        with ProcessPoolExecutor(settings.workers) as pool:
-            parts = list(pool.map(work, range(REPLICATES)))
-    else:
-        parts = [work(number) for number in range(REPLICATES)]
+    pool = ProcessPoolExecutor(settings.workers) if settings.workers > 1 else None
+    with pool or nullcontext():
+        done = (
+            pool.map(work, range(REPLICATES)) if pool else map(work, range(REPLICATES))
+        )  # processes start before watch
+        parts = list(watch(done, REPLICATES) if watch else done)
     names = [factor.name for factor in factors]
     return Analysis(
         outputs={name: np.stack([part.outputs[name] for part in parts]) for name in parts[0].outputs},

@@ -25,3 +25,15 @@ def test_where_the_bar_is_shown(stream, patience, shown, monkeypatch):
     monkeypatch.setenv("TERM", "xterm")
     assert list(with_progress(iter(range(5)), 5, "cases run again")) == [0, 1, 2, 3, 4]
     assert ("cases run again" in stream.getvalue()) == shown
+
+
+def test_work_known_to_be_long_has_its_bar_before_the_first_item(monkeypatch):
+    stream = Terminal()
+    monkeypatch.setattr(sys, "stderr", stream)
+    monkeypatch.setenv("TERM", "xterm")
+
+    def slow():
+        assert "samples" in stream.getvalue()
+        yield 1
+
+    assert list(with_progress(slow(), 1, "samples", at_once=True)) == [1]

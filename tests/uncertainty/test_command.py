@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import re
 from dataclasses import replace
 from pathlib import Path
 
@@ -11,6 +12,7 @@ from typer.testing import CliRunner
 
 from pipeflow.case.loading import load_text
 from pipeflow.cli import app
+from pipeflow.cli import solve as solve_command
 from pipeflow.report.html.about_uncertainty import uncertainty_sections
 from pipeflow.report.html.blocks import Items
 from pipeflow.report.uncertainty_document import uncertainty_document
@@ -266,3 +268,13 @@ def test_a_number_of_points_is_refused_in_the_same_words(case):
     answer = CliRunner().invoke(app, ["sweep", str(case), "flow=80..120 m3/h", "--points", "1e3"])
     assert answer.exit_code == 2
     assert "Invalid value for '--points': found '1e3'; a whole number is needed, in digits alone" in answer.stderr
+
+
+def test_work_of_minutes_is_told_beforehand_and_in_a_pipe_nothing_else(case, monkeypatch):
+    arguments = (case, "--uncertainty", "--samples", 256)
+    usual = run(*arguments)
+    assert usual.stderr == ""
+    monkeypatch.setattr(solve_command, "TELL_BEYOND", 0.0)
+    told = run(*arguments)
+    assert re.fullmatch(r"this takes about \d+ min; fewer --samples take less\n", told.stderr)
+    assert told.stdout == usual.stdout

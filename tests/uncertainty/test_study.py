@@ -319,3 +319,17 @@ def test_bars_of_the_tornado_are_single_solutions():
     assert [one.width(HEAD_LOSS) for one in found.tornado] == sorted(
         (one.width(HEAD_LOSS) for one in found.tornado), reverse=True
     )
+
+
+@pytest.mark.parametrize("workers", [1, 2])
+def test_long_work_is_watched_part_by_part(workers):
+    seen = []
+
+    def watch(parts, count, *, seconds):
+        for part in parts:
+            seen.append((count, seconds > 0.0))
+            yield part
+
+    watched = uncertainty(load_text(LAMINAR), samples=256, workers=workers, watch=watch)
+    assert seen == [(8, True)] * 8
+    assert watched.figures == uncertainty(load_text(LAMINAR), samples=256).figures

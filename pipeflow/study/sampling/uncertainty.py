@@ -6,7 +6,8 @@ import os
 import time
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
-from typing import Final
+from functools import partial
+from typing import Any, Final, Protocol
 
 import numpy as np
 
@@ -36,6 +37,13 @@ WORTH_A_POOL: Final = 2.0
 TRIAL: Final = 256
 """Samples that the time is judged by, and that a group of inputs is run over in a tornado."""
 LOW, HIGH = 0.05, 0.95
+
+
+class Watch(Protocol):
+    """Hands the parts of long work on as they are done."""
+
+    def __call__(self, parts: Iterator[Any], count: int, *, seconds: float) -> Iterator[Any]:
+        """Of ``count`` parts, which take about so many seconds together."""
 
 
 @dataclass(frozen=True)
@@ -159,6 +167,7 @@ def uncertainty(
     chunk: int = Settings.chunk,
     checks: Sequence[str] = (),
     workers: int | None = None,
+    watch: Watch | None = None,
 ) -> UncertaintyResult:
     """Sample a case; its scenarios are not.
 
@@ -171,6 +180,9 @@ def uncertainty(
         Names of the checks of the case solved, to tell those that are not sampled.
     workers : int, optional
         Processes; without it as many as pay. No figure depends on it.
+    watch : callable, optional
+        Is handed the parts of the work as they are done, how many there will be, and about how many seconds they take
+        in all; hands them on.
 
     Raises
     ------
@@ -185,8 +197,10 @@ def uncertainty(
     settings = Settings(samples, seed, chunk)
     factors, told = factors_of(case)
     figures = Figures(case)
-    workers = workers or _worth(figures, factors, settings)
-    found = analyse(figures, factors, replace(settings, workers=workers), beside=Failures(case))
+    alone = _seconds(figures, factors, settings)
+    workers = workers or (min(os.cpu_count() or 1, REPLICATES) if alone > WORTH_A_POOL else 1)
+    watched = partial(watch, seconds=alone / workers) if watch else None
+    found = analyse(figures, factors, replace(settings, workers=workers), beside=Failures(case), watch=watched)
     bars, median = tornado(figures, factors)
     odds = tuple(_odds(case, found))
     return UncertaintyResult(
@@ -226,14 +240,13 @@ def _methods(case: Case, factors: Sequence[Factor]) -> tuple[Source, ...]:
     return (*bare, *of_method, SOBOL_POINTS, FIRST_ORDER, TOTAL)
 
 
-def _worth(figures: Figures, factors: Sequence[Factor], settings: Settings) -> int:
-    """Number of processes that pays, by the time a few samples take."""
+def _seconds(figures: Figures, factors: Sequence[Factor], settings: Settings) -> float:
+    """About how long one process would take, by the time of a few samples; 0 where there are few."""
     if settings.samples < TRIAL:
-        return 1
+        return 0.0
     start = time.perf_counter()
     figures(inputs_of(factors, points(sum(factor.columns for factor in factors), TRIAL, settings.seed)))
-    alone = (time.perf_counter() - start) / TRIAL * settings.samples * (len(factors) + 6)
-    return min(os.cpu_count() or 1, REPLICATES) if alone > WORTH_A_POOL else 1
+    return (time.perf_counter() - start) / TRIAL * settings.samples * (len(factors) + 6)
 
 
 def tornado(figures: Figures, factors: Sequence[Factor]) -> tuple[tuple[Bar, ...], dict[str, float]]:
