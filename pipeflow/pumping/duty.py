@@ -22,6 +22,8 @@ ZOOM_POINTS = 33
 ZOOMS = 4
 SIDE = 1e-6
 """Share of the pump's curve by which the sides of a crossing are looked at."""
+CLOSE = 1e-13
+"""Share of the head within which a crossing is met."""
 AGREEMENT = 1e-9
 """Share of the head within which the curves are said to meet where they touch, or at an end of the pump's."""
 
@@ -142,10 +144,11 @@ class _Search:
         from scipy.optimize.elementwise import find_root
 
         closest = 4 * float(np.finfo(float).eps)
+        met = CLOSE * float(np.abs(self.pump(at[left])[1]).min())
         found = find_root(
             self.gap,
             (at[left], at[left + 1]),
-            tolerances={"xatol": 0.0, "xrtol": closest, "fatol": 0.0, "frtol": 0.0},
+            tolerances={"xatol": 0.0, "xrtol": closest, "fatol": met, "frtol": 0.0},
         )
         return np.concatenate([np.asarray(found.x), exact])
 

@@ -16,7 +16,6 @@ from functools import partial
 from typing import Any, Final
 
 import numpy as np
-from scipy.stats import qmc
 
 from pipeflow.arrays import Array
 from pipeflow.sources import Source
@@ -315,6 +314,8 @@ def points(dimension: int, number: int, seed: int) -> Array:
 
 def _points(dimension: int, settings: Settings, number: int, rows: int) -> Iterator[Array]:
     """Scrambled Sobol points of one replicate, so many rows at a time, rounded down to a power of two."""
+    from scipy.stats import qmc  # 0.9 s, which a page without uncertainty does not wait for
+
     generator = np.random.default_rng([settings.seed, number])
     engine = qmc.Sobol(d=max(dimension, 1), scramble=True, rng=generator)
     left = settings.samples // REPLICATES
