@@ -36,8 +36,8 @@ def key_of(name: str, units: Mapping[str, str]) -> str:
 
 def plain(value: Any, units: Mapping[str, str]) -> Any:
     """Give a value as JSON has it: dataclasses laid out, tuples as lists, None for a number that is none."""
-    if is_dataclass(value) and not isinstance(value, type):
-        return laid_out(value, units)
+    if isinstance(value, float):
+        return value if math.isfinite(value) else None
     if isinstance(value, tuple):
         return [plain(one, units) for one in value]
-    return None if isinstance(value, float) and not math.isfinite(value) else value
+    return laid_out(value, units) if is_dataclass(value) and not isinstance(value, type) else value

@@ -51,7 +51,7 @@ def told(*arguments):
 
 def says(found, text):
     """Whether the page says it, however its lines are broken."""
-    return " ".join(text.split()) in " ".join(found.stdout.split())
+    return "".join(text.split()) in "".join(found.stdout.split())
 
 
 def put_curve(folder, name, *, head=1.0, efficiency=1.0, npsh=1.0):
