@@ -23,7 +23,7 @@ from reference import (
 from pipeflow.friction import Regime, solve_pipes
 
 TOLERANCE = 1e-10
-COUNT = 8
+COUNT = 5
 
 
 def printed_ryan_johnson(n):

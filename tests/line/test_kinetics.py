@@ -60,8 +60,9 @@ def values(factors):
     return [float(getattr(factors, name)) for name in NAMES]
 
 
-@pytest.mark.parametrize("n", [0.3, 0.58, 1.0, 1.4])
-@pytest.mark.parametrize("plug", [0.0, 0.34, 0.9])
+@pytest.mark.parametrize(
+    ("n", "plug"), [(0.3, 0.0), (1.4, 0.0), (0.3, 0.34), (0.58, 0.34), (1.0, 0.34), (0.58, 0.9), (1.4, 0.9)]
+)
 def test_generalized_power_law_against_integration(n, plug):
     expected = integrated(lambda stress: (stress - mp.mpf(plug)) ** (1 / mp.mpf(n)), plug)
     assert values(generalized_power_law_factors(plug, n)) == pytest.approx(expected, rel=1e-10)
