@@ -73,7 +73,7 @@ def _error(error: float, unit: str) -> str:
 def _limits(result: UncertaintyResult) -> Iterator[str]:
     if result.limits:
         yield from heading("Probability that a limit fails")
-        rows = [odds_row(odds, result.samples) for odds in result.limits]
+        rows = [odds_row(odds, result) for odds in result.limits]
         yield from table(("limit", "", "fails in", "± error", ""), rows, words=(0, 4))
         for note in limit_notes(result):
             yield paragraph(note, mark="  - ")
@@ -82,13 +82,18 @@ def _limits(result: UncertaintyResult) -> Iterator[str]:
         yield paragraph(f"Not sampled, judged at the stated inputs alone: {names}.")
 
 
-def odds_row(odds: Odds, samples: int) -> tuple[str, ...]:
-    """Write one limit: name, what it is, the share that fails, its standard error, the basis."""
+def odds_row(odds: Odds, result: UncertaintyResult) -> tuple[str, ...]:
+    """Write one limit: name, what it is, the share that fails, its standard error, the basis.
+
+    Deposition is not judged where some pipe is not turbulent, so that no sample can fail there.
+    """
+    if odds.name == "deposition" and result.not_turbulent >= 1.0:
+        return odds.name, "", "not judged", "", "not turbulent"
     bound = "at least" if odds.is_least else "at most"
     limit = "" if odds.name == "deposition" else f"{bound} {format_si(odds.limit, odds.unit)}"
     share = odds.probability
     if share.value == 0:
-        return odds.name.replace("_", " "), limit, f"none of {2 * samples}", "", odds.basis
+        return odds.name.replace("_", " "), limit, f"none of {2 * result.samples}", "", odds.basis
     return odds.name.replace("_", " "), limit, percent(share.value), percent(share.error), odds.basis
 
 

@@ -278,3 +278,9 @@ def test_work_of_minutes_is_told_beforehand_and_in_a_pipe_nothing_else(case, mon
     told = run(*arguments)
     assert re.fullmatch(r"this takes about \d+ min; fewer --samples take less\n", told.stderr)
     assert told.stdout == usual.stdout
+
+
+def test_deposition_in_flow_that_is_not_turbulent_is_not_judged():
+    """None of the samples of the thickener's line is turbulent at minimum flow: none can fail, which proves nothing."""
+    page = run(CASES / "thickener-underflow.yaml", "--uncertainty", "--samples", "256").stdout
+    assert "not judged" in next(line for line in page.splitlines() if line.startswith("deposition  "))

@@ -33,7 +33,7 @@ def _uncertainty(found: UncertaintyResult) -> Iterator[Block]:
     yield from _notes(input_notes(found))
     figures = [figure_row(spread) for spread in found.figures.values()]
     yield from table("Figures over the samples", FIGURE_COLUMNS, figures, (0,))
-    limits = [odds_row(odds, found.samples) for odds in found.limits]
+    limits = [odds_row(odds, found) for odds in found.limits]
     columns = ("limit", "", "fails in", "± error", "judged")
     if limits:
         yield Subsection("Probability that a limit fails")
