@@ -14,12 +14,12 @@ import numpy as np
 
 from pipeflow.arrays import Array
 from pipeflow.case.model import Case, Methods
-from pipeflow.line import route
 from pipeflow.line.elements import Element, Fluid, Pipe, Vessel
 from pipeflow.record.comparison import TOTALS
 from pipeflow.record.inputs import canonical, encoded
 from pipeflow.rheology import Rheology
 from pipeflow.sizing import skeleton, stacked
+from pipeflow.study.flows import solved
 
 Group = frozenset[str]
 """Inputs that change together, by the names of their kinds."""
@@ -153,16 +153,5 @@ def totals(lines: Sequence[Line]) -> Array:
 
 def _solved(line: Line) -> Array:
     """Totals of a line whose numbers are arrays of one length."""
-    flow = route.solve(
-        line.flow,
-        line.fluid,
-        line.route,
-        line.source,
-        line.destination,
-        turbulent=line.methods.turbulent,
-        critical=line.methods.critical,
-        fittings=line.methods.fittings,
-        particle_size=line.particle_size,
-        with_edges=False,
-    )
+    flow = solved(line, line.methods, line.flow, with_edges=False)
     return np.stack([getattr(flow, name) for name in NAMES], axis=-1)

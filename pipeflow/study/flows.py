@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from dataclasses import fields
+from typing import Protocol
 
 from pipeflow.arrays import FloatOrArray
-from pipeflow.case.model import Case
+from pipeflow.case.model import Case, Methods
 from pipeflow.friction import PipeFlow
 from pipeflow.line import route
-from pipeflow.line.elements import Pipe
+from pipeflow.line.elements import Element, Fluid, Pipe, Vessel
 from pipeflow.line.route import LineFlow
 from pipeflow.rheology import mixture
 
@@ -16,21 +17,52 @@ DESIGN, MINIMUM, MAXIMUM = 0, 1, 2
 FLOW_NAMES = ("design flow", "minimum flow", "maximum flow")
 
 
-def line_at(case: Case, flow: FloatOrArray, *, with_edges: bool = True, with_upper: bool = True) -> LineFlow:
-    """Solve the line of a case at these flows, m³/s; what it is solved with as :func:`pipeflow.line.route.solve`."""
+class LineInputs(Protocol):
+    """What holds a line: a case, or one some of whose inputs are arrays."""
+
+    @property
+    def fluid(self) -> Fluid:
+        """What flows."""
+
+    @property
+    def route(self) -> tuple[Element, ...]:
+        """The elements, in flow order."""
+
+    @property
+    def source(self) -> Vessel | None:
+        """Where it comes from."""
+
+    @property
+    def destination(self) -> Vessel | None:
+        """Where it goes."""
+
+    @property
+    def particle_size(self) -> FloatOrArray:
+        """The d85 of the solids, m; nan where it is not known."""
+
+
+def solved(
+    line: LineInputs, methods: Methods, flow: FloatOrArray, *, with_edges: bool = True, with_upper: bool = True
+) -> LineFlow:
+    """Solve a line at these flows, m³/s, by the methods asked for, as :func:`pipeflow.line.route.solve` does."""
     return route.solve(
         flow,
-        case.fluid,
-        case.route,
-        case.source,
-        case.destination,
-        turbulent=case.methods.turbulent,
-        critical=case.methods.critical,
-        fittings=case.methods.fittings,
-        particle_size=case.particle_size,
+        line.fluid,
+        line.route,
+        line.source,
+        line.destination,
+        turbulent=methods.turbulent,
+        critical=methods.critical,
+        fittings=methods.fittings,
+        particle_size=line.particle_size,
         with_edges=with_edges,
         with_upper=with_upper,
     )
+
+
+def line_at(case: Case, flow: FloatOrArray, *, with_edges: bool = True, with_upper: bool = True) -> LineFlow:
+    """Solve the line of a case at these flows, m³/s; what it is solved with as :func:`pipeflow.line.route.solve`."""
+    return solved(case, case.methods, flow, with_edges=with_edges, with_upper=with_upper)
 
 
 def distinct_flows(case: Case) -> tuple[str, ...]:

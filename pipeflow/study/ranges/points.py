@@ -12,10 +12,10 @@ from pipeflow import sizing
 from pipeflow.arrays import Array, FloatOrArray
 from pipeflow.case.model import Case, FlowRange, Followed, Liquid, Solids
 from pipeflow.case.varying import Slurry, VariedCase, varied
-from pipeflow.line import route
 from pipeflow.line.elements import Fluid
 from pipeflow.line.route import LineFlow
 from pipeflow.study.checks import checks
+from pipeflow.study.flows import solved
 from pipeflow.study.readings.answers import beyond_tested, rheology_checks
 from pipeflow.verdict import Check
 
@@ -83,20 +83,7 @@ def case_at(case: Case, values: Mapping[str, float], flow: float | None = None) 
 
 def _solved(case: Case, given: VariedCase, flow: Array) -> LineFlow:
     """Solve with the axis of the flows last."""
-    fluid, elements, source, destination, size = sizing.mapped(
-        (given.fluid, given.route, given.source, given.destination, given.particle_size), _with_axis
-    )
-    return route.solve(
-        flow,
-        fluid,
-        elements,
-        source,
-        destination,
-        turbulent=case.methods.turbulent,
-        critical=case.methods.critical,
-        fittings=case.methods.fittings,
-        particle_size=size,
-    )
+    return solved(sizing.mapped(given, _with_axis), case.methods, flow)
 
 
 def _with_axis(values: Array) -> Array:

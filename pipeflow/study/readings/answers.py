@@ -11,14 +11,13 @@ import numpy as np
 
 from pipeflow.case.model import Case, shown_condition
 from pipeflow.friction.methods import critical_criterion, turbulent_method
-from pipeflow.line import route
 from pipeflow.line.route import LineFlow
 from pipeflow.rheology import Rheology
 from pipeflow.rheology.conditions import ARRHENIUS, SOLIDS_LAWS, Variable
 from pipeflow.rheology.models import Casson, GeneralizedPowerLaw
 from pipeflow.rheology.tangent import FAR, continued_by_tangent, is_far
 from pipeflow.sources import Source
-from pipeflow.study.flows import DESIGN, distinct_flows, pipes_of
+from pipeflow.study.flows import DESIGN, distinct_flows, pipes_of, solved
 from pipeflow.study.readings.result import BeyondTested, LawLoss, RheologyAnswers
 from pipeflow.study.result import MethodUse
 from pipeflow.verdict import Check
@@ -59,17 +58,8 @@ def beyond_tested(case: Case, line: LineFlow, flows: tuple[float, ...]) -> Rheol
 
 
 def _solve(case: Case, law: Rheology, flows: tuple[float, ...], methods: tuple[str | None, str | None]) -> LineFlow:
-    return route.solve(
-        np.array(flows),
-        replace(case.fluid, rheology=law),
-        case.route,
-        case.source,
-        case.destination,
-        turbulent=methods[0],
-        critical=methods[1],
-        fittings=case.methods.fittings,
-        particle_size=case.particle_size,
-    )
+    asked = replace(case.methods, turbulent=methods[0], critical=methods[1])
+    return solved(replace(case, fluid=replace(case.fluid, rheology=law)), asked, np.array(flows))
 
 
 def _methods_for(case: Case, law: Rheology) -> tuple[str | None, str | None]:

@@ -12,9 +12,9 @@ from pipeflow.arrays import Array, FloatOrArray
 from pipeflow.case.model import Case
 from pipeflow.case.varying import VariedCase, varied
 from pipeflow.constants import STANDARD_GRAVITY
-from pipeflow.line import route
 from pipeflow.line.elements import Pipe
 from pipeflow.line.route import LineFlow
+from pipeflow.study.flows import solved
 from pipeflow.study.sampling.inputs import METHOD
 
 HEAD_LOSS: Final = "head_loss"
@@ -48,19 +48,7 @@ class SampledLine:
     @classmethod
     def of(cls, case: Case, given: VariedCase, flow: FloatOrArray, share: FloatOrArray | None) -> SampledLine:
         """Solve it; by the central method alone where no place between the two is given."""
-        line = route.solve(
-            flow,
-            given.fluid,
-            given.route,
-            given.source,
-            given.destination,
-            turbulent=case.methods.turbulent,
-            critical=case.methods.critical,
-            fittings=case.methods.fittings,
-            particle_size=given.particle_size,
-            with_edges=False,
-            with_upper=share is not None,
-        )
+        line = solved(given, case.methods, flow, with_edges=False, with_upper=share is not None)
         return cls(case, given, flow, line, 0.0 if share is None else share)
 
     @property
