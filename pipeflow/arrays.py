@@ -7,3 +7,9 @@ from numpy.typing import NDArray
 
 Array = NDArray[np.float64]
 FloatOrArray = float | Array
+
+
+def known(value: FloatOrArray) -> float | None:
+    """Give one number, the first of an array; None where it is not finite."""
+    figure = float(np.asarray(value).ravel()[0])
+    return figure if np.isfinite(figure) else None

@@ -2,9 +2,9 @@
 
 from __future__ import annotations
 
-import math
 from typing import Any
 
+from pipeflow.arrays import known
 from pipeflow.study.sampling.inputs import instead_of_readings
 from pipeflow.study.sampling.uncertainty import Bar, Estimate, Index, Odds, Spread, UncertaintyResult
 
@@ -17,8 +17,8 @@ def uncertainty_document(result: UncertaintyResult) -> dict[str, Any]:
         "seed": result.seed,
         "lines_solved": result.evaluations,
         "lines_without_answer": result.lost,
-        "share_beyond_tested": _finite(result.beyond_tested),
-        "share_not_turbulent_at_minimum_flow": _finite(result.not_turbulent),
+        "share_beyond_tested": known(result.beyond_tested),
+        "share_not_turbulent_at_minimum_flow": known(result.not_turbulent),
         "inputs": [
             {
                 "name": one.name,
@@ -48,9 +48,9 @@ def _spread(spread: Spread, median: float) -> dict[str, Any]:
         "p95": spread.p95,
     }
     return {
-        **{name: _finite(estimate.value) for name, estimate in estimates.items()},
-        "standard_errors": {name: _finite(estimate.error) for name, estimate in estimates.items()},
-        "at_medians": _finite(median),
+        **{name: known(estimate.value) for name, estimate in estimates.items()},
+        "standard_errors": {name: known(estimate.error) for name, estimate in estimates.items()},
+        "at_medians": known(median),
         "sensitivity": [_index(index) for index in spread.indices],
     }
 
@@ -64,7 +64,7 @@ def _index(index: Index) -> dict[str, Any]:
 
 
 def _with_error(name: str, estimate: Estimate) -> dict[str, Any]:
-    return {name: _finite(estimate.value), f"{name}_standard_error": _finite(estimate.error)}
+    return {name: known(estimate.value), f"{name}_standard_error": known(estimate.error)}
 
 
 def _odds(odds: Odds) -> dict[str, Any]:
@@ -75,15 +75,11 @@ def _odds(odds: Odds) -> dict[str, Any]:
         "sense": "at least" if odds.is_least else "at most",
         "basis": odds.basis,
         **_with_error("probability_of_failing", odds.probability),
-        "of_case_upper": _finite(odds.of_case),
-        "median_of_samples": _finite(odds.median),
+        "of_case_upper": known(odds.of_case),
+        "median_of_samples": known(odds.median),
     }
 
 
 def _bar(bar: Bar, keys: dict[str, str]) -> dict[str, Any]:
-    ends = {key: [_finite(bar.low[name]), _finite(bar.high[name])] for name, key in keys.items()}
+    ends = {key: [known(bar.low[name]), known(bar.high[name])] for name, key in keys.items()}
     return {"input": bar.factor, **ends}
-
-
-def _finite(value: float) -> float | None:
-    return value if math.isfinite(value) else None

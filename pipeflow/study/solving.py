@@ -8,7 +8,7 @@ from itertools import pairwise
 
 import numpy as np
 
-from pipeflow.arrays import Array
+from pipeflow.arrays import Array, known
 from pipeflow.case.model import Case
 from pipeflow.friction import Regime
 from pipeflow.friction.laminar import BUCKINGHAM_REINER, HAGEN_POISEUILLE, METZNER_REED, RABINOWITSCH_MOONEY
@@ -112,20 +112,16 @@ def _pipe(case: Case, pipe: Pipe, line: LineFlow, index: int, band: Array) -> El
         regime=regime.name.lower().replace("_", " "),
         method=_method_key(case, regime),
         reynolds_mr=float(flow.reynolds_mr),
-        reynolds_critical=_known(flow.reynolds_critical),
-        critical_velocity=_known(flow.critical_velocity),
-        critical_velocity_lowest=_known(band[0, index]),
-        critical_velocity_highest=_known(band[1, index]),
-        turbulent_velocity=_known(flow.turbulent_velocity),
-        friction_factor_fanning=_known(flow.wall_shear_stress / dynamic_pressure) if dynamic_pressure else None,
-        wall_shear_stress=_known(flow.wall_shear_stress),
-        wall_shear_rate=_known(flow.wall_shear_rate),
-        local_flow_index=_known(flow.local_flow_index),
+        reynolds_critical=known(flow.reynolds_critical),
+        critical_velocity=known(flow.critical_velocity),
+        critical_velocity_lowest=known(band[0, index]),
+        critical_velocity_highest=known(band[1, index]),
+        turbulent_velocity=known(flow.turbulent_velocity),
+        friction_factor_fanning=known(flow.wall_shear_stress / dynamic_pressure) if dynamic_pressure else None,
+        wall_shear_stress=known(flow.wall_shear_stress),
+        wall_shear_rate=known(flow.wall_shear_rate),
+        local_flow_index=known(flow.local_flow_index),
     )
-
-
-def _known(value: Array) -> float | None:
-    return float(value) if np.isfinite(value) else None
 
 
 def _laminar_source(rheology: Rheology) -> Source:

@@ -8,7 +8,7 @@ from functools import cached_property
 
 import numpy as np
 
-from pipeflow.arrays import Array
+from pipeflow.arrays import known
 from pipeflow.case.model import Case, FlowRange, Pump
 from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.operability.validity import range_cautions
@@ -107,27 +107,27 @@ class _Candidate:
         if crossing is None:
             return None
         state = machine.state(np.array([crossing.parameter]))
-        lower, power = _known(state.efficiency_lower), _known(state.shaft_power_upper)
+        lower, power = known(state.efficiency_lower), known(state.shaft_power_upper)
         motor = None if power is None else float(motor_power(power / self.pump.number, self.pump.motor_margin))
         best = machine.best_flow if isinstance(machine, SlurryCurve) else None
         return DutyPoint(
             flow=crossing.flow,
             head=crossing.head,
-            efficiency=_known(state.efficiency),
-            shaft_power=_known(state.shaft_power),
+            efficiency=known(state.efficiency),
+            shaft_power=known(state.shaft_power),
             efficiency_for_motor=lower,
             motor_power=motor,
             standard_motor=None if motor is None else standard_motor(motor),
             best_efficiency_share=crossing.flow / best if best else None,
             npsh_available=self._npsh_available(machine, crossing.flow),
-            npsh_required=_known(state.npsh_required),
+            npsh_required=known(state.npsh_required),
             stable=crossing.is_stable,
             established=bool(state.established[0]),
         )
 
     def _npsh_available(self, machine: Machine, flow: float) -> float | None:
         available = self.demand.at(np.array([flow])).npsh_available
-        return _known(available - self._acceleration(machine, flow))
+        return known(available - self._acceleration(machine, flow))
 
     def _acceleration(self, machine: Machine, flow: float) -> float:
         """Head that the strokes of a pump of pistons take from the suction line, m."""
@@ -152,7 +152,7 @@ class _Candidate:
             yield from self._restart(machine)
             return
         if self.kind == "water" and duty is None:
-            yield pump_checks.water_check(reason, _known(machine.state(np.array([machine.ends[1]])).shaft_power_upper))
+            yield pump_checks.water_check(reason, known(machine.state(np.array([machine.ends[1]])).shaft_power_upper))
         if self.kind == "water":
             yield from filter(None, [self._fills()])
         else:
@@ -185,7 +185,7 @@ class _Candidate:
         required = max((one.npsh_required or 0.0 for one in both), default=0.0)
         if isinstance(machine, SlurryCurve) and flow < self.case.flow.maximum * (1.0 - 1e-9) <= machine.ends[1]:
             flow = self.case.flow.maximum
-            required = _known(machine.state(np.array([flow])).npsh_required) or required
+            required = known(machine.state(np.array([flow])).npsh_required) or required
             available = self._npsh_available(machine, flow)
         return pump_checks.npsh_check(available, float(npsh_asked(required)), needs)
 
@@ -195,7 +195,7 @@ class _Candidate:
             weight = machine.density * STANDARD_GRAVITY
             added = weight * max(one.head for one in both)
             found = weight * float(self.demand.at(np.array([one.flow for one in both])).inlet.max())
-            yield pump_checks.torque_check(self.pump, _known(machine.torque(added)))
+            yield pump_checks.torque_check(self.pump, known(machine.torque(added)))
             yield pump_checks.relief_above_duty(self.pump, added + max(found, 0.0))
 
     def _restart(self, machine: Machine) -> Iterator[Check]:
@@ -217,9 +217,9 @@ class _Candidate:
 
     def _strength_at(self, machine: DisplacementPump, pressure: float) -> Iterator[Check]:
         """Hold torque and motor of a positive-displacement pump against a pressure it must start against, Pa."""
-        where, power = "at the pressure of a restart", _known(machine.state(pressure).shaft_power_upper)
+        where, power = "at the pressure of a restart", known(machine.state(pressure).shaft_power_upper)
         asked = None if power is None else float(motor_power(power / self.pump.number, self.pump.motor_margin))
-        torque = pump_checks.torque_check(self.pump, _known(machine.torque(pressure)), where)
+        torque = pump_checks.torque_check(self.pump, known(machine.torque(pressure)), where)
         yield from filter(None, [torque, pump_checks.motor_at(self.pump, asked, f", {where} and this speed")])
 
     def _cautions(self, machine: Machine, duty: DutyPoint | None, found: Duties, upper: Duties) -> Iterator[str]:
@@ -285,17 +285,12 @@ class _Candidate:
         yield from (NPSH, NPSH_MARGIN, STANDARD_MOTORS)
 
 
-def _known(value: Array) -> float | None:
-    figure = float(np.asarray(value).ravel()[0])
-    return figure if np.isfinite(figure) else None
-
-
 def _credit(machine: SlurryCurve) -> float | None:
     """Head that a restart may count on, m; None without a best-efficiency flow or a figure at every low flow."""
     if machine.best_flow is None:
         return None
     head = machine.state(np.linspace(machine.ends[0], ESTABLISHED_SHARE * machine.best_flow, DRAWN_POINTS)).head
-    return _known(pump_checks.CREDITED * head.min())
+    return known(pump_checks.CREDITED * head.min())
 
 
 def _correction(machine: SlurryCurve, duty: DutyPoint | None, refusal: str) -> CorrectionResult:
@@ -306,15 +301,15 @@ def _correction(machine: SlurryCurve, duty: DutyPoint | None, refusal: str) -> C
     viscous = machine.method != "none"
     return CorrectionResult(
         method=machine.method,
-        head_factor=_known(found.head_factor),
-        flow_factor=_known(found.flow_factor),
-        efficiency_factor=_known(found.efficiency_factor),
-        efficiency_factor_for_motor=_known(found.efficiency_factor_lower),
-        parameter_head=_known(found.b_head),
-        parameter_efficiency=_known(found.b_efficiency),
-        viscosity_head=_known(found.viscosity.apparent * machine.density),
-        viscosity_efficiency=_known(found.viscosity.differential * machine.density),
-        shear_rate=_known(found.viscosity.shear_rate),
+        head_factor=known(found.head_factor),
+        flow_factor=known(found.flow_factor),
+        efficiency_factor=known(found.efficiency_factor),
+        efficiency_factor_for_motor=known(found.efficiency_factor_lower),
+        parameter_head=known(found.b_head),
+        parameter_efficiency=known(found.b_efficiency),
+        viscosity_head=known(found.viscosity.apparent * machine.density),
+        viscosity_efficiency=known(found.viscosity.differential * machine.density),
+        shear_rate=known(found.viscosity.shear_rate),
         note=machine.derating.reason if viscous else "",
     )
 
@@ -326,8 +321,8 @@ def _drawn(machine: Machine) -> DrawnCurve:
     return DrawnCurve(
         flow=tuple(float(state.flow[at]) for at in order),
         head=tuple(float(state.head[at]) for at in order),
-        efficiency=tuple(_known(state.efficiency[at]) for at in order),
-        npsh_required=tuple(_known(state.npsh_required[at]) for at in order),
+        efficiency=tuple(known(state.efficiency[at]) for at in order),
+        npsh_required=tuple(known(state.npsh_required[at]) for at in order),
         established=tuple(bool(state.established[at]) for at in order),
     )
 
@@ -338,7 +333,7 @@ def _drawn_on_water(pump: Pump, speed: float | None) -> DrawnCurve:
     return DrawnCurve(
         flow=tuple(flow.tolist()),
         head=tuple(curve.head_at(flow).tolist()),
-        efficiency=tuple(_known(value) for value in curve.efficiency_at(flow)),
-        npsh_required=tuple(_known(value) for value in curve.npsh_required_at(flow)),
+        efficiency=tuple(known(value) for value in curve.efficiency_at(flow)),
+        npsh_required=tuple(known(value) for value in curve.npsh_required_at(flow)),
         established=(True,) * flow.size,
     )

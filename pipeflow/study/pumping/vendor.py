@@ -7,6 +7,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from pipeflow.arrays import known
 from pipeflow.case.model import Case
 from pipeflow.constants import STANDARD_GRAVITY
 from pipeflow.study.pumping.conditions import conditions
@@ -83,14 +84,10 @@ def _duties(name: str, case: Case) -> Iterator[VendorDuty]:
     weight = float(case.fluid.density) * STANDARD_GRAVITY
     found = Demand(case).at(np.array(list(flows.values())))
     for index, (at, flow) in enumerate(flows.items()):
-        head = _known(found.upper[index])
+        head = known(found.upper[index])
         pressure = None if head is None else weight * head
         power = None if pressure is None else pressure * flow
-        yield VendorDuty(name, at, flow, head, pressure, power, _known(found.npsh_available[index]), case)
-
-
-def _known(value: float) -> float | None:
-    return float(value) if np.isfinite(value) else None
+        yield VendorDuty(name, at, flow, head, pressure, power, known(found.npsh_available[index]), case)
 
 
 def _extreme(figures: Sequence[float | None]) -> int | None:
