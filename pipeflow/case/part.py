@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from typing import Annotated, Final
 
-from pydantic import BaseModel, ConfigDict
+from pydantic import BaseModel, ConfigDict, ValidationInfo, field_validator
 
-from pipeflow.case.fields import choice
+from pipeflow.case.fields import at_odds, choice
 
 ASSUMED: Final = "assumed"
 STATUSES: Final = ("measured", "vendor", ASSUMED)
@@ -28,3 +28,15 @@ class InputPart(Part):
     """A map of inputs: where they come from may be said."""
 
     status: Annotated[str, choice("status", lambda: STATUSES)] | None = None
+
+
+class EndsPart(Part):
+    """A map of two ends, ``minimum`` and ``maximum``, of a quantity that a part derived from it names."""
+
+    @field_validator("maximum", check_fields=False)
+    @classmethod
+    def _above_the_minimum(cls, value: float, info: ValidationInfo) -> float:
+        minimum = info.data.get("minimum")
+        if minimum is not None and value <= minimum:
+            raise at_odds("must be more than 'minimum'")
+        return value

@@ -24,7 +24,7 @@ from pipeflow.case.fields import (
 )
 from pipeflow.case.files import why_no_file
 from pipeflow.case.limits_part import PositivePressure
-from pipeflow.case.part import FAILED, InputPart, Part
+from pipeflow.case.part import FAILED, EndsPart, InputPart, Part
 from pipeflow.case.route_part import NewName
 from pipeflow.units import format_value
 
@@ -40,19 +40,11 @@ MAX_TOGETHER = 20
 MAX_STAGES = 50
 
 
-class SpeedsPart(Part):
+class SpeedsPart(EndsPart):
     """Speeds that a drive can be set to."""
 
     minimum: Speed
     maximum: Speed
-
-    @check("maximum")
-    @classmethod
-    def _above_the_minimum(cls, value: float, info: ValidationInfo) -> float:
-        minimum = info.data.get("minimum")
-        if minimum is not None and value <= minimum:
-            raise at_odds("must be more than 'minimum'")
-        return value
 
 
 class ImpellerPart(Part):

@@ -8,7 +8,7 @@ from pydantic import Field, ValidationInfo
 from pydantic import field_validator as check
 
 from pipeflow.case.fields import Length, Name, Number, Size, at_odds, needs, said, wrong_choice
-from pipeflow.case.part import FAILED, InputPart, Part
+from pipeflow.case.part import FAILED, EndsPart, InputPart, Part
 from pipeflow.line.catalogue import PipeSize, series_names, sizes_of
 from pipeflow.units import echo
 
@@ -22,19 +22,11 @@ def _series(name: str) -> str:
     return found[0].series
 
 
-class BoresPart(Part):
+class BoresPart(EndsPart):
     """Bores that a free diameter is looked for between."""
 
     minimum: Length
     maximum: Length
-
-    @check("maximum")
-    @classmethod
-    def _above_the_minimum(cls, value: float, info: ValidationInfo) -> float:
-        minimum = info.data.get("minimum")
-        if minimum is not None and value <= minimum:
-            raise at_odds("must be more than 'minimum'")
-        return value
 
 
 class PricePart(Part):
