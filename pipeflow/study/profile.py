@@ -31,10 +31,10 @@ def profile_of(case: Case, line: LineFlow) -> ProfileResult:
     """
     atmosphere, vapour = atmospheric_pressure(case), case.liquid.vapour_pressure if case.liquid else None
     missing = {"site": atmosphere, "fluid.liquid.vapour_pressure": vapour}
-    found = _read(case, line, atmosphere, vapour)
+    found = read_along(case, line, atmosphere, vapour)
     impossible = found.central.slack is None and _lowest(case, found) < -SEA_LEVEL_PRESSURE
     if impossible:
-        found = _read(case, line, atmosphere or SEA_LEVEL_PRESSURE, vapour or 0.0)
+        found = read_along(case, line, atmosphere or SEA_LEVEL_PRESSURE, vapour or 0.0)
     points, before_pump = tuple(_points(found)), 2 * pump_position(case) + 1
     heads = (float(found.central.pump_head[DESIGN]), float(found.upper.pump_head[DESIGN]))
     pressures = tuple(float(case.fluid.density) * STANDARD_GRAVITY * head for head in heads)
@@ -59,7 +59,8 @@ def profile_of(case: Case, line: LineFlow) -> ProfileResult:
     )
 
 
-def _read(case: Case, line: LineFlow, atmosphere: float | None, vapour: float | None) -> Profile:
+def read_along(case: Case, line: LineFlow, atmosphere: float | None, vapour: float | None) -> Profile:
+    """Read a line at its nodes; its high points ask for what they need where both absolute pressures, Pa, are known."""
     return profile(
         line,
         case.fluid,

@@ -9,11 +9,11 @@ import numpy as np
 from pipeflow.arrays import Array
 from pipeflow.case.model import Case
 from pipeflow.constants import STANDARD_GRAVITY
-from pipeflow.line.profile import Profile, profile
+from pipeflow.line.profile import Profile
 from pipeflow.line.route import LineFlow
 from pipeflow.line.site import SEA_LEVEL_PRESSURE
 from pipeflow.study.flows import line_at, pump_position
-from pipeflow.study.profile import atmospheric_pressure
+from pipeflow.study.profile import atmospheric_pressure, read_along
 
 
 def heads_along(case: Case, line: LineFlow) -> Profile:
@@ -22,16 +22,7 @@ def heads_along(case: Case, line: LineFlow) -> Profile:
     Where the pressure of air or vapour is not known no line holds less than a vacuum at sea level, as ``solve`` has it.
     """
     vapour = case.liquid.vapour_pressure if case.liquid else None
-    return profile(
-        line,
-        case.fluid,
-        case.route,
-        case.source,
-        case.destination,
-        pump_position=pump_position(case),
-        atmospheric_pressure=atmospheric_pressure(case) or SEA_LEVEL_PRESSURE,
-        vapour_pressure=vapour or 0.0,
-    )
+    return read_along(case, line, atmospheric_pressure(case) or SEA_LEVEL_PRESSURE, vapour or 0.0)
 
 
 @dataclass(frozen=True)
