@@ -32,7 +32,7 @@ def write_result(path: Path, text: str) -> None:
         As :func:`write_text`, and where another kind of file stands there.
     """
     mark = _mark(text)
-    if path.is_file() and not _begins_with(path, mark):
+    if path.is_file() and head_of(path, len(mark.encode())) not in (b"", mark.encode()):
         kind = "chart" if mark.startswith("<svg") else "table"
         message = f"is there already and is no {kind} of this command; name another file, or remove it"
         raise InputError([Problem(str(path), None, None, "", message)])
@@ -44,11 +44,10 @@ def _mark(text: str) -> str:
     return text[: text.index("-title")] if text.startswith("<svg") else text.partition("\n")[0]
 
 
-def _begins_with(path: Path, mark: str) -> bool:
-    """Whether a file is empty or begins so; one that can't be read is told when it is written."""
+def head_of(path: Path, size: int) -> bytes:
+    """First bytes of a file; none of one that can't be read, which is told when it is written."""
     try:
         with path.open("rb") as file:
-            head = file.read(len(mark.encode()))
+            return file.read(size)
     except OSError:
-        return True
-    return not head or head == mark.encode()
+        return b""

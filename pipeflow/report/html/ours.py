@@ -5,6 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 from pipeflow.report.html.rendering import GENERATOR
+from pipeflow.report.written import head_of
 
 _HEAD = 2048
 """Bytes of a file that are looked at."""
@@ -12,9 +13,5 @@ _HEAD = 2048
 
 def is_our_page(path: Path) -> bool:
     """Whether a file is empty, or says in its head that this program wrote it."""
-    try:
-        with path.open("rb") as file:
-            head = file.read(_HEAD)
-    except OSError:
-        return True  # the writing says why it cannot be
+    head = head_of(path, _HEAD)
     return not head.strip() or f'<meta name="generator" content="{GENERATOR} '.encode() in head
