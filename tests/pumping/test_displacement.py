@@ -102,7 +102,7 @@ def test_slip_scaled_to_another_fluid():
 
 
 def test_acceleration_head_by_hand():
-    """A triplex at 60 1/min on 20 m of line at 1.5 m/s, k = 1.5."""
+    """A triplex at 60 1/min on 20 m of line at 1.5 m/s, k = 1.5; C 0.066 of ANSI/HI 6.1-6.5, from memory."""
     hand = 20 * 1.5 * 60 * 0.066 / (1.5 * STANDARD_GRAVITY)
     assert float(acceleration_head(20.0, 1.5, 60 * RPM, 3, 1.5)) == pytest.approx(hand, rel=1e-12)
     by_number = [float(acceleration_head(20.0, 1.5, 60 * RPM, cylinders, 1.5)) for cylinders in (1, 2, 3)]

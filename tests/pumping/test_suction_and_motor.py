@@ -45,6 +45,7 @@ def test_yield_of_a_suction_line_is_the_limit_of_its_loss_at_rest():
 
 
 def test_power_and_motor():
+    """Rated outputs of IEC 60072-1, from memory."""
     assert float(shaft_power(0.03, 40.0, 1400.0, 0.6)) == pytest.approx(1400 * 9.80665 * 0.03 * 40 / 0.6, rel=1e-14)
     assert float(motor_power(20e3, 0.15)) == pytest.approx(23e3)
     assert standard_motor(23e3) == 30e3
