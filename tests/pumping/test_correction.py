@@ -37,7 +37,7 @@ def in_us_units(flow: float, head: float) -> tuple[float, float]:
 
 
 def test_constants_agree_with_those_of_us_units():
-    """ANSI/HI 9.6.7: 26.6 and 4.70 in gal/min and ft, 225 000 for NPSH, beside 16.5, 2.80 and 274 000; each to its last digit."""
+    """26.6 and 4.70 in gal/min and ft, 225 000 for NPSH, beside 16.5, 2.80 and 274 000; each to its last digit."""
     flow, head = in_us_units(1.0, 1.0)
     assert 16.5 * head**0.0625 / flow**0.375 == pytest.approx(26.6, abs=0.05 + 0.05 * 26.6 / 16.5)
     assert 2.80 / (flow**0.25 * head**0.125) == pytest.approx(4.70, abs=0.005 + 0.005 * 4.70 / 2.80)
